@@ -1,0 +1,177 @@
+package grid
+
+import (
+	"math"
+	"math/cmplx"
+
+	"quietbus/study/phasor"
+)
+
+// Supply is an EMF behind an impedance.
+type Supply struct {
+	Name       string
+	Bus        BusID
+	EMF        complex128 // line to neutral, V rms, positive sequence, order 1
+	R, X       float64    // ohm at order 1
+	R0, X0     float64    // zero sequence; both zero: no path
+	Exponent   float64    // R(h) = R h^Exponent
+	Background []Background
+}
+
+// Background is the open-circuit voltage of a supply at one order (V rms).
+type Background struct {
+	Order    int
+	Voltage  complex128
+	Sequence phasor.Sequence
+}
+
+func (e *Supply) label() string { return e.Name }
+func (e *Supply) ends() []BusID { return []BusID{e.Bus} }
+func (e *Supply) series() bool  { return false }
+func (e *Supply) check() *ElementError {
+	if e.R < 0 || e.X < 0 {
+		return &ElementError{e.Name, "impedance", "is negative"}
+	}
+	return positive(e.Name, "impedance", math.Hypot(e.R, e.X))
+}
+func (e *Supply) admittance(h float64, q phasor.Sequence) complex128 {
+	r, x := e.R, e.X
+	if q == phasor.Zero {
+		r, x = e.R0, e.X0
+	}
+	if r == 0 && x == 0 {
+		return 0
+	}
+	return 1 / complex(r*math.Pow(h, e.Exponent), x*h)
+}
+func (e *Supply) stamp(_, h float64, q phasor.Sequence, add Stamp) {
+	if y := e.admittance(h, q); y != 0 {
+		add(0, 0, y)
+	}
+}
+func (e *Supply) emf(h int, q phasor.Sequence) complex128 {
+	if h == 1 {
+		if q == phasor.Positive {
+			return e.EMF
+		}
+		return 0
+	}
+	var v complex128
+	for _, b := range e.Background {
+		if b.Order == h && b.Sequence == q {
+			v += b.Voltage
+		}
+	}
+	return v
+}
+
+// Transformer is a two-winding transformer. Impedances are referred to the
+// low-voltage side.
+type Transformer struct {
+	Name      string
+	HV, LV    BusID
+	Ratio     float64 // line-to-line voltage ratio HV/LV, tap included
+	R, X      float64 // short circuit, ohm at order 1, LV side
+	Exponent  float64 // R(h) = R h^Exponent
+	ZeroRatio float64 // Z0/Z1, 0 means 1
+	Group     VectorGroup
+	HVN, LVN  complex128 // neutral impedance at order 1, ohm
+}
+
+func (e *Transformer) label() string { return e.Name }
+func (e *Transformer) ends() []BusID { return []BusID{e.HV, e.LV} }
+func (e *Transformer) series() bool  { return true }
+func (e *Transformer) check() *ElementError {
+	if err := positive(e.Name, "ratio", e.Ratio); err != nil {
+		return err
+	}
+	if e.R < 0 || e.X < 0 {
+		return &ElementError{e.Name, "impedance", "is negative"}
+	}
+	return positive(e.Name, "impedance", math.Hypot(e.R, e.X))
+}
+func at(z complex128, h float64) complex128 { return complex(real(z), imag(z)*h) }
+func (e *Transformer) stamp(_, h float64, q phasor.Sequence, add Stamp) {
+	z := complex(e.R*math.Pow(h, e.Exponent), e.X*h)
+	n := complex(e.Ratio, 0)
+	if q != phasor.Zero {
+		y := 1 / z
+		add(0, 0, y/(n*n))
+		add(1, 1, y)
+		add(0, 1, -y/n)
+		return
+	}
+	if e.ZeroRatio > 0 {
+		z *= complex(e.ZeroRatio, 0)
+	}
+	hv, lv := e.Group.HV, e.Group.LV
+	hvThrough, lvThrough := hv == 'Y' && e.Group.HVN, lv == 'Y' && e.Group.LVN
+	switch {
+	case hvThrough && lvThrough:
+		y := 1 / (z + 3*at(e.LVN, h) + 3*at(e.HVN, h)/(n*n))
+		add(0, 0, y/(n*n))
+		add(1, 1, y)
+		add(0, 1, -y/n)
+	case hvThrough && lv == 'D':
+		add(0, 0, 1/(z*n*n+3*at(e.HVN, h)))
+	case lvThrough && hv == 'D':
+		add(1, 1, 1/(z+3*at(e.LVN, h)))
+	}
+	if lv == 'Z' && e.Group.LVN { // zig-zag: leakage between its own half windings
+		add(1, 1, 1/(z+3*at(e.LVN, h)))
+	}
+	if hv == 'Z' && e.Group.HVN {
+		add(0, 0, 1/(z*n*n+3*at(e.HVN, h)))
+	}
+}
+
+// Cable is a cable or line as a nominal pi.
+type Cable struct {
+	Name       string
+	From, To   BusID
+	R, X, C    float64 // total, ohm and farad
+	R0, X0, C0 float64
+	Skin       func(h float64) float64 // R(h)/R(1), nil for none
+}
+
+func (e *Cable) label() string { return e.Name }
+func (e *Cable) ends() []BusID { return []BusID{e.From, e.To} }
+func (e *Cable) series() bool  { return true }
+func (e *Cable) check() *ElementError {
+	return positive(e.Name, "impedance", math.Hypot(e.R, e.X))
+}
+func (e *Cable) stamp(f1, h float64, q phasor.Sequence, add Stamp) {
+	r, x, c := e.R, e.X, e.C
+	if q == phasor.Zero {
+		r, x, c = e.R0, e.X0, e.C0
+	}
+	k := 1.0
+	if e.Skin != nil {
+		k = e.Skin(h)
+	}
+	y := 1 / complex(r*k, x*h)
+	half := complex(0, math.Pi*f1*h*c)
+	add(0, 0, y+half)
+	add(1, 1, y+half)
+	add(0, 1, -y)
+}
+
+// Shunt is a balanced three-phase shunt branch in star equivalent.
+type Shunt struct {
+	Name   string
+	Bus    BusID
+	Branch interface{ Admittance(h float64) complex128 }
+	Zero   bool // passes the zero sequence
+}
+
+func (e *Shunt) label() string        { return e.Name }
+func (e *Shunt) ends() []BusID        { return []BusID{e.Bus} }
+func (e *Shunt) series() bool         { return false }
+func (e *Shunt) check() *ElementError { return nil }
+func (e *Shunt) stamp(_, h float64, q phasor.Sequence, add Stamp) {
+	if q != phasor.Zero || e.Zero {
+		add(0, 0, e.Branch.Admittance(h))
+	}
+}
+
+var _ = cmplx.Abs
