@@ -1,0 +1,145 @@
+package handout
+
+import (
+	"encoding/json"
+	"fmt"
+	"strings"
+
+	"quietbus/study"
+)
+
+// assumptions lists the inputs by origin: assumed ones first, because the
+// result rests on them; those without an origin are counted and listed.
+func (p *printer) assumptions() {
+	p.section("Assumptions and inputs", 60)
+	by := map[string][]InputValue{}
+	for _, v := range p.doc.Provenance {
+		if v.Origin != unstated || quantity(v) {
+			by[v.Origin] = append(by[v.Origin], v)
+		}
+	}
+	assumed := by[string(study.Assumed)]
+	if len(assumed) == 0 {
+		p.paragraph(span{p.body, "No value is marked as assumed."})
+	} else {
+		p.paragraph(span{p.body, fmt.Sprintf("%s assumed. The result holds only as far as they do; confirm them first.", counted(len(assumed), "value is", "values are"))})
+		p.skip(3)
+		p.originTable("Assumed", assumed, true)
+	}
+	for _, o := range []struct {
+		origin study.Origin
+		title  string
+	}{{study.Measured, "Measured"}, {study.Given, "Given"}} {
+		if list := by[string(o.origin)]; len(list) > 0 {
+			p.skip(8)
+			p.originTable(o.title, list, false)
+		}
+	}
+	p.unstatedInputs(by[unstated])
+	p.defaults()
+}
+
+// quantity reports whether a value is a number or a list of numbers, which
+// somebody must have read somewhere, rather than a name or a choice.
+func quantity(v InputValue) bool {
+	if v.Field == "cost" {
+		return false
+	}
+	switch x := v.Value.(type) {
+	case Num, int64:
+		return true
+	case json.RawMessage:
+		return strings.Contains(string(x), "{")
+	}
+	return false
+}
+
+func (p *printer) originTable(title string, list []InputValue, slanted bool) {
+	t := &table{columns: []column{
+		{head: title, min: 84}, {head: "Quantity", min: 84}, {head: "Value", align: point}, {head: ""}, {head: "Source or reason", flex: 1, min: 100},
+	}}
+	last := ""
+	for _, v := range list {
+		cells := plain(v.Item, v.Label, valueText(v), v.Unit, v.Note)
+		if v.Item == last {
+			cells[0].text = ""
+		}
+		last = v.Item
+		if slanted {
+			cells[2].style = p.small.italic()
+		}
+		t.add(cells...)
+	}
+	p.table(t, 0)
+}
+
+// valueText returns a value as the study file has it.
+func valueText(v InputValue) string {
+	switch x := v.Value.(type) {
+	case Num:
+		return short(float64(x))
+	case string:
+		return x
+	case json.RawMessage:
+		var list []json.RawMessage
+		if json.Unmarshal(x, &list) == nil {
+			return counted(len(list), "entry", "entries")
+		}
+		return string(x)
+	}
+	return fmt.Sprint(v.Value)
+}
+
+// unstatedInputs lists what nobody said the origin of, in running text.
+func (p *printer) unstatedInputs(list []InputValue) {
+	if len(list) == 0 {
+		return
+	}
+	p.subsection(fmt.Sprintf("No origin stated: %s", counted(len(list), "value", "values")), 30)
+	for i := 0; i < len(list); {
+		first := i
+		var values []string
+		for ; i < len(list) && list[i].Item == list[first].Item; i++ {
+			text := list[i].Label + " " + valueText(list[i])
+			if list[i].Unit != "" {
+				text += " " + list[i].Unit
+			}
+			values = append(values, text)
+		}
+		p.paragraph(span{p.small.bold(), list[first].Item + "  "}, span{p.small, strings.Join(values, "; ")})
+		p.y -= 1.5
+	}
+}
+
+// defaults lists the values that are absent and what stood in for them.
+func (p *printer) defaults() {
+	if len(p.doc.Defaults) == 0 {
+		return
+	}
+	p.subsection("Left at the program's default", 30)
+	p.paragraph(span{p.small, "Values that the study leaves out, and what was computed with instead:"})
+	p.skip(2)
+	for i := 0; i < len(p.doc.Defaults); {
+		first := i
+		var values []string
+		for ; i < len(p.doc.Defaults) && p.doc.Defaults[i].Kind == p.doc.Defaults[first].Kind; i++ {
+			d := p.doc.Defaults[i]
+			values = append(values, fmt.Sprintf("%s: %s (%s)", d.Label, d.Default, strings.Join(d.Items, ", ")))
+		}
+		p.paragraph(span{p.small.bold(), kindTitle(p.doc.Defaults[first].Kind) + "  "}, span{p.small, strings.Join(values, "; ")})
+		p.y -= 1.5
+	}
+}
+
+// kindTitle returns the plural of a kind of item, as a heading.
+func kindTitle(kind string) string {
+	switch study.Kind(kind) {
+	case study.KindSupply:
+		return "Supplies"
+	case study.KindBus:
+		return "Buses"
+	case study.KindNonlinearLoad:
+		return "Non-linear loads"
+	}
+	return strings.ToUpper(kind[:1]) + kind[1:] + "s"
+}
