@@ -29,72 +29,211 @@ type Solution struct {
 	order int
 	seq   [3][][]complex128 // by sequence and order: shift-free node voltages, nil when zero
 	base  *Fundamental
-	drawn map[ElementID][3]complex128
+	shunt map[ElementID]phasor.Spectrum // current through phase shunts, orders 2..H
 }
 
-// Harmonics solves orders 2..order for the given currents.
+// Harmonics solves orders 2..order for the given currents and the supplies'
+// background. Every order is checked: the residual and the complex power
+// balance are taken element by element, without the assembled matrix. A
+// solution that fails is an error.
 func (s *System) Harmonics(ctx context.Context, base *Fundamental, order int, injections []Injection) (*Solution, error) {
-	sol := &Solution{sys: s, order: order, base: base, Check: Check{Rounds: base.Rounds}}
-	fac := s.pat.newFactors()
+	sol := &Solution{sys: s, order: order, base: base, shunt: map[ElementID]phasor.Spectrum{}, Check: Check{Rounds: base.Rounds}}
 	for q := range sol.seq {
 		sol.seq[q] = make([][]complex128, order+1)
 		sol.seq[q][1] = base.seq[q]
 	}
-	cur := make([]complex128, s.nodes)
+	w := s.newWork()
 	for h := 2; h <= order; h++ {
 		if err := ctx.Err(); err != nil {
 			return nil, err
 		}
-		for q := phasor.Zero; q <= phasor.Negative; q++ {
-			clear(cur)
-			any := false
-			for _, in := range injections {
-				k := s.node[in.Bus]
-				if !s.live[k] {
-					continue
-				}
-				i := phasor.ToSequence([3]complex128{in.Current[0].At(h), in.Current[1].At(h), in.Current[2].At(h)})[q]
-				if cmplx.Abs(i) > 1e-12 {
-					any = true
-					cur[k] -= s.turned(k, mirror(q), i)
-				}
-			}
-			for _, sup := range s.supplies {
-				if v := sup.emf(h, q); v != 0 {
-					any = true
-					cur[s.node[sup.Bus]] += v * sup.admittance(float64(h), q)
-				}
-			}
-			if !any {
-				continue
-			}
-			if _, ok := s.matrix(fac, float64(h), q); !ok {
-				return nil, fmt.Errorf("the %s-sequence network cannot be solved at order %d", q, h)
-			}
-			v := s.solveSequence(fac, cur)
-			for k := range v {
-				if cmplx.IsNaN(v[k]) || cmplx.Abs(v[k]) > 1e3*s.scale[k] {
-					return nil, fmt.Errorf("bus %q has no path for the %s-sequence current of order %d", s.busName(k), q, h)
-				}
-			}
-			sol.seq[q][h] = v
-			sol.Check.Residual = math.Max(sol.Check.Residual, s.residual(float64(h), q, v, cur))
+		if err := s.order(sol, w, h, injections); err != nil {
+			return nil, err
 		}
 	}
-	if sol.Check.Residual > 1e-8 {
-		return nil, fmt.Errorf("the solution fails its own check: residual %.1e", sol.Check.Residual)
+	if sol.Check.Residual > 1e-7 || sol.Check.Balance > 1e-7 || math.IsNaN(sol.Check.Residual+sol.Check.Balance) {
+		return nil, fmt.Errorf("the solution fails its own check: residual %.1e, power balance %.1e", sol.Check.Residual, sol.Check.Balance)
 	}
 	return sol, nil
 }
 
-// residual returns max |Y V - I| over max |I|, element by element, without the
-// assembled matrix.
-func (s *System) residual(h float64, q phasor.Sequence, v, cur []complex128) float64 {
+// work is what one order needs, kept from order to order.
+type work struct {
+	factors [3]*factors
+	current [3][]complex128
+	shunts  []ElementID
+}
+
+func (s *System) newWork() *work {
+	w := &work{}
+	for q := range w.factors {
+		w.factors[q], w.current[q] = s.pat.newFactors(), make([]complex128, s.nodes)
+	}
+	for id, e := range s.net.elements {
+		if x, ok := e.(*PhaseShunt); ok && s.Live(x.Bus) {
+			w.shunts = append(w.shunts, ElementID(id))
+		}
+	}
+	return w
+}
+
+// order solves one order.
+func (s *System) order(sol *Solution, w *work, h int, injections []Injection) error {
+	sourced := s.sources(w, h, injections)
+	if sourced == [3]bool{} {
+		return nil
+	}
+	coupled := len(w.shunts) > 0
+	for q := phasor.Zero; q <= phasor.Negative; q++ {
+		if !sourced[q] && !coupled {
+			continue
+		}
+		if err := s.prepare(sol, w.factors[q], h, q); err != nil {
+			return err
+		}
+		sol.seq[q][h] = s.solveSequence(w.factors[q], w.current[q])
+	}
+	if coupled {
+		if err := s.compensate(sol, w, h); err != nil {
+			return err
+		}
+	}
+	for q := phasor.Zero; q <= phasor.Negative; q++ {
+		v := sol.seq[q][h]
+		if v == nil {
+			continue
+		}
+		for k := range v {
+			if cmplx.IsNaN(v[k]) || cmplx.Abs(v[k]) > 1e3*s.scale[k] {
+				return &PathError{Bus: s.busName(k), Sequence: q, Order: h}
+			}
+		}
+		residual, balance := s.audit(float64(h), q, v, w.current[q])
+		sol.Check.Residual = math.Max(sol.Check.Residual, residual)
+		sol.Check.Balance = math.Max(sol.Check.Balance, balance)
+	}
+	return nil
+}
+
+// PathError says that a current finds no way back to its source, or meets a
+// resonance without any damping.
+type PathError struct {
+	Bus      string
+	Sequence phasor.Sequence
+	Order    int
+}
+
+func (e *PathError) Error() string {
+	if e.Sequence == phasor.Zero {
+		return fmt.Sprintf("%s: the zero-sequence current of order %d has no path back; connect the load without neutral, or earth a neutral on this side of the transformer", e.Bus, e.Order)
+	}
+	return fmt.Sprintf("%s: order %d meets a resonance without any damping; give reactors, cables or loads their resistance", e.Bus, e.Order)
+}
+
+// prepare assembles and factors one sequence at one order.
+func (s *System) prepare(sol *Solution, f *factors, h int, q phasor.Sequence) error {
+	if _, ok := s.matrix(f, float64(h), q); !ok {
+		return fmt.Errorf("the %s-sequence network cannot be solved at order %d", q, h)
+	}
+	return nil
+}
+
+// sources fills in the node currents of one order, shift-free, and reports
+// which sequences carry any.
+func (s *System) sources(w *work, h int, injections []Injection) (any [3]bool) {
+	for q := range w.current {
+		clear(w.current[q])
+	}
+	for i := range injections {
+		in := &injections[i]
+		k := s.node[in.Bus]
+		if !s.live[k] {
+			continue
+		}
+		for q, v := range phasor.ToSequence([3]complex128{in.Current[0].At(h), in.Current[1].At(h), in.Current[2].At(h)}) {
+			if cmplx.Abs(v) > 1e-12 {
+				any[q] = true
+				w.current[q][k] -= s.turned(k, mirror(phasor.Sequence(q)), v)
+			}
+		}
+	}
+	for _, sup := range s.supplies {
+		for q := phasor.Zero; q <= phasor.Negative; q++ {
+			if v := sup.emf(h, q); v != 0 {
+				any[q] = true
+				w.current[q][s.node[sup.Bus]] += v * sup.admittance(float64(h), q)
+			}
+		}
+	}
+	return any
+}
+
+// compensate puts the phase shunts in: with e the voltages across them, e0
+// those without them and R the response to a current drawn by each,
+// (1 - R Y) e = e0.
+func (s *System) compensate(sol *Solution, w *work, h int) error {
+	n := len(w.shunts)
+	response := make([][3][]complex128, n) // by shunt and sequence: node voltages for 1 A drawn
+	injected := make([][3]complex128, n)   // the same current, shift-free, by sequence
+	for i, id := range w.shunts {
+		x := s.net.elements[id].(*PhaseShunt)
+		k := s.node[x.Bus]
+		for q, v := range phasor.ToSequence(x.through(1)) {
+			injected[i][q] = -s.turned(k, mirror(phasor.Sequence(q)), v)
+			one := make([]complex128, s.nodes)
+			one[k] = injected[i][q]
+			response[i][q] = s.solveSequence(w.factors[q], one)
+		}
+	}
+	a, e := make([][]complex128, n), make([]complex128, n)
+	y := make([]complex128, n)
+	for i, id := range w.shunts {
+		y[i] = s.net.elements[id].(*PhaseShunt).Branch.Admittance(float64(h))
+	}
+	voltages := [3][]complex128{sol.seq[0][h], sol.seq[1][h], sol.seq[2][h]}
+	for i, id := range w.shunts {
+		x := s.net.elements[id].(*PhaseShunt)
+		k := s.node[x.Bus]
+		e[i] = x.terminal(s.phaseAt(&voltages, k))
+		a[i] = make([]complex128, n)
+		for j := range n {
+			a[i][j] = -x.terminal(s.phaseAt(&response[j], k)) * y[j]
+		}
+		a[i][i]++
+	}
+	if !solveDense(a, e) {
+		return fmt.Errorf("the single-phase loads resonate with the network at order %d without any damping", h)
+	}
+	for i, id := range w.shunts {
+		current := y[i] * e[i]
+		if sol.shunt[id] == nil {
+			sol.shunt[id] = phasor.New(sol.order)
+		}
+		sol.shunt[id][h] = current
+		k := s.node[s.net.elements[id].(*PhaseShunt).Bus]
+		for q := range voltages {
+			w.current[q][k] += current * injected[i][q]
+			for node, v := range response[i][q] {
+				voltages[q][node] += v * current
+			}
+		}
+	}
+	return nil
+}
+
+// audit returns max |Y V - I| over max |I|, and the net complex power of all
+// elements over the sum of its magnitudes (Tellegen), both element by element
+// without the assembled matrix.
+func (s *System) audit(h float64, q phasor.Sequence, v, cur []complex128) (residual, balance float64) {
 	r := make([]complex128, s.nodes)
-	var size float64
+	var size, total float64
+	var net complex128
 	for k, i := range cur {
 		r[k] = -i
 		size = math.Max(size, cmplx.Abs(i)*s.scale[k])
+		power := v[k] * cmplx.Conj(i)
+		net -= power
+		total += cmplx.Abs(power)
 	}
 	for _, e := range s.net.elements {
 		b := e.ends()
@@ -104,21 +243,25 @@ func (s *System) residual(h float64, q phasor.Sequence, v, cur []complex128) flo
 		e.stamp(s.net.f1, h, q, func(i, j int, y complex128) {
 			m, n := s.node[b[i]], s.node[b[j]]
 			r[m] += y * v[n]
+			net += v[m] * cmplx.Conj(y*v[n])
 			if i != j {
 				r[n] += y * v[m]
+				net += v[n] * cmplx.Conj(y*v[m])
 			}
 		})
 	}
-	var worst float64
 	for k := range r {
 		if s.live[k] && v[k] != 0 {
-			worst = math.Max(worst, cmplx.Abs(r[k])*s.scale[k])
+			residual = math.Max(residual, cmplx.Abs(r[k])*s.scale[k])
 		}
 	}
-	if size == 0 {
-		return worst
+	if size > 0 {
+		residual /= size
 	}
-	return worst / size
+	if total > 0 {
+		balance = cmplx.Abs(net) / total
+	}
+	return residual, balance
 }
 
 // BusSequence returns the sequence voltages of a bus by order.
@@ -195,6 +338,13 @@ func (x *Solution) Ends(id ElementID) []End {
 		if d, ok := x.base.drawn[id]; ok {
 			for p := range d {
 				out[n].Phase[p][1] += d[p]
+			}
+		}
+		if current := x.shunt[id]; current != nil {
+			for h := 2; h <= x.order; h++ {
+				for p, i := range e.(*PhaseShunt).through(current[h]) {
+					out[n].Phase[p][h] += i
+				}
 			}
 		}
 	}

@@ -1,0 +1,343 @@
+package study
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+	"math/cmplx"
+
+	"quietbus/study/filter"
+	"quietbus/study/limits"
+	"quietbus/study/phasor"
+)
+
+// outcome gathers everything that is shown from a solved model.
+func (m *model) outcome(ctx context.Context, sol *solution) (*Outcome, error) {
+	s := m.plan.study
+	o := &Outcome{Study: s, Check: Check(sol.net.Check)}
+	for _, x := range m.plan.chosen {
+		o.On = append(o.On, x.Name)
+	}
+	m.buses(o, sol)
+	m.elements(o, sol)
+	for i := range s.Assessments {
+		p, err := m.point(ctx, &s.Assessments[i], o)
+		if err != nil {
+			return nil, err
+		}
+		o.Points = append(o.Points, p)
+	}
+	for _, x := range m.plan.chosen {
+		o.Measures = append(o.Measures, m.measure(x, sol, o))
+	}
+	for i := range s.Scans {
+		q := &s.Scans[i]
+		if !m.system.Live(m.bus[q.Bus]) {
+			o.Warnings = append(o.Warnings, fmt.Sprintf("Scan %s: bus %s has no supply, so it has no impedance.", q.Name, q.Bus))
+			continue
+		}
+		scan, err := m.scan(ctx, q.Name, q.Bus, sequenceOf(q.Sequence), or(q.From, 1), or(q.To, float64(s.Order())))
+		if err != nil {
+			return nil, err
+		}
+		o.Scans = append(o.Scans, *scan)
+	}
+	m.warn(o, sol)
+	return o, nil
+}
+
+func sequenceOf(word string) phasor.Sequence {
+	switch word {
+	case "negative":
+		return phasor.Negative
+	case "zero":
+		return phasor.Zero
+	}
+	return phasor.Positive
+}
+
+func (m *model) buses(o *Outcome, sol *solution) {
+	s := m.plan.study
+	for _, b := range s.Buses {
+		id := m.bus[b.Name]
+		o.Buses = append(o.Buses, BusResult{Name: b.Name, NominalV: 1000 * b.NominalKV, Live: m.system.Live(id),
+			Phase: sol.net.BusPhase(id), Seq: sol.net.BusSequence(id)})
+	}
+	for _, x := range m.plan.chosen {
+		out, ok := m.outlets[x.Name]
+		if !ok {
+			continue
+		}
+		at := o.Bus(out.load.Bus)
+		b := BusResult{Name: OutletName(x.Name), NominalV: at.NominalV, Live: at.Live}
+		weight := out.load.Connection.conductors()
+		for i := range b.Phase {
+			b.Phase[i] = phasor.New(s.Order())
+			if !out.load.Connection.threePhase() && weight[i] == 0 {
+				continue
+			}
+			for h := 1; h <= s.Order(); h++ {
+				b.Phase[i][h] = at.Phase[i][h] * out.pass.Ratio(float64(h))
+			}
+		}
+		b.Seq = phasor.SequencesOf(b.Phase)
+		o.Buses = append(o.Buses, b)
+	}
+}
+
+// OutletName names the bus behind a low-pass measure in the results.
+func OutletName(measure string) string { return measure + ", outlet" }
+
+// Bus returns the result of a bus, nil when there is none of the name.
+func (o *Outcome) Bus(name string) *BusResult {
+	for i := range o.Buses {
+		if o.Buses[i].Name == name {
+			return &o.Buses[i]
+		}
+	}
+	return nil
+}
+
+// Element returns the result of an item, nil when there is none of the name.
+func (o *Outcome) Element(name string) *ElementResult {
+	for i := range o.Elements {
+		if o.Elements[i].Name == name {
+			return &o.Elements[i]
+		}
+	}
+	return nil
+}
+
+// THD returns the highest total harmonic distortion of the three phases, as a
+// fraction of that phase's fundamental.
+func (b *BusResult) THD() float64 {
+	worst := 0.0
+	for _, p := range b.Phase {
+		worst = math.Max(worst, phasor.THD(p))
+	}
+	return worst
+}
+
+// elements lists the current of each item that stands, in file order by kind,
+// measures last.
+func (m *model) elements(o *Outcome, sol *solution) {
+	s := m.plan.study
+	for i := range s.Supplies {
+		m.passive(o, sol, KindSupply, s.Supplies[i].Name)
+	}
+	for i := range s.Transformers {
+		m.passive(o, sol, KindTransformer, s.Transformers[i].Name)
+	}
+	for i := range s.Cables {
+		m.passive(o, sol, KindCable, s.Cables[i].Name)
+	}
+	for i := range s.Reactors {
+		m.passive(o, sol, KindReactor, s.Reactors[i].Name)
+	}
+	for i := range s.Loads {
+		m.passive(o, sol, KindLoad, s.Loads[i].Name)
+	}
+	for i := range s.Motors {
+		m.passive(o, sol, KindMotor, s.Motors[i].Name)
+	}
+	for i := range s.NonlinearLoads {
+		l := &s.NonlinearLoads[i]
+		if current, ok := sol.drawn[l.Name]; ok {
+			o.Elements = append(o.Elements, source(KindNonlinearLoad, l.Name, l.Bus, current))
+		}
+	}
+	for i := range m.plan.banks {
+		m.passive(o, sol, KindBank, m.plan.banks[i].Name)
+	}
+	for i := range m.plan.filters {
+		m.passive(o, sol, KindFilter, m.plan.filters[i].Name)
+	}
+	for _, x := range m.plan.chosen {
+		if a, ok := sol.active[x.Name]; ok {
+			o.Elements = append(o.Elements, source(KindMeasure, x.Name, x.Bus, a.Drawn))
+		} else if m.branch[x.Name] != nil {
+			m.passive(o, sol, KindMeasure, x.Name)
+		}
+	}
+}
+
+func (m *model) passive(o *Outcome, sol *solution, kind Kind, name string) {
+	e := ElementResult{Name: name, Kind: kind}
+	for _, end := range sol.net.Ends(m.element[name]) {
+		e.Ends = append(e.Ends, endResult(m.plan.study.Buses[end.Bus].Name, end.Phase))
+	}
+	o.Elements = append(o.Elements, e)
+}
+
+func source(kind Kind, name, bus string, current [3]phasor.Spectrum) ElementResult {
+	return ElementResult{Name: name, Kind: kind, Ends: []EndResult{endResult(bus, current)}}
+}
+
+// endResult adds the neutral's current, the sum of the phases, where there is
+// any.
+func endResult(bus string, phase [3]phasor.Spectrum) EndResult {
+	e := EndResult{Bus: bus, Phase: phase}
+	neutral := make(phasor.Spectrum, len(phase[0]))
+	largest, sum := 0.0, 0.0
+	for h := range neutral {
+		for i := range phase {
+			neutral[h] += phase[i].At(h)
+			largest = math.Max(largest, cmplx.Abs(phase[i].At(h)))
+		}
+		sum = math.Max(sum, cmplx.Abs(neutral[h]))
+	}
+	if sum > 1e-9*largest {
+		e.Neutral = neutral
+	}
+	return e
+}
+
+// point assesses one point.
+func (m *model) point(ctx context.Context, a *Assessment, o *Outcome) (PointResult, error) {
+	p := PointResult{Name: a.Name, Bus: a.Bus, Set: a.Set}
+	set, ok := limits.Lookup(a.Set)
+	if !ok {
+		return p, &FieldError{Item: a.Name, Field: "set", Problem: fmt.Sprintf("%q is no limit set of this program", a.Set), Remedy: "choose one from the list"}
+	}
+	p.SetTitle = set.Title
+	bus := o.Bus(a.Bus)
+	at := limits.Point{NominalV: bus.NominalV, Voltage: bus.Phase}
+	if err := p.take(set.Voltage(at)); err != nil {
+		return p, err
+	}
+	if a.Current == "" {
+		return p, nil
+	}
+	current, isc, err := m.demand(ctx, a, o)
+	if err != nil {
+		return p, err
+	}
+	at.Current, at.DemandA, at.IscA = current, a.DemandA, isc
+	if err := p.take(set.Current(at)); err != nil {
+		return p, err
+	}
+	if len(p.NotAssessed) == 0 {
+		p.IscA, p.ILA = at.IscA, at.DemandA
+	}
+	return p, nil
+}
+
+// take adds rows, or the reason why there are none.
+func (p *PointResult) take(rows []limits.Row, err error) error {
+	var why *limits.NotAssessedError
+	if errors.As(err, &why) {
+		p.NotAssessed = append(p.NotAssessed, why.Error())
+		return nil
+	}
+	p.Rows = append(p.Rows, rows...)
+	return err
+}
+
+// demand returns the assessed current and the short-circuit current at a
+// point: as stated, else of the supplies there, else from the driving-point
+// impedance at order 1.
+func (m *model) demand(ctx context.Context, a *Assessment, o *Outcome) (current [3]phasor.Spectrum, isc float64, err error) {
+	e := o.Element(a.Current)
+	end := &e.Ends[0]
+	for i := range e.Ends {
+		if e.Ends[i].Bus == a.Bus {
+			end = &e.Ends[i]
+		}
+	}
+	isc = 1000 * a.IscKA
+	for i := range m.plan.study.Supplies {
+		if s := &m.plan.study.Supplies[i]; a.IscKA == 0 && s.Bus == a.Bus {
+			isc += s.FaultA(m.volts[s.Bus])
+		}
+	}
+	if isc == 0 && m.system.Live(m.bus[a.Bus]) {
+		z, err := m.system.Scan(ctx, m.bus[a.Bus], phasor.Positive, []float64{1}, nil)
+		if err != nil {
+			return current, 0, err
+		}
+		isc = m.volts[a.Bus] / math.Sqrt(3) / cmplx.Abs(z[0])
+	}
+	return end.Phase, isc, nil
+}
+
+func (m *model) warn(o *Outcome, sol *solution) {
+	for _, b := range o.Buses {
+		if !b.Live {
+			o.Warnings = append(o.Warnings, fmt.Sprintf("Bus %s has no supply; it and what stands on it are left out.", b.Name))
+		}
+	}
+	for _, l := range m.plan.study.NonlinearLoads {
+		if d, ok := sol.drawn[l.Name]; ok {
+			if dc := cmplx.Abs(d[0].At(0)) + cmplx.Abs(d[1].At(0)) + cmplx.Abs(d[2].At(0)); dc > 0 {
+				o.Warnings = append(o.Warnings, fmt.Sprintf("%s draws direct current (%.3g A); IEEE 519 does not allow loads that cause a dc offset, and transformers may saturate.", l.Name, dc))
+			}
+		}
+	}
+	for _, x := range o.Measures {
+		if x.Saturated {
+			o.Warnings = append(o.Warnings, fmt.Sprintf("Active filter %s is asked for more than its rating and scales everything down.", x.Name))
+		}
+		if d := x.Duty; d != nil && d.RatedV > 0 && d.VoltageV > 1.1*d.RatedV {
+			o.Warnings = append(o.Warnings, fmt.Sprintf("%s: the capacitors bear %.4g V against %.4g V rated.", x.Name, d.VoltageV, d.RatedV))
+		}
+	}
+}
+
+// activeResult is what an active filter does.
+type activeResult = filter.Compensation
+
+// compensate works out the current of an active filter.
+func (m *model) compensate(x *Measure, drawn map[string][3]phasor.Spectrum) (activeResult, error) {
+	s := m.plan.study
+	var sensed [3]phasor.Spectrum
+	for i := range sensed {
+		sensed[i] = phasor.New(s.Order())
+	}
+	found := 0
+	for i := range s.NonlinearLoads {
+		l := &s.NonlinearLoads[i]
+		if !x.sensesLoad(l) {
+			continue
+		}
+		found++
+		if m.volts[l.Bus] != m.volts[x.Bus] {
+			return activeResult{}, &FieldError{Item: x.Name, Field: "senses", Problem: l.Name + " stands on another voltage level", Remedy: "put the active filter on the voltage level of the loads it senses"}
+		}
+		for p, spectrum := range drawn[l.Name] {
+			for h := range spectrum {
+				sensed[p][h] += spectrum[h]
+			}
+		}
+	}
+	if found == 0 {
+		return activeResult{}, &FieldError{Item: x.Name, Field: "senses", Problem: "there is no non-linear load for it to sense", Remedy: "name the loads it senses, or put it on their bus"}
+	}
+	share := map[int]float64{}
+	for _, t := range x.Shares {
+		share[t.Order] = t.Percent / 100
+	}
+	ceiling := x.MaxOrder
+	if ceiling == 0 {
+		ceiling = 25
+	}
+	a := filter.Active{RatedA: x.RatedA, MaxOrder: ceiling, Share: func(h int) float64 {
+		if v, ok := share[h]; ok {
+			return v
+		}
+		return or(x.Share, 90) / 100
+	}}
+	return a.Compensate(sensed), nil
+}
+
+func (x *Measure) sensesLoad(l *NonlinearLoad) bool {
+	if len(x.Senses) == 0 {
+		return l.Bus == x.Bus
+	}
+	for _, name := range x.Senses {
+		if name == l.Name {
+			return true
+		}
+	}
+	return false
+}

@@ -1,0 +1,146 @@
+package study
+
+import (
+	"fmt"
+	"math"
+	"math/cmplx"
+
+	"quietbus/study/filter"
+	"quietbus/study/phasor"
+)
+
+// measure tells what a measure that is on is made of and bears.
+func (m *model) measure(x *Measure, sol *solution, o *Outcome) MeasureResult {
+	r := MeasureResult{Name: x.Name, Kind: x.Kind, Bus: x.Bus, Notes: m.plan.notes[x.Name]}
+	switch x.Kind {
+	case SingleTuned, HighPass:
+		m.bears(&r, x.Name, m.branch[x.Name], x.RatedKV, "", o)
+	case DetuneBank:
+		for i := range m.plan.banks {
+			if b := &m.plan.banks[i]; b.Name == x.Target {
+				r.Bus = b.Bus
+				m.bears(&r, b.Name, m.branch[b.Name], b.RatedKV, b.Connection, o)
+			}
+		}
+	case RemoveBank:
+		for i := range m.plan.study.Banks {
+			if b := &m.plan.study.Banks[i]; b.Name == x.Target {
+				r.Bus = b.Bus
+			}
+		}
+	case LineReactor:
+		for _, l := range m.plan.study.NonlinearLoads {
+			if l.Name == x.Target {
+				r.Bus = l.Bus
+				r.Components = []Component{m.lineReactor(x, &l, o)}
+			}
+		}
+	case ActiveFilter:
+		m.activeDuty(&r, x, sol.active[x.Name])
+	case LowPassRC, LowPassLC:
+		m.response(&r, x, o)
+	}
+	return r
+}
+
+// bears fills in components and duty of a passive branch, from the current of
+// its worst phase.
+func (m *model) bears(r *MeasureResult, element string, b *filter.Branch, ratedKV float64, connection string, o *Outcome) {
+	e := o.Element(element)
+	worst := filter.Duty{}
+	for _, current := range e.Ends[0].Phase {
+		if d := b.DutyOf(current); d.Current >= worst.Current {
+			worst = d
+		}
+	}
+	loss1, loss, output := 0.0, 0.0, 0.0
+	bus := o.Bus(e.Ends[0].Bus)
+	for p, current := range e.Ends[0].Phase {
+		d := b.DutyOf(current)
+		loss1, loss = loss1+d.Loss1, loss+d.Loss
+		output -= imag(bus.Phase[p].At(1) * cmplx.Conj(current.At(1)))
+	}
+	rated := 1000 * ratedKV
+	note := "rating stated"
+	if rated == 0 {
+		rated = filter.PreferredVoltage(m.needsV(b, worst))
+		note = "next preferred voltage above the duty"
+	}
+	kvar := rated * rated / b.Xc / 1000
+	r.Duty = &Duty{CurrentA1: worst.Current1, CurrentA: worst.Current, VoltageV1: worst.Voltage1, VoltageV: worst.Voltage, PeakV: worst.Peak,
+		RatedV: rated / math.Sqrt(3), RatedA: rated / math.Sqrt(3) / b.Xc, LossW1: loss1, LossW: loss, KvarRated: kvar, KvarOutput: output / 1000}
+	for _, part := range b.Parts() {
+		c := Component{Part: part.Name, Symbol: part.Symbol, Value: part.Value}
+		switch part.Name {
+		case "capacitor":
+			c.Note = fmt.Sprintf("star equivalent; %.4g kvar at %.4g V rated (%s)", kvar, rated, note)
+			if connection == "delta" {
+				c.Note += fmt.Sprintf("; %.4g uF in each side of the delta", 1e6*part.Value/3)
+			}
+		case "reactor":
+			c.Note = fmt.Sprintf("tuned to order %.4g, Q %.3g there", b.TunedOrder(), b.Quality())
+		}
+		r.Components = append(r.Components, c)
+	}
+}
+
+// needsV returns the line-to-line capacitor voltage that keeps the rms and
+// peak duty within the rating itself and the current within 1.3 times its
+// rated value (IEC 60831-1, from memory).
+func (m *model) needsV(b *filter.Branch, d filter.Duty) float64 {
+	return math.Sqrt(3) * math.Max(math.Max(d.Voltage, d.Peak/(math.Sqrt2*1.2)), d.Current*b.Xc/1.3)
+}
+
+func (m *model) lineReactor(x *Measure, l *NonlinearLoad, o *Outcome) Component {
+	v := m.volts[l.Bus]
+	power := 1000 * l.KW / or(l.Displacement, 1)
+	if l.CurrentA > 0 {
+		power = math.Sqrt(3) * v * l.CurrentA
+	}
+	ohm := x.Percent / 100 * v * v / power
+	return Component{Part: "line reactor", Symbol: "L", Value: ohm / (2 * math.Pi * m.plan.study.FrequencyHz),
+		Note: fmt.Sprintf("%.3g %% of the load's own rating, per phase", x.Percent)}
+}
+
+func (m *model) activeDuty(r *MeasureResult, x *Measure, c activeResult) {
+	r.Saturated = c.Saturated
+	r.Duty = &Duty{CurrentA: c.Delivered, RatedA: x.RatedA}
+	if c.Saturated {
+		r.Notes = append(r.Notes, fmt.Sprintf("Asked for %.4g A, rated %.4g A: every order is scaled to %.3g %%.", c.Requested, x.RatedA, 100*x.RatedA/c.Requested))
+	} else {
+		r.Notes = append(r.Notes, fmt.Sprintf("Injects %.4g A of its %.4g A.", c.Delivered, x.RatedA))
+	}
+}
+
+// response fills in gain, lag, components and duty of an outlet low-pass.
+func (m *model) response(r *MeasureResult, x *Measure, o *Outcome) {
+	out, ok := m.outlets[x.Name]
+	if !ok {
+		return
+	}
+	r.Bus = out.load.Bus
+	for h := 1; h <= m.plan.study.Order(); h++ {
+		g := out.pass.Ratio(float64(h))
+		r.Response = append(r.Response, Gain{Order: h, Ratio: cmplx.Abs(g), LagDeg: out.pass.Lag(float64(h))})
+	}
+	if x.Kind == LowPassRC {
+		r.Components = append(r.Components, Component{Part: "series resistor", Symbol: "R", Value: x.ROhm})
+	} else {
+		r.Components = append(r.Components, Component{Part: "series reactor", Symbol: "L", Value: x.LMH / 1000})
+	}
+	r.Components = append(r.Components, Component{Part: "outlet capacitor", Symbol: "C", Value: x.CUF / 1e6, Note: "phase to neutral"})
+	e, outlet := o.Element(out.load.Name), o.Bus(OutletName(x.Name))
+	d := &Duty{}
+	for p, current := range e.Ends[0].Phase {
+		i, v := phasor.RMS(current), phasor.RMS(outlet.Phase[p])
+		if i >= d.CurrentA {
+			d.CurrentA, d.CurrentA1 = i, cmplx.Abs(current.At(1))
+			d.VoltageV, d.VoltageV1, d.PeakV = v, cmplx.Abs(outlet.Phase[p].At(1)), phasor.Peak(outlet.Phase[p])
+		}
+		d.LossW += i * i * out.pass.R
+		d.LossW1 += cmplx.Abs(current.At(1)) * cmplx.Abs(current.At(1)) * out.pass.R
+	}
+	r.Duty = d
+	g1 := r.Response[0]
+	r.Notes = append(r.Notes, fmt.Sprintf("At order 1 the outlet has %.3g %% of the bus voltage and lags it by %.3g degrees.", 100*g1.Ratio, g1.LagDeg))
+}

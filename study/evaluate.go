@@ -1,0 +1,146 @@
+package study
+
+import (
+	"context"
+	"fmt"
+	"slices"
+
+	"quietbus/study/grid"
+	"quietbus/study/phasor"
+)
+
+// Evaluate solves the study with the named measures on: the fundamental by a
+// power flow, orders 2 and above by nodal admittance in symmetrical
+// components, each solution checked; then it assesses the limits and works
+// out what the measures bear. Use Prepare to evaluate one study many times.
+//
+// Errors: FieldErrors for a study that is not valid, *ConflictError for
+// measures that cannot coexist, and the errors of study/grid.
+func Evaluate(ctx context.Context, s *Study, on []string) (*Outcome, error) {
+	p, err := Prepare(s)
+	if err != nil {
+		return nil, err
+	}
+	return p.Evaluate(ctx, on)
+}
+
+// Prepared is a study that has been validated once, ready to be evaluated for
+// many choices of measures. It is immutable and safe for concurrent use. The
+// study must not be changed afterwards: clone it first.
+type Prepared struct{ study *Study }
+
+// Prepare validates s. All problems found come back as one error.
+func Prepare(s *Study) (*Prepared, error) {
+	if problems := s.Validate(); len(problems) > 0 {
+		return nil, FieldErrors(problems)
+	}
+	return &Prepared{s}, nil
+}
+
+// Study returns the study that was prepared.
+func (p *Prepared) Study() *Study { return p.study }
+
+// Evaluate is the function of the same name for a prepared study.
+func (p *Prepared) Evaluate(ctx context.Context, on []string) (*Outcome, error) {
+	plan, err := p.study.apply(on)
+	if err != nil {
+		return nil, err
+	}
+	m, err := plan.build()
+	if err != nil {
+		return nil, err
+	}
+	sol, err := m.solve(ctx)
+	if err != nil {
+		return nil, err
+	}
+	return m.outcome(ctx, sol)
+}
+
+// solution is a solved model: the network's solution, what each non-linear
+// load draws and what each active filter injects.
+type solution struct {
+	net    *grid.Solution
+	drawn  map[string][3]phasor.Spectrum // by non-linear load
+	active map[string]activeResult       // by measure
+}
+
+// solve runs the power flow, derives the harmonic currents from it and solves
+// the orders above.
+func (m *model) solve(ctx context.Context) (*solution, error) {
+	order := m.plan.study.Order()
+	base, err := m.system.Fundamental(ctx)
+	if err != nil {
+		return nil, m.named(err)
+	}
+	sol := &solution{drawn: map[string][3]phasor.Spectrum{}, active: map[string]activeResult{}}
+	var injections []grid.Injection
+	for i := range m.plan.study.NonlinearLoads {
+		l := &m.plan.study.NonlinearLoads[i]
+		bus := m.bus[l.Bus]
+		if !m.system.Live(bus) {
+			continue
+		}
+		lines, err := m.plan.spectrumOf(l)
+		if err != nil {
+			return nil, err
+		}
+		current := drawn(l, lines, order, base.Current(m.element[l.Name]), base.Voltage(bus))
+		sol.drawn[l.Name] = current
+		injections = append(injections, grid.Injection{Bus: bus, Name: l.Name, Current: current})
+	}
+	for _, measure := range m.plan.chosen {
+		if measure.Kind != ActiveFilter || !m.system.Live(m.bus[measure.Bus]) {
+			continue
+		}
+		r, err := m.compensate(measure, sol.drawn)
+		if err != nil {
+			return nil, err
+		}
+		sol.active[measure.Name] = r
+		injections = append(injections, grid.Injection{Bus: m.bus[measure.Bus], Name: measure.Name, Current: r.Drawn})
+	}
+	sol.net, err = m.system.Harmonics(ctx, base, order, injections)
+	if err != nil {
+		return nil, m.named(err)
+	}
+	return sol, nil
+}
+
+// named turns an error of the network into one that names item and field of
+// the study where it can.
+func (m *model) named(err error) error { return asFieldError("", err) }
+
+// Impedance returns the driving-point impedance at a bus with the named
+// measures on, from one order to another, with its peaks and valleys refined.
+// EMFs are shorted and non-linear loads open.
+func (p *Prepared) Impedance(ctx context.Context, on []string, bus string, seq phasor.Sequence, from, to float64) (*ScanResult, error) {
+	plan, err := p.study.apply(on)
+	if err != nil {
+		return nil, err
+	}
+	m, err := plan.build()
+	if err != nil {
+		return nil, err
+	}
+	id, ok := m.bus[bus]
+	if !ok {
+		return nil, &FieldError{Item: bus, Field: "bus", Problem: "is not a bus of this study", Remedy: "choose one of its buses"}
+	}
+	if !m.system.Live(id) {
+		return nil, fmt.Errorf("bus %q has no supply, so it has no impedance to scan", bus)
+	}
+	return m.scan(ctx, "", bus, seq, from, to)
+}
+
+// energised reports which of the study's buses a supply reaches.
+func (m *model) energised() []string {
+	var live []string
+	for name, id := range m.bus {
+		if m.system.Live(id) {
+			live = append(live, name)
+		}
+	}
+	slices.Sort(live)
+	return live
+}
