@@ -3,169 +3,220 @@ package limits
 import (
 	"fmt"
 	"math"
-	"math/cmplx"
+	"strings"
 
 	"quietbus/study/phasor"
 )
 
 // Point is what is assessed: line-to-neutral voltages and line currents by
-// phase (complex rms).
+// phase (complex rms, V and A), and what the rules rest on.
 type Point struct {
 	NominalV float64 // line to line, V
 	Voltage  [3]phasor.Spectrum
 	Current  [3]phasor.Spectrum
 	IscA     float64 // maximum short-circuit current, A
 	DemandA  float64 // maximum demand load current IL, A
+
+	// LowOrderAllowance applies the rule that raises the other limits where
+	// the listed low orders are held far below theirs (as behind multi-pulse
+	// converters). Off by default: it has to be agreed with the supplier.
+	LowOrderAllowance bool
+	// Percentile applies the document's multiplier for a measured statistic,
+	// one of the set's own; nil is the plain limit.
+	Percentile *Percentile
 }
 
-// NotAssessedError says why a quantity was not assessed.
-type NotAssessedError struct{ Quantity, Reason string }
+// NotAssessedError says why a quantity was not assessed. What is not assessed
+// must never be counted as met.
+type NotAssessedError struct {
+	Quantity string // "voltages" or "currents"
+	Reason   string // why, and what would help
+}
 
 func (e *NotAssessedError) Error() string { return e.Quantity + ": " + e.Reason }
 
-// Voltage returns the voltage rows of a point: each order the set limits, then
-// THD. IEEE 519 sets refer to the nominal voltage, all others to the
-// fundamental of the moment. The worst phase is shown. A set without voltage
-// limits for the point's class, or a point without voltage, is a
-// *NotAssessedError.
+var phaseNames = [3]string{"a", "b", "c"}
+
+// Voltage returns the voltage rows of a point: each order that the set limits
+// and the spectra hold, then THD. The worst phase is shown. A set that limits
+// no voltage at all gives no rows and no error; a set without limits for the
+// point's voltage, or a point without voltage, gives a *NotAssessedError.
 func (s *Set) Voltage(p Point) ([]Row, error) {
-	t := s.voltageTable(p.NominalV)
-	if t == nil {
-		return nil, &NotAssessedError{"voltages", s.Title + " has no limits for this voltage"}
+	if s.volts == nil {
+		return nil, nil
 	}
-	if cmplx.Abs(p.Voltage[0].At(1))+cmplx.Abs(p.Voltage[1].At(1))+cmplx.Abs(p.Voltage[2].At(1)) == 0 {
-		return nil, &NotAssessedError{"voltages", "the bus has no voltage"}
+	missing := func(reason string, args ...any) ([]Row, error) {
+		return nil, &NotAssessedError{"voltages", fmt.Sprintf(reason, args...)}
 	}
-	top := min(s.Order, p.Voltage[0].Order())
-	base := func(phase int) float64 {
-		if t.Each > 0 {
-			return p.NominalV / math.Sqrt(3)
-		}
-		return cmplx.Abs(p.Voltage[phase].At(1))
+	if !(p.NominalV > 0) {
+		return missing("the nominal voltage of the point is not known")
 	}
-	rows := make([]Row, 0, top+1)
-	prefix := s.Title + " " + t.Table
-	for h := 2; h <= top; h++ {
-		limit, words := t.limit(h)
-		if limit > 0 {
-			rows = append(rows, worst(Row{Quantity: "voltage", Order: h, Limit: limit, Rule: prefix + words, Mark: t.Mark}, p.Voltage, base,
-				func(x phasor.Spectrum) float64 { return cmplx.Abs(x.At(h)) }))
-		}
+	c := s.volts.find(p.NominalV, math.NaN())
+	if c == nil {
+		return missing("%s has no voltage limits for %.4g kV: it covers %s", s.Title, p.NominalV/1000, s.volts.covers())
 	}
-	return append(rows, worst(Row{Quantity: "voltage", Index: "THD", Limit: t.Total, Rule: prefix + ", THD", Mark: t.Mark}, p.Voltage, base,
-		func(x phasor.Spectrum) float64 { return phasor.Distortion(upTo(x, top)) })), nil
+	var of [3]float64
+	live := false
+	for i, x := range p.Voltage {
+		of[i] = math.Sqrt(size2(x.At(1)))
+		live = live || of[i] > 0
+	}
+	if !live {
+		return missing("the point has no voltage")
+	}
+	if s.volts.of == ofNominal {
+		v := p.NominalV / math.Sqrt(3)
+		of = [3]float64{v, v, v}
+	}
+	return s.rows("voltage", s.volts, c, p.Voltage, of, p), nil
 }
 
-func upTo(x phasor.Spectrum, order int) phasor.Spectrum { return x[:min(len(x), order+1)] }
+// Current returns the current rows of a point: each order that the set limits
+// and the spectra hold, then the direct component where there is one and the
+// document forbids it, then TDD (THD where the set is of the fundamental). The
+// worst phase is shown.
+//
+// Where currents cannot be assessed, for want of limits in the set, of the
+// demand current IL or of the short-circuit current Isc, it returns a
+// *NotAssessedError that says so.
+func (s *Set) Current(p Point) ([]Row, error) {
+	missing := func(reason string, args ...any) ([]Row, error) {
+		return nil, &NotAssessedError{"currents", fmt.Sprintf(reason, args...)}
+	}
+	ratio := p.IscA / p.DemandA
+	switch {
+	case s.amperes == nil:
+		return missing("%s has no current limits", s.Title)
+	case s.amperes.of == ofDemand && !(p.DemandA > 0):
+		return missing("no maximum demand load current IL is stated, which every current limit of %s is a percentage of", s.Title)
+	case s.amperes.needsRatio() && !(p.IscA > 0):
+		return missing("no short-circuit current Isc is known at the point, by which %s chooses its row", s.Title)
+	case s.amperes.needsRatio() && !(p.DemandA > 0):
+		return missing("no maximum demand load current IL is stated, by which %s chooses its row", s.Title)
+	case !(p.NominalV > 0):
+		return missing("the nominal voltage of the point is not known")
+	case len(p.Current[0]) < 2 && len(p.Current[1]) < 2 && len(p.Current[2]) < 2:
+		return missing("no current is known at the point")
+	}
+	c := s.amperes.find(p.NominalV, ratio)
+	if c == nil {
+		return missing("%s has no current limits for %.4g kV and Isc/IL %.4g: it covers %s", s.Title, p.NominalV/1000, ratio, s.amperes.covers())
+	}
+	of := [3]float64{p.DemandA, p.DemandA, p.DemandA}
+	if s.amperes.of == ofFundamental {
+		for i, x := range p.Current {
+			of[i] = math.Sqrt(size2(x.At(1)))
+		}
+	}
+	return s.rows("current", s.amperes, c, p.Current, of, p), nil
+}
 
-func (s *Set) voltageTable(v float64) *VoltageTable {
-	for i := range s.Volts {
-		if inClass(v, s.Volts[i].AboveV, s.Volts[i].ToV) {
-			return &s.Volts[i]
+// find returns the class for a voltage (V) and a short-circuit ratio, nil when
+// there is none. A ratio that is not a number is left out of account.
+func (s *section) find(v, ratio float64) *class {
+	for i := range s.classes {
+		c := &s.classes[i]
+		if c.in(v) && (math.IsNaN(ratio) || c.holds(ratio)) {
+			return c
 		}
 	}
 	return nil
 }
 
-func (t *VoltageTable) limit(h int) (float64, string) {
-	if t.Each > 0 {
-		return t.Each, ", each order"
-	}
-	for _, r := range t.Orders {
-		if r.holds(h) {
-			return r.at(h), ", " + r.words(h)
+// covers names the voltage and ratio ranges of a section's classes.
+func (s *section) covers() string {
+	var names []string
+	for i := range s.classes {
+		if n := s.classes[i].fullName; len(names) == 0 || names[len(names)-1] != n {
+			names = append(names, n)
 		}
 	}
-	return 0, ""
+	return strings.Join(names, "; ")
 }
 
-// Current returns the current rows of a point in per cent of IL: each order,
-// then TDD. Missing IL or Isc, or a set without current limits, is a
-// *NotAssessedError that says so.
-func (s *Set) Current(p Point) ([]Row, error) {
-	switch {
-	case s.Amperes == nil:
-		return nil, &NotAssessedError{"currents", s.Title + " has no current limits"}
-	case p.DemandA <= 0:
-		return nil, &NotAssessedError{"currents", "no maximum demand load current IL is stated"}
-	case p.IscA <= 0:
-		return nil, &NotAssessedError{"currents", "no short-circuit current is known at the point"}
+// rows assesses every order of a class, then direct component and total.
+func (s *Set) rows(quantity string, part *section, c *class, x [3]phasor.Spectrum, of [3]float64, p Point) []Row {
+	computed := 0
+	for _, phase := range x {
+		computed = max(computed, phase.Order())
 	}
-	ratio := p.IscA / p.DemandA
-	t, r := s.Amperes.row(p.NominalV, ratio)
-	if r == nil {
-		return nil, &NotAssessedError{"currents", s.Title + " has no current limits for this voltage"}
-	}
-	top := min(s.Order, p.Current[0].Order())
-	prefix := fmt.Sprintf("%s %s, Isc/IL %s", s.Title, t.Table, r.words())
-	base := func(int) float64 { return p.DemandA }
-	rows := make([]Row, 0, top+1)
+	top := min(c.top(), computed)
+	rows := make([]Row, 0, top+2)
 	for h := 2; h <= top; h++ {
-		for i, b := range s.Amperes.Bands {
-			if h < b[0] || h > b[1] {
-				continue
-			}
-			share, words := s.Amperes.even(h)
-			rows = append(rows, worst(Row{Quantity: "current", Order: h, Limit: r.Limits[i] * share, Mark: t.Mark,
-				Rule: fmt.Sprintf("%s, orders %d to %d%s", prefix, b[0], b[1], words)}, p.Current, base,
-				func(x phasor.Spectrum) float64 { return cmplx.Abs(x.At(h)) }))
-		}
-	}
-	return append(rows, worst(Row{Quantity: "current", Index: "TDD", Limit: r.Total, Rule: prefix + ", TDD", Mark: t.Mark}, p.Current, base,
-		func(x phasor.Spectrum) float64 { return phasor.Distortion(upTo(x, top)) })), nil
-}
-
-// row returns the table of a voltage class and its row for Isc/IL. Lower
-// bounds are inclusive; exactly 1000 stays in the row below, the stricter.
-func (c *CurrentSection) row(v, ratio float64) (*CurrentTable, *CurrentRow) {
-	for i := range c.Tables {
-		t := &c.Tables[i]
-		if !inClass(v, t.AboveV, t.ToV) {
+		if c.limit[h] == 0 {
 			continue
 		}
-		for j := range t.Rows {
-			r := &t.Rows[j]
-			if r.ToRatio == nil || ratio < *r.ToRatio || (ratio == *r.ToRatio && ratio == 1000) {
-				return t, r
+		row := Row{Quantity: quantity, Order: h, Limit: c.limit[h], Rule: c.rule[h], Mark: c.mark[h]}
+		row.worst(x, of, func(phase phasor.Spectrum) float64 { return size2(phase.At(h)) })
+		rows = append(rows, row)
+	}
+	if p.LowOrderAllowance {
+		allow(part.lowOrder, rows)
+	}
+	if d := part.direct; d != nil {
+		row := Row{Quantity: quantity, Rule: s.Title + " " + d.rule, Mark: d.mark}
+		row.worst(x, of, func(phase phasor.Spectrum) float64 { return size2(phase.At(0)) })
+		// Below a billionth of the base it is the rounding of a solution.
+		if row.Value > 1e-7 {
+			row.Share = 1 + row.Value
+			rows = append(rows, row)
+		}
+	}
+	if c.total > 0 {
+		row := Row{Quantity: quantity, Index: part.index(), Limit: c.total, Rule: c.totalRule, Mark: c.totalMark}
+		to := c.totalTo
+		if computed < to {
+			to = computed
+			row.Rule += fmt.Sprintf(" (computed to order %d)", to)
+		}
+		row.worst(x, of, func(phase phasor.Spectrum) float64 {
+			var sum float64
+			for h := 2; h <= to && h < len(phase); h++ {
+				sum += size2(phase[h])
 			}
+			return sum
+		})
+		rows = append(rows, row)
+	}
+	if q := p.Percentile; q != nil && q.Quantity == quantity && q.Multiplier != 1 {
+		for i := range rows {
+			rows[i].scale(q.Multiplier, fmt.Sprintf("x %g for the %s (%s)", q.Multiplier, q.Statistic, q.Rule), q.Mark)
 		}
 	}
-	return nil, nil
+	return rows
 }
 
-func (r *CurrentRow) words() string {
-	switch {
-	case r.ToRatio == nil:
-		return fmt.Sprintf("above %g", r.FromRatio)
-	case r.FromRatio == 0:
-		return fmt.Sprintf("below %g", *r.ToRatio)
+func (s *section) index() string {
+	if s.of == ofDemand {
+		return "TDD"
 	}
-	return fmt.Sprintf("%g to %g", r.FromRatio, *r.ToRatio)
-}
-
-func (c *CurrentSection) even(h int) (float64, string) {
-	if h%2 == 1 {
-		return 1, ""
-	}
-	for _, e := range c.Even {
-		if h <= e.ToOrder {
-			return e.Share, fmt.Sprintf(", even order: %g %%", 100*e.Share)
-		}
-	}
-	return 1, ""
+	return "THD"
 }
 
 // worst fills in value, phase and share from the phase with the highest value.
-func worst(row Row, x [3]phasor.Spectrum, base func(int) float64, size func(phasor.Spectrum) float64) Row {
-	for i, phase := range [3]string{"a", "b", "c"} {
-		b := base(i)
-		if b == 0 {
+func (r *Row) worst(x [3]phasor.Spectrum, of [3]float64, square func(phasor.Spectrum) float64) {
+	for i, phase := range x {
+		if !(of[i] > 0) {
 			continue
 		}
-		if v := 100 * size(x[i]) / b; i == 0 || v > row.Value {
-			row.Value, row.Phase = v, phase
+		if v := 100 * math.Sqrt(square(phase)) / of[i]; r.Phase == "" || v > r.Value {
+			r.Value, r.Phase = v, phaseNames[i]
 		}
 	}
-	row.Share = row.Value / row.Limit
-	return row
+	if r.Limit > 0 {
+		r.Share = r.Value / r.Limit
+	}
 }
+
+// scale multiplies the limit of a row and says why in its rule.
+func (r *Row) scale(by float64, why string, mark Mark) {
+	if r.Limit == 0 {
+		return
+	}
+	r.Limit *= by
+	r.Share = r.Value / r.Limit
+	r.Rule += ", " + why
+	r.Mark = weaker(r.Mark, mark)
+}
+
+func size2(v complex128) float64 { return real(v)*real(v) + imag(v)*imag(v) }

@@ -1,103 +1,159 @@
 package limits
 
 import (
-	"bytes"
-	_ "embed"
-	"encoding/json"
+	"embed"
 	"fmt"
+	"math"
+	"slices"
+	"sync"
 )
 
-// Set is one published (or user's) limit set.
+// Set is one limit set: a published one, or a user's. It is immutable and may
+// be shared.
 type Set struct {
-	ID       string `json:"id"`
-	Title    string `json:"title"`
-	Document string `json:"document"`
-	Edition  string `json:"edition"`
-	About    string `json:"about"`
-	// Order is the highest order that the set's totals take in.
-	Order   int             `json:"order"`
-	Volts   []VoltageTable  `json:"voltage,omitempty"`
-	Amperes *CurrentSection `json:"current,omitempty"`
+	ID       string // word in the study file
+	Title    string // words on screen and in print
+	Document string
+	Edition  string
+	About    string // what it limits, of what base, and how sure its values are
+
+	Percentiles []Percentile // how the document treats measured statistics
+	Notches     []Notch      // commutation notches, where the document has them
+
+	volts   *section // nil when it limits no voltage
+	amperes *section // nil when it limits no current
 }
 
-// VoltageTable holds the voltage limits of one voltage class (V, line to
-// line; above the lower bound, up to and including the upper).
-type VoltageTable struct {
-	AboveV     float64    `json:"aboveV"`
-	ToV        *float64   `json:"toV"` // nil: no upper bound
-	Table      string     `json:"table"`
-	Each       float64    `json:"each,omitempty"`   // one limit for every order, per cent
-	Orders     []OrderRow `json:"orders,omitempty"` // or limits by order
-	Total      float64    `json:"total"`            // THD, per cent
-	Mark       Mark       `json:"mark"`
-	Confidence string     `json:"confidence,omitempty"`
+// Percentile is a document's rule for one statistic of measured values.
+type Percentile struct {
+	Quantity   string  // "voltage" or "current"
+	Statistic  string  // "daily 99th percentile of 3 s values"
+	Multiplier float64 // of the limit
+	Rule       string  // clause
+	Mark       Mark
 }
 
-// OrderRow is the limit a (n/h) + b per cent for the orders of one kind in a
-// range: "odd" (not divisible by three), "triplen" (odd) or "even".
-type OrderRow struct {
-	From int     `json:"from"`
-	To   int     `json:"to"`
-	Kind string  `json:"kind"`
-	A    float64 `json:"a,omitempty"`
-	N    float64 `json:"n,omitempty"`
-	B    float64 `json:"b,omitempty"`
+// Notch is a document's limit on commutation notches for one kind of system.
+type Notch struct {
+	System       string
+	DepthPercent float64
+	AreaVus      float64 // V us, at AtV
+	AtV          float64 // line-to-line voltage the area is stated for
+	Rule         string
+	Mark         Mark
 }
 
-// CurrentSection holds current limits in per cent of the maximum demand load
-// current, by voltage class and short-circuit ratio Isc/IL.
-type CurrentSection struct {
-	Bands  [][2]int       `json:"bands"` // first and last order of each band
-	Even   []EvenRule     `json:"even"`
-	Tables []CurrentTable `json:"tables"`
+// AreaAt returns the notch area limit in V us at a line-to-line voltage in V:
+// the stated one scaled by the voltage.
+func (n Notch) AreaAt(v float64) float64 { return n.AreaVus * v / n.AtV }
+
+// base says what per cent are of.
+type base string
+
+const (
+	ofNominal     base = "nominal"     // the nominal voltage
+	ofFundamental base = "fundamental" // the fundamental of the moment
+	ofDemand      base = "demand"      // the maximum demand load current IL
+)
+
+func (b base) words() string {
+	switch b {
+	case ofNominal:
+		return "of the nominal voltage"
+	case ofDemand:
+		return "of IL"
+	}
+	return "of the fundamental"
 }
 
-// EvenRule gives even orders a share of their band's limit, up to an order.
-type EvenRule struct {
-	ToOrder int     `json:"toOrder"`
-	Share   float64 `json:"share"`
+// section is all a set says about voltage, or about current.
+type section struct {
+	of       base
+	classes  []class
+	direct   *directRule
+	lowOrder []allowance
 }
 
-// CurrentTable is the current table of one voltage class.
-type CurrentTable struct {
-	AboveV     float64      `json:"aboveV"`
-	ToV        *float64     `json:"toV"`
-	Table      string       `json:"table"`
-	Rows       []CurrentRow `json:"rows"`
-	Mark       Mark         `json:"mark"`
-	Confidence string       `json:"confidence,omitempty"`
+// class is the part of a table that holds for one range of voltage and of
+// short-circuit ratio, laid out by order.
+type class struct {
+	aboveV, fromV, toV  float64 // above, at or above; up to and including
+	fromRatio, toRatio  float64 // Isc/IL: at or above, below
+	toRatioIncluded     bool
+	limit               []float64 // by order, per cent; 0 where there is none
+	rule                []string  // by order
+	mark                []Mark    // by order
+	total               float64   // THD or TDD, per cent; 0 where there is none
+	totalTo             int       // highest order in the total
+	totalRule, fullName string
+	totalMark           Mark
 }
 
-// CurrentRow holds the limits by band for one range of Isc/IL.
-type CurrentRow struct {
-	FromRatio float64   `json:"fromRatio"`
-	ToRatio   *float64  `json:"toRatio"`
-	Limits    []float64 `json:"limits"`
-	Total     float64   `json:"total"` // TDD
+func (c *class) top() int { return len(c.limit) - 1 }
+
+type directRule struct {
+	rule string
+	mark Mark
 }
 
-//go:embed data/sets.json
-var published []byte
+// allowance raises the limits of all but the listed orders while those stay
+// within a share of theirs.
+type allowance struct {
+	orders     []int
+	share      float64
+	multiplier float64
+	rule       string
+	mark       Mark
+}
 
-var sets = mustParse(published)
+// in reports whether v (V) lies in the class.
+func (c *class) in(v float64) bool { return v > c.aboveV && v >= c.fromV && v <= c.toV }
 
-func mustParse(data []byte) []*Set {
-	var list []*Set
-	dec := json.NewDecoder(bytes.NewReader(data))
-	dec.DisallowUnknownFields()
-	if err := dec.Decode(&list); err != nil {
-		panic("limits: the embedded sets do not parse: " + err.Error())
+// holds reports whether a short-circuit ratio lies in the class.
+func (c *class) holds(ratio float64) bool {
+	return ratio >= c.fromRatio && (ratio < c.toRatio || c.toRatioIncluded && ratio == c.toRatio)
+}
+
+// needsRatio reports whether any class depends on the short-circuit ratio.
+func (s *section) needsRatio() bool {
+	return slices.ContainsFunc(s.classes, func(c class) bool { return c.fromRatio > 0 || !math.IsInf(c.toRatio, 1) })
+}
+
+//go:embed data/*.json
+var data embed.FS
+
+// published lists the embedded sets in the order of a list on screen.
+var published = []string{
+	"ieee519-2022", "ieee519-2014",
+	"iec61000-2-4-class1", "iec61000-2-4-class2", "iec61000-2-4-class3",
+	"iec61000-2-2", "iec61000-3-6-mv", "iec61000-3-6-hv",
+	"en50160-lv", "en50160-mv",
+}
+
+// sets reads the embedded sets once. A set that does not read is a fault of
+// the build, which a test catches.
+var sets = sync.OnceValue(func() []*Set {
+	list := make([]*Set, 0, len(published))
+	for _, id := range published {
+		text, err := data.ReadFile("data/" + id + ".json")
+		if err != nil {
+			panic(fmt.Sprintf("limits: %v", err))
+		}
+		s, err := parse(text, false)
+		if err != nil {
+			panic(fmt.Sprintf("limits: %s: %v", id, err))
+		}
+		list = append(list, s)
 	}
 	return list
-}
+})
 
-// Sets returns every published set. The sets are shared and must not be
-// changed.
-func Sets() []*Set { return sets }
+// Sets returns every published set, in the order of a list on screen.
+func Sets() []*Set { return slices.Clone(sets()) }
 
-// Lookup returns the set of an identifier.
+// Lookup returns the published set of an identifier.
 func Lookup(id string) (*Set, bool) {
-	for _, s := range sets {
+	for _, s := range sets() {
 		if s.ID == id {
 			return s, true
 		}
@@ -105,29 +161,22 @@ func Lookup(id string) (*Set, bool) {
 	return nil, false
 }
 
-func (r OrderRow) holds(h int) bool {
-	if h < r.From || h > r.To {
-		return false
+// LimitsVoltage reports whether the set limits any voltage.
+func (s *Set) LimitsVoltage() bool { return s.volts != nil }
+
+// LimitsCurrent reports whether the set limits any current.
+func (s *Set) LimitsCurrent() bool { return s.amperes != nil }
+
+// MaxOrder returns the highest order that the set limits or takes into a
+// total. A study that computes fewer orders cannot speak for the rest.
+func (s *Set) MaxOrder() int {
+	top := 0
+	for _, part := range []*section{s.volts, s.amperes} {
+		if part != nil {
+			for i := range part.classes {
+				top = max(top, part.classes[i].top())
+			}
+		}
 	}
-	switch r.Kind {
-	case "even":
-		return h%2 == 0
-	case "triplen":
-		return h%2 == 1 && h%3 == 0
-	}
-	return h%2 == 1 && h%3 != 0
+	return top
 }
-
-func (r OrderRow) at(h int) float64 { return r.A*r.N/float64(h) + r.B }
-
-func (r OrderRow) words(h int) string {
-	if r.A == 0 {
-		return fmt.Sprintf("order %d", h)
-	}
-	if r.B == 0 {
-		return fmt.Sprintf("order %d: %.4g x %.4g/h", h, r.A, r.N)
-	}
-	return fmt.Sprintf("order %d: %.4g x %.4g/h %+.4g", h, r.A, r.N, r.B)
-}
-
-func inClass(v, above float64, to *float64) bool { return v > above && (to == nil || v <= *to) }
