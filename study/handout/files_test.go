@@ -5,6 +5,8 @@ import (
 	"path/filepath"
 	"strings"
 	"testing"
+
+	"quietbus/study/figure"
 )
 
 func names(t *testing.T, dir string) []string {
@@ -90,5 +92,16 @@ func TestStoreFails(t *testing.T) {
 	}
 	if err := store(locked, []file{{"a.txt", nil}}); err == nil || !strings.Contains(err.Error(), locked) {
 		t.Errorf("a folder without permission: %v", err)
+	}
+}
+
+func TestFileStems(t *testing.T) {
+	var list []drawn
+	for _, key := range []string{"spectrum-Board A", "spectrum-Board-A", "Ω/..\\", "", strings.Repeat("x", 200)} {
+		list = append(list, drawn{Figure: &figure.Figure{Key: key}})
+	}
+	got := strings.Join(fileStems(list), " ")
+	if want := "spectrum-board-a spectrum-board-a-2 figure figure-2 " + strings.Repeat("x", 80); got != want {
+		t.Errorf("%s, want %s", got, want)
 	}
 }

@@ -5,6 +5,8 @@
 package handout
 
 import (
+	"bytes"
+	"context"
 	"crypto/sha256"
 	"encoding/hex"
 	"encoding/json"
@@ -69,6 +71,33 @@ func (in *Input) study() *study.Study {
 	return nil
 }
 
+// Report says what was written.
+type Report struct {
+	Dir   string   // the folder
+	Files []string // in it, with slashes, in the order of its CONTENTS.txt
+}
+
+// Write makes the handout of in and puts it into the folder dir, which is made
+// when it is not there: handout.pdf, each figure as SVG, PNG and PDF with
+// captions, results.json, and tables for a spreadsheet. Everything but the
+// date depends on in alone. It returns an error that names the folder or the
+// file when one cannot be written; the files that are there stay whole.
+func Write(ctx context.Context, dir string, in Input, opt Options) (*Report, error) {
+	list, err := files(ctx, in, opt)
+	if err != nil {
+		return nil, err
+	}
+	if err := store(dir, list); err != nil {
+		return nil, err
+	}
+	r := &Report{Dir: dir}
+	for _, f := range list {
+		r.Files = append(r.Files, f.name)
+	}
+	r.Files = append(r.Files, contentsName)
+	return r, nil
+}
+
 // digest returns the sha256 of the study file in hexadecimal.
 func (in *Input) digest() (string, error) {
 	raw := in.File
@@ -81,4 +110,67 @@ func (in *Input) digest() (string, error) {
 	}
 	sum := sha256.Sum256(raw)
 	return hex.EncodeToString(sum[:]), nil
+}
+
+// files makes every file of the handout.
+func files(ctx context.Context, in Input, opt Options) ([]file, error) {
+	if in.After == nil {
+		return nil, fmt.Errorf("the handout needs an evaluated study")
+	}
+	if opt.Date.IsZero() {
+		opt.Date = time.Now()
+	}
+	doc, err := NewResults(in)
+	if err != nil {
+		return nil, err
+	}
+	set, err := figures(ctx, &in, in.compared())
+	if err != nil {
+		return nil, err
+	}
+	pdf, err := printed(ctx, in, doc, set, opt)
+	if err != nil {
+		return nil, err
+	}
+	var results bytes.Buffer
+	if _, err := doc.WriteTo(&results); err != nil {
+		return nil, err
+	}
+	list := []file{{"handout.pdf", pdf}, {"results.json", results.Bytes()}}
+	pictures, err := figureFiles(ctx, set, opt.Date)
+	if err != nil {
+		return nil, err
+	}
+	tables, err := tableFiles(doc)
+	if err != nil {
+		return nil, err
+	}
+	return append(append(list, tables...), pictures...), nil
+}
+
+// compared returns the outcome that After is compared with, nil when there is
+// nothing to compare.
+func (in *Input) compared() *study.Outcome {
+	if in.Before == in.After || len(in.After.On) == 0 {
+		return nil
+	}
+	return in.Before
+}
+
+// tableFiles returns the workbook and the same tables as CSV.
+func tableFiles(doc *Results) ([]file, error) {
+	list := sheets(doc)
+	book, err := workbook(list)
+	if err != nil {
+		return nil, err
+	}
+	out := []file{{"tables.xlsx", book}}
+	for _, s := range list {
+		raw, err := s.csv()
+		if err != nil {
+			return nil, fmt.Errorf("table %s: %w", s.name, err)
+		}
+		out = append(out, file{"tables/" + s.name + ".csv", raw})
+	}
+	return out, nil
 }

@@ -17,22 +17,19 @@ type printer struct {
 	study         *study.Study
 	before, after *study.Outcome // before is nil when there is nothing to compare
 	doc           *Results
-	figures       []placed
+	figures       *figureSet
 }
 
 // printed returns the summary as a PDF.
-func printed(ctx context.Context, in Input, doc *Results, figures []placed, opt Options) ([]byte, error) {
+func printed(ctx context.Context, in Input, doc *Results, set *figureSet, opt Options) ([]byte, error) {
 	s := in.study()
 	p := &printer{
 		book:    newBook(newCanvas(s.Title.Study, s.Title.Author, opt.Date), opt.Paper),
 		study:   s,
-		before:  in.Before,
+		before:  in.compared(),
 		after:   in.After,
 		doc:     doc,
-		figures: figures,
-	}
-	if p.before == in.After || len(in.After.On) == 0 {
-		p.before = nil
+		figures: set,
 	}
 	p.open(false)
 	for _, part := range []func(){

@@ -1,7 +1,74 @@
 package handout
 
-// placed is a figure with its place in the summary.
-type placed struct{}
+import (
+	"strings"
 
-func (p *printer) singleLine() {}
-func (p *printer) evidence()   {}
+	"gonum.org/v1/plot/vg"
+
+	"quietbus/study/figure"
+)
+
+// singleLine puts the single-line on the first page when it fits there in a
+// readable size, else on a page of its own.
+func (p *printer) singleLine() {
+	f := p.figures.single
+	if f == nil {
+		return
+	}
+	const caption = vg.Length(30)
+	w, h := f.Size.X, f.Size.Y
+	scale := min(1, p.width()/w)
+	if lying := h < w*0.8; p.room() < h*scale+caption+8 || scale < 0.75 {
+		p.open(lying)
+		scale = min(p.width()/w, (p.room()-caption)/h)
+	}
+	p.skip(8)
+	p.placeIn(*f, marginLeft, p.width(), h*scale+caption)
+}
+
+// evidence sets the figures on lying pages: wide ones over the whole width,
+// others two and two.
+func (p *printer) evidence() {
+	const gap = vg.Length(24)
+	for _, sh := range p.figures.sheets {
+		p.open(true)
+		p.section(sh.title, 0)
+		rows := sh.rows()
+		h := (p.room() - vg.Length(len(rows)-1)*10) / vg.Length(max(len(rows), 2))
+		for _, row := range rows {
+			top := p.y
+			for k, f := range row {
+				x, w := marginLeft, p.width()
+				if !f.wide {
+					w = (w - gap) / 2
+					x += vg.Length(k) * (w + gap)
+				}
+				p.y = top
+				p.placeIn(f, x, w, h)
+			}
+			p.y = top - h - 10
+		}
+	}
+	if len(p.figures.sheets) > 0 {
+		p.open(false)
+	}
+}
+
+// placeIn draws a figure with its caption into width w and height h below the
+// cursor, and moves the cursor below it.
+func (p *printer) placeIn(f drawn, x, w, h vg.Length) {
+	lines := p.wrap(w, []span{{p.small.bold(), f.Title + "  "}, {p.muted, strings.TrimSpace(f.Caption)}})
+	text := vg.Length(4)
+	for _, l := range lines {
+		text += l.height
+	}
+	bottom := p.y - (h - text)
+	p.Push()
+	f.Draw(p.part(x, bottom, x+w, p.y), figure.Print())
+	p.Pop()
+	p.y = bottom - 4
+	for _, l := range lines {
+		p.y -= l.height
+		p.set(l, x, p.y+l.height*0.27)
+	}
+}

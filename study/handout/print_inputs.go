@@ -18,23 +18,13 @@ func (p *printer) assumptions() {
 			by[v.Origin] = append(by[v.Origin], v)
 		}
 	}
-	assumed := by[string(study.Assumed)]
-	if len(assumed) == 0 {
-		p.paragraph(span{p.body, "No value is marked as assumed."})
-	} else {
-		p.paragraph(span{p.body, fmt.Sprintf("%s assumed. The result holds only as far as they do; confirm them first.", counted(len(assumed), "value is", "values are"))})
-		p.skip(3)
-		p.originTable("Assumed", assumed, true)
+	text := "No value is marked as assumed."
+	if n := len(by[string(study.Assumed)]); n > 0 {
+		text = fmt.Sprintf("%s assumed. The result holds only as far as they do; confirm them first.", counted(n, "value is", "values are"))
 	}
-	for _, o := range []struct {
-		origin study.Origin
-		title  string
-	}{{study.Measured, "Measured"}, {study.Given, "Given"}} {
-		if list := by[string(o.origin)]; len(list) > 0 {
-			p.skip(8)
-			p.originTable(o.title, list, false)
-		}
-	}
+	p.paragraph(span{p.body, text})
+	p.skip(3)
+	p.originTable(by)
 	p.unstatedInputs(by[unstated])
 	p.defaults()
 }
@@ -54,23 +44,34 @@ func quantity(v InputValue) bool {
 	return false
 }
 
-func (p *printer) originTable(title string, list []InputValue, slanted bool) {
+// originTable lists the values with an origin, assumed ones first and in
+// italics.
+func (p *printer) originTable(by map[string][]InputValue) {
 	t := &table{columns: []column{
-		{head: title, min: 84}, {head: "Quantity", min: 84}, {head: "Value", align: point}, {head: ""}, {head: "Source or reason", flex: 1, min: 100},
+		{head: "Item", min: 84}, {head: "Quantity", min: 84}, {head: "Value", align: point}, {head: ""}, {head: "Source or reason", flex: 1, min: 100},
 	}}
-	last := ""
-	for _, v := range list {
-		cells := plain(v.Item, v.Label, valueText(v), v.Unit, v.Note)
-		if v.Item == last {
-			cells[0].text = ""
+	for _, origin := range []study.Origin{study.Assumed, study.Measured, study.Given} {
+		list := by[string(origin)]
+		if len(list) == 0 {
+			continue
 		}
-		last = v.Item
-		if slanted {
-			cells[2].style = p.small.italic()
+		t.group(strings.ToUpper(string(origin[:1])) + string(origin[1:]))
+		last := ""
+		for _, v := range list {
+			cells := plain(v.Item, v.Label, valueText(v), v.Unit, v.Note)
+			if v.Item == last {
+				cells[0].text = ""
+			}
+			last = v.Item
+			if origin == study.Assumed {
+				cells[2].style = p.small.italic()
+			}
+			t.add(cells...)
 		}
-		t.add(cells...)
 	}
-	p.table(t, 0)
+	if len(t.rows) > 0 {
+		p.table(t, 0)
+	}
 }
 
 // valueText returns a value as the study file has it.

@@ -121,7 +121,10 @@ func (p *printer) dataSheet(r *study.MeasureResult) {
 		title += ", bus " + r.Bus
 	}
 	const gap = vg.Length(22)
-	parts, duty := p.partsTable(r), p.dutyTable(r)
+	parts, duty, response := p.partsTable(r), p.dutyTable(r), responseTable(r)
+	if duty == nil {
+		duty, response = response, nil
+	}
 	half := (p.width() - gap) / 2
 	p.subsection(title, max(p.tableHeight(parts, half), p.tableHeight(duty, half)))
 	if r.Saturated {
@@ -136,9 +139,11 @@ func (p *printer) dataSheet(r *study.MeasureResult) {
 	case duty != nil:
 		p.table(duty, half)
 	}
-	if len(r.Response) > 0 {
+	if response != nil {
 		p.skip(4)
-		p.table(responseTable(r), half)
+		p.table(response, half)
+	}
+	if len(r.Response) > 0 {
 		p.note("Outlet voltage over bus voltage by order, with the load behind the filter as the study describes it.")
 	}
 	for _, text := range r.Notes {
@@ -232,6 +237,9 @@ func (p *printer) dutyTable(r *study.MeasureResult) *table {
 }
 
 func responseTable(r *study.MeasureResult) *table {
+	if len(r.Response) == 0 {
+		return nil
+	}
 	t := &table{columns: []column{
 		{head: "Order", align: right}, {head: "Gain", align: point}, {head: "Lag", unit: "deg", align: point}, {head: "", flex: 1},
 	}}

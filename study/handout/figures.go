@@ -1,0 +1,128 @@
+package handout
+
+import (
+	"context"
+	"slices"
+
+	"quietbus/study"
+	"quietbus/study/figure"
+	"quietbus/study/phasor"
+)
+
+// drawn is a figure of the handout; a wide one takes a page's whole width.
+type drawn struct {
+	*figure.Figure
+	wide bool
+}
+
+// figureSheet is a page of figures that belong together.
+type figureSheet struct {
+	title   string
+	figures []drawn
+}
+
+// rows pairs the figures that are not wide.
+func (s *figureSheet) rows() (rows [][]drawn) {
+	for _, f := range s.figures {
+		if n := len(rows); n > 0 && !f.wide && len(rows[n-1]) == 1 && !rows[n-1][0].wide {
+			rows[n-1] = append(rows[n-1], f)
+			continue
+		}
+		rows = append(rows, []drawn{f})
+	}
+	return rows
+}
+
+// figureSet holds every figure of a handout.
+type figureSet struct {
+	single *drawn
+	sheets []figureSheet
+}
+
+// all lists the figures, each key once.
+func (s *figureSet) all() (list []drawn) {
+	if s.single != nil {
+		list = append(list, *s.single)
+	}
+	for _, sh := range s.sheets {
+		for _, f := range sh.figures {
+			if !slices.ContainsFunc(list, func(d drawn) bool { return d.Key == f.Key }) {
+				list = append(list, f)
+			}
+		}
+	}
+	return list
+}
+
+// figures draws up every figure: the single-line, the margins, and for each
+// assessment point its voltage, impedance and, where assessed, current.
+func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet, error) {
+	s, after := in.study(), in.After
+	set := &figureSet{}
+	if f := figure.SingleLine(s, before, after, nil, figure.View{}); f != nil {
+		set.single = &drawn{f, true}
+	}
+	if len(after.Points) > 0 {
+		set.sheets = append(set.sheets, figureSheet{"Share of each limit used", []drawn{{figure.Margins(before, after), true}}})
+	}
+	var done []string
+	for i := range s.Assessments {
+		a := &s.Assessments[i]
+		if !slices.Contains(done, a.Bus) {
+			done = append(done, a.Bus)
+			sh, err := busFigures(ctx, s, before, after, a.Bus)
+			if err != nil {
+				return nil, err
+			}
+			set.sheets = append(set.sheets, sh)
+		}
+		if a.Current != "" {
+			sel := figure.Selection{Element: a.Current, Bus: a.Bus}
+			set.sheets = append(set.sheets, figureSheet{"Current of " + a.Current + " at " + a.Bus, []drawn{
+				{figure.Spectrum(before, after, sel), true}, {figure.Waveform(before, after, sel), true},
+			}})
+		}
+	}
+	return set, nil
+}
+
+// busFigures returns the voltage and the impedance at one bus.
+func busFigures(ctx context.Context, s *study.Study, before, after *study.Outcome, bus string) (figureSheet, error) {
+	sel := figure.Selection{Bus: bus}
+	sh := figureSheet{"Bus " + bus, []drawn{{figure.Spectrum(before, after, sel), true}, {figure.Waveform(before, after, sel), false}}}
+	now, err := scanOf(ctx, s, after, bus)
+	if err != nil {
+		return sh, err
+	}
+	var old *study.ScanResult
+	if before != nil {
+		if old, err = scanOf(ctx, s, before, bus); err != nil {
+			return sh, err
+		}
+	}
+	if now != nil {
+		sh.figures = append(sh.figures, drawn{figure.Impedance(scanList(old), scanList(now), nil), false})
+	}
+	return sh, nil
+}
+
+func scanList(r *study.ScanResult) []*study.ScanResult {
+	if r == nil {
+		return nil
+	}
+	return []*study.ScanResult{r}
+}
+
+// scanOf returns the positive-sequence impedance at a bus: the scan the study
+// asked for, or one made now. It is nil for a bus without supply.
+func scanOf(ctx context.Context, s *study.Study, o *study.Outcome, bus string) (*study.ScanResult, error) {
+	for i := range o.Scans {
+		if r := &o.Scans[i]; r.Bus == bus && r.Sequence == phasor.Positive {
+			return r, nil
+		}
+	}
+	if b := busOf(o, bus); b == nil || !b.Live {
+		return nil, nil
+	}
+	return study.Impedance(ctx, s, o.On, bus, phasor.Positive, 1, float64(s.Order()))
+}
