@@ -1,0 +1,83 @@
+package widgets
+
+import (
+	"image"
+	"image/png"
+	"math"
+	"os"
+	"path/filepath"
+	"testing"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/test"
+	"gonum.org/v1/plot/vg"
+	"gonum.org/v1/plot/vg/draw"
+)
+
+// stage shows an object in a window of the test driver, in our theme.
+func stage(t testing.TB, o fyne.CanvasObject, size fyne.Size, dark bool, typeScale, pixels float32) fyne.Window {
+	t.Helper()
+	test.NewTempApp(t)
+	fyne.CurrentApp().Settings().SetTheme(NewTheme(dark, typeScale))
+	w := test.NewTempWindow(t, o)
+	w.SetPadded(false)
+	w.Canvas().(test.WindowlessCanvas).SetScale(pixels)
+	w.Resize(size)
+	settle(w)
+	return w
+}
+
+// settle lays out again what grew when text wrapped, as a real window does at
+// each frame.
+func settle(w fyne.Window) {
+	size := w.Canvas().Size()
+	w.Resize(size.AddWidthHeight(0, 1))
+	w.Resize(size)
+}
+
+// keep saves a picture for the eye when QUIETBUS_PICTURES names a folder.
+func keep(t testing.TB, name string, img image.Image) {
+	t.Helper()
+	dir := os.Getenv("QUIETBUS_PICTURES")
+	if dir == "" {
+		return
+	}
+	f, err := os.Create(filepath.Join(dir, name+".png"))
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	if err := png.Encode(f, img); err != nil {
+		t.Fatal(err)
+	}
+}
+
+// looks are the ways every widget is looked at.
+var looks = []struct {
+	name         string
+	dark         bool
+	size, pixels float32
+}{
+	{"light", false, 1, 1},
+	{"dark", true, 1, 1},
+	{"light-2x", false, 1, 2},
+	{"dark-200", true, 2, 1},
+	{"light-200", false, 2, 1},
+}
+
+func diamond(c draw.Canvas) {
+	var p vg.Path
+	m := c.Center()
+	r := (c.Max.X - c.Min.X) / 2
+	for i := range 4 {
+		s, k := math.Sincos(float64(i) * math.Pi / 2)
+		q := vg.Point{X: m.X + r*vg.Length(k), Y: m.Y + r*vg.Length(s)}
+		if i == 0 {
+			p.Move(q)
+		} else {
+			p.Line(q)
+		}
+	}
+	p.Close()
+	c.Fill(p)
+}

@@ -1,0 +1,238 @@
+package widgets
+
+import (
+	"image/color"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/driver/desktop"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
+	"gonum.org/v1/plot/vg/draw"
+)
+
+// A Measure is what a card shows of a mitigation measure.
+type Measure struct {
+	ID       string // handed back by callbacks
+	Name     string
+	Kind     string // such as "single-tuned filter"
+	Place    string // where it stands
+	Facts    string // such as "C 412 uF, L 0.63 mH"
+	Cost     string
+	Worth    string // what it buys
+	Conflict string // why it cannot be on now; empty when it can
+	On       bool
+
+	// Mark draws the measure's geometric mark into a square, the same as in the
+	// figures; nil for none.
+	Mark func(c draw.Canvas)
+}
+
+// A MeasureCard shows a measure with its switch.
+type MeasureCard struct {
+	widget.BaseWidget
+
+	OnChanged func(on bool)
+	OnEdit    func()
+	OnTapped  func() // the card itself, apart from switch and button
+	OnHover   func(inside bool)
+
+	measure Measure
+	hovered bool
+
+	mark                                    *drawing
+	sw                                      *Switch
+	edit                                    *widget.Button
+	name, kind, facts, worth, cost, trouble *paragraph
+}
+
+// CardWidth is the width of a card at type scale 1.
+const CardWidth float32 = 288
+
+// NewMeasureCard returns a card.
+func NewMeasureCard(m Measure) *MeasureCard {
+	c := &MeasureCard{
+		name:    newParagraph(theme.SizeNameText, theme.ColorNameForeground),
+		kind:    newParagraph(theme.SizeNameCaptionText, theme.ColorNamePlaceHolder),
+		facts:   newParagraph(theme.SizeNameCaptionText, theme.ColorNameForeground),
+		worth:   newParagraph(theme.SizeNameCaptionText, theme.ColorNameForeground),
+		cost:    newParagraph(theme.SizeNameCaptionText, theme.ColorNamePlaceHolder),
+		trouble: newParagraph(theme.SizeNameCaptionText, theme.ColorNameError),
+	}
+	c.name.style.Bold = true
+	c.name.most, c.kind.most, c.facts.most, c.cost.most, c.worth.most, c.trouble.most = 1, 1, 1, 1, 2, 2
+	c.mark = newDrawing(fyne.NewSquareSize(20), func(cv draw.Canvas) {
+		if c.measure.Mark != nil {
+			c.measure.Mark(cv)
+		}
+	})
+	c.sw = NewSwitch(false, func(on bool) {
+		c.measure.On = on
+		c.Refresh()
+		if c.OnChanged != nil {
+			c.OnChanged(on)
+		}
+	})
+	c.edit = widget.NewButton("Edit", func() {
+		if c.OnEdit != nil {
+			c.OnEdit()
+		}
+	})
+	c.edit.Importance = widget.LowImportance
+	c.ExtendBaseWidget(c)
+	c.take(m)
+	return c
+}
+
+// Measure returns what the card shows.
+func (c *MeasureCard) Measure() Measure { return c.measure }
+
+// Switch returns the card's switch, for its place on the screen.
+func (c *MeasureCard) Switch() *Switch { return c.sw }
+
+// SetMeasure changes what the card shows, without telling OnChanged.
+func (c *MeasureCard) SetMeasure(m Measure) {
+	c.take(m)
+	c.Refresh()
+}
+
+func (c *MeasureCard) take(m Measure) {
+	c.measure = m
+	c.name.set(m.Name)
+	kind := m.Kind
+	if m.Place != "" {
+		if kind != "" {
+			kind += ", "
+		}
+		kind += m.Place
+	}
+	c.kind.set(kind)
+	c.facts.set(m.Facts)
+	c.worth.set(m.Worth)
+	c.cost.set(m.Cost)
+	c.trouble.set(m.Conflict)
+	c.sw.SetOn(m.On)
+}
+
+// Tapped implements fyne.Tappable.
+func (c *MeasureCard) Tapped(*fyne.PointEvent) {
+	if c.OnTapped != nil {
+		c.OnTapped()
+	}
+}
+
+// MouseIn implements desktop.Hoverable.
+func (c *MeasureCard) MouseIn(*desktop.MouseEvent) {
+	if c.OnHover != nil {
+		c.OnHover(true)
+	}
+}
+
+// MouseMoved implements desktop.Hoverable.
+func (c *MeasureCard) MouseMoved(*desktop.MouseEvent) {}
+
+// MouseOut implements desktop.Hoverable.
+func (c *MeasureCard) MouseOut() {
+	if c.OnHover != nil {
+		c.OnHover(false)
+	}
+}
+
+// CreateRenderer implements fyne.Widget.
+func (c *MeasureCard) CreateRenderer() fyne.WidgetRenderer {
+	c.ExtendBaseWidget(c)
+	r := &measureCardRenderer{c: c, back: canvas.NewRectangle(color.Transparent)}
+	r.Refresh()
+	return r
+}
+
+type measureCardRenderer struct {
+	c    *MeasureCard
+	back *canvas.Rectangle
+}
+
+// line heights of the card: name, kind, facts, two of worth or trouble, foot.
+func (r *measureCardRenderer) MinSize() fyne.Size {
+	c := r.c
+	k := max(typeScaleOf(c), 1)
+	caption := lineHeight(sizeOf(c, theme.SizeNameCaptionText), fyne.TextStyle{})
+	height := Step + c.sw.MinSize().Height + 4*caption + Step/2 + max(c.edit.MinSize().Height, caption) + Step/2
+	return fyne.NewSize(CardWidth*k, height)
+}
+
+func (r *measureCardRenderer) Layout(size fyne.Size) {
+	c := r.c
+	r.back.Resize(size)
+	const pad = Step * 1.5
+	inner := size.Width - 2*pad
+	caption := lineHeight(sizeOf(c, theme.SizeNameCaptionText), fyne.TextStyle{})
+
+	sw := c.sw.MinSize()
+	c.sw.Resize(sw)
+	c.sw.Move(fyne.NewPos(size.Width-Step-sw.Width, Step))
+	side := fyne.Size{}
+	x := float32(pad)
+	if c.measure.Mark != nil {
+		side = c.mark.MinSize()
+		c.mark.Show()
+		x += side.Width + Step
+	} else {
+		c.mark.Hide()
+	}
+	c.mark.Resize(side)
+	c.mark.Move(fyne.NewPos(pad, Step+(sw.Height-side.Height)/2))
+	name := lineHeight(sizeOf(c, theme.SizeNameText), fyne.TextStyle{Bold: true})
+	c.name.Move(fyne.NewPos(x, Step+(sw.Height-name)/2))
+	c.name.Resize(fyne.NewSize(size.Width-Step-sw.Width-Step/2-x, name))
+
+	y := Step + sw.Height
+	row := func(p *paragraph, lines float32) {
+		p.Move(fyne.NewPos(pad, y))
+		p.Resize(fyne.NewSize(inner, lines*caption))
+		y += lines * caption
+	}
+	row(c.kind, 1)
+	row(c.facts, 1)
+	if c.measure.Conflict != "" {
+		c.trouble.Show()
+		c.worth.Hide()
+		row(c.trouble, 2)
+	} else {
+		c.trouble.Hide()
+		c.worth.Show()
+		row(c.worth, 2)
+	}
+	edit := c.edit.MinSize()
+	y = size.Height - Step/2 - edit.Height
+	c.edit.Resize(edit)
+	c.edit.Move(fyne.NewPos(size.Width-Step/2-edit.Width, y))
+	c.cost.Move(fyne.NewPos(pad, y+(edit.Height-caption)/2))
+	c.cost.Resize(fyne.NewSize(max(inner-edit.Width, 0), caption))
+}
+
+func (r *measureCardRenderer) Refresh() {
+	c := r.c
+	p := paletteOf(c)
+	r.back.FillColor, r.back.StrokeColor, r.back.CornerRadius = p.Surface, p.Grid, 2
+	r.back.StrokeWidth = 1
+	if c.measure.On { // a firm edge besides the switch
+		r.back.StrokeColor, r.back.StrokeWidth = p.After, 2
+	}
+	if c.OnEdit == nil {
+		c.edit.Hide()
+	} else {
+		c.edit.Show()
+	}
+	r.Layout(c.Size())
+	r.back.Refresh()
+	for _, o := range r.Objects()[1:] {
+		o.Refresh()
+	}
+}
+
+func (r *measureCardRenderer) Objects() []fyne.CanvasObject {
+	c := r.c
+	return []fyne.CanvasObject{r.back, c.mark, c.name, c.sw, c.kind, c.facts, c.worth, c.trouble, c.cost, c.edit}
+}
+
+func (r *measureCardRenderer) Destroy() {}

@@ -1,0 +1,186 @@
+package widgets
+
+import (
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/widget"
+)
+
+// A MeasureRow is the strip of measure cards; it scrolls sideways.
+type MeasureRow struct {
+	widget.BaseWidget
+
+	OnChanged func(id string, on bool)
+	OnEdit    func(id string)
+	OnTapped  func(id string)
+	OnHover   func(id string, inside bool)
+	OnAdd     func()
+
+	cards  []*MeasureCard
+	empty  *EmptyState
+	add    *widget.Button
+	strip  *fyne.Container
+	scroll *container.Scroll
+}
+
+// NewMeasureRow returns an empty strip.
+func NewMeasureRow() *MeasureRow {
+	m := &MeasureRow{}
+	added := func() {
+		if m.OnAdd != nil {
+			m.OnAdd()
+		}
+	}
+	m.empty = NewEmptyState("No measures yet. Add one at a bus.", "Add a measure", added)
+	m.add = widget.NewButton("Add a measure", added)
+	m.add.Importance = widget.LowImportance
+	m.strip = container.New(shelf{gap: Step})
+	m.scroll = container.NewHScroll(m.strip)
+	m.ExtendBaseWidget(m)
+	m.fill()
+	return m
+}
+
+// SetMeasures shows measures in order. Cards of measures that stay are kept, so
+// focus and scrolling stay where they are.
+func (m *MeasureRow) SetMeasures(measures []Measure) {
+	old := make(map[string]*MeasureCard, len(m.cards))
+	for _, c := range m.cards {
+		old[c.measure.ID] = c
+	}
+	same := len(measures) == len(m.cards)
+	cards := make([]*MeasureCard, len(measures))
+	for i, v := range measures {
+		c := old[v.ID]
+		if c == nil {
+			c = m.card(v)
+			same = false
+		} else {
+			delete(old, v.ID)
+			c.SetMeasure(v)
+		}
+		same = same && i < len(m.cards) && m.cards[i] == c
+		cards[i] = c
+	}
+	m.cards = cards
+	if !same {
+		m.fill()
+		m.Refresh()
+	}
+}
+
+// Card returns the card of a measure, nil when there is none.
+func (m *MeasureRow) Card(id string) *MeasureCard {
+	for _, c := range m.cards {
+		if c.measure.ID == id {
+			return c
+		}
+	}
+	return nil
+}
+
+func (m *MeasureRow) card(v Measure) *MeasureCard {
+	c := NewMeasureCard(v)
+	id := v.ID
+	c.OnChanged = func(on bool) {
+		if m.OnChanged != nil {
+			m.OnChanged(id, on)
+		}
+	}
+	c.OnEdit = func() {
+		if m.OnEdit != nil {
+			m.OnEdit(id)
+		}
+	}
+	c.OnTapped = func() {
+		if m.OnTapped != nil {
+			m.OnTapped(id)
+		}
+	}
+	c.OnHover = func(inside bool) {
+		if m.OnHover != nil {
+			m.OnHover(id, inside)
+		}
+	}
+	return c
+}
+
+func (m *MeasureRow) fill() {
+	m.strip.Objects = nil
+	for _, c := range m.cards {
+		m.strip.Objects = append(m.strip.Objects, c)
+	}
+	m.strip.Objects = append(m.strip.Objects, m.add)
+	if len(m.cards) == 0 {
+		m.scroll.Hide()
+		m.empty.Show()
+	} else {
+		m.empty.Hide()
+		m.scroll.Show()
+	}
+	m.strip.Refresh()
+	m.scroll.Refresh()
+}
+
+// CreateRenderer implements fyne.Widget.
+func (m *MeasureRow) CreateRenderer() fyne.WidgetRenderer {
+	m.ExtendBaseWidget(m)
+	return &measureRowRenderer{m}
+}
+
+type measureRowRenderer struct{ m *MeasureRow }
+
+func (r *measureRowRenderer) Layout(size fyne.Size) {
+	r.m.scroll.Resize(size)
+	r.m.empty.Resize(size)
+}
+
+// MinSize is the height of a card in any case, so the first card does not push
+// the rest of the window.
+func (r *measureRowRenderer) MinSize() fyne.Size {
+	height := NewMeasureCard(Measure{}).MinSize().Height
+	return fyne.NewSize(CardWidth/2, max(height, r.m.empty.MinSize().Height)+Step)
+}
+
+func (r *measureRowRenderer) Refresh() {
+	for _, c := range r.m.cards {
+		c.Refresh()
+	}
+	r.m.empty.Refresh()
+	r.m.strip.Refresh()
+	r.m.scroll.Refresh()
+}
+
+func (r *measureRowRenderer) Objects() []fyne.CanvasObject {
+	return []fyne.CanvasObject{r.m.scroll, r.m.empty}
+}
+
+func (r *measureRowRenderer) Destroy() {}
+
+// A shelf lays objects side by side at their least width, cards at full height,
+// others centred.
+type shelf struct{ gap float32 }
+
+func (s shelf) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	x := float32(0)
+	for _, o := range objects {
+		m := o.MinSize()
+		height, y := m.Height, float32(0)
+		if _, card := o.(*MeasureCard); !card {
+			y = max(size.Height-height, 0) / 2
+		}
+		o.Resize(fyne.NewSize(m.Width, height))
+		o.Move(fyne.NewPos(x, y))
+		x += m.Width + s.gap
+	}
+}
+
+func (s shelf) MinSize(objects []fyne.CanvasObject) fyne.Size {
+	var size fyne.Size
+	for _, o := range objects {
+		m := o.MinSize()
+		size.Width += m.Width + s.gap
+		size.Height = max(size.Height, m.Height)
+	}
+	return size
+}

@@ -1,0 +1,666 @@
+package widgets
+
+import (
+	"fmt"
+	"image"
+	"image/color"
+	"math"
+	"time"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/driver/desktop"
+	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
+	"gonum.org/v1/plot/vg"
+	"gonum.org/v1/plot/vg/draw"
+)
+
+// A Picture is a panel with a drawing. The drawing is made anew on Refresh and
+// when the size changes, at the pixels of the screen; the places it names
+// (Hots) answer to pointer and keyboard.
+//
+// Lengths in the drawing are points: Points and Units convert. A panel of 480
+// window units is 360 points wide.
+//
+// With the focus, arrow keys walk from place to place, space or enter taps, the
+// menu key is a secondary tap, + - 0 zoom a zoomable picture.
+type Picture struct {
+	widget.BaseWidget
+
+	// Draw draws the picture on the canvas' rectangle and returns its places. A
+	// panic in it is caught and shown as a sentence.
+	Draw func(c draw.Canvas) []Hot
+
+	OnTapped       func(h Hot)                   // h is zero when the ground is tapped
+	OnDoubleTapped func(h Hot)                   // after OnTapped of the first tap, which is not held back
+	OnSecondary    func(h Hot, at fyne.Position) // at is where a menu goes, on the canvas
+	CanDrag        func(h Hot) bool              // nil: whatever has OnDragged may be dragged
+	OnDragged      func(h Hot, dx, dy vg.Length) // step since the last call, y up, in the drawing's points
+	OnDragEnd      func(h Hot)
+	OnHover        func(h Hot) // zero when the pointer leaves a place
+	OnCopy         func()      // copy shortcut while focused; see Capture
+	OnFault        func(err error)
+
+	// Zoomable lets wheel and drag zoom and pan.
+	Zoomable bool
+	// Natural is the size of the drawing at zoom 1; zero draws at the panel's
+	// own size. The drawing is fitted into the panel until it is zoomed.
+	Natural vg.Point
+	// Least is the least size of the panel.
+	Least fyne.Size
+	// Selected is the ID of the place that stays outlined.
+	Selected string
+	// Ground is the colour behind the drawing; nil is the theme's.
+	Ground color.Color
+
+	raster  *Raster
+	hots    []Hot
+	stale   bool
+	wish    pixelWish
+	drawnAt fyne.Size
+	took    time.Duration
+	fault   string
+
+	zoom   float64
+	offset vg.Point // of the drawing's origin from the panel's, in points
+	moved  bool     // zoomed or panned by the user
+
+	hover    Hot // under the pointer
+	current  Hot // reached by keyboard
+	pointer  fyne.Position
+	focused  bool
+	drag     Hot
+	dragging bool
+
+	lastTap  time.Time
+	lastHot  Hot
+	now      func() time.Time
+	renderer *pictureRenderer
+}
+
+// DoubleTapTime is how soon a second tap on the same place must follow.
+const DoubleTapTime = 400 * time.Millisecond
+
+// Bounds of the zoom factor, and how far a small drawing is blown up to fit.
+const (
+	leastZoom    = 0.1
+	greatestZoom = 12
+	greatestFit  = 1.6
+)
+
+// NewPicture returns a panel that shows what draw draws.
+func NewPicture(draw func(c draw.Canvas) []Hot) *Picture {
+	p := &Picture{Draw: draw}
+	p.ExtendBaseWidget(p)
+	return p
+}
+
+// Refresh draws the picture anew.
+func (p *Picture) Refresh() {
+	p.stale = true
+	p.BaseWidget.Refresh()
+}
+
+// LastDraw returns how long the last drawing took, raster included.
+func (p *Picture) LastDraw() time.Duration { return p.took }
+
+// Hots returns the places of the picture as it is now.
+func (p *Picture) Hots() []Hot {
+	p.ensure()
+	return p.hots
+}
+
+// Place returns where a place stands in the panel.
+func (p *Picture) Place(h Hot) (fyne.Position, fyne.Size) {
+	a, b := p.toPanel(h.Rect.Min), p.toPanel(h.Rect.Max)
+	return fyne.NewPos(a.X, b.Y), fyne.NewSize(b.X-a.X, a.Y-b.Y)
+}
+
+// Hover returns the place under the pointer, or the one reached by keyboard.
+func (p *Picture) Hover() (Hot, bool) {
+	h := p.shown()
+	return h, !h.Zero()
+}
+
+// Capture draws the picture as it is seen into an image of its own, at a number
+// of pixels a window unit.
+func (p *Picture) Capture(scale float64) *image.RGBA {
+	size := p.Size()
+	w, h := int(math.Ceil(float64(size.Width)*scale)), int(math.Ceil(float64(size.Height)*scale))
+	r := NewRaster(w, h, UnitDPI*scale)
+	p.drawOn(r)
+	return r.Image()
+}
+
+// Zoom returns the factor the drawing is shown at.
+func (p *Picture) Zoom() float64 {
+	p.place()
+	return p.zoom
+}
+
+// Fit shows the whole drawing again.
+func (p *Picture) Fit() {
+	p.moved = false
+	p.Refresh()
+}
+
+// ZoomBy zooms about a point of the panel.
+func (p *Picture) ZoomBy(factor float64, at fyne.Position) {
+	p.place()
+	zoom := min(max(p.zoom*factor, leastZoom), greatestZoom)
+	fixed := p.fromPanel(at)
+	p.zoom, p.moved = zoom, true
+	v := p.panelPoint(at)
+	p.offset = vg.Point{X: v.X - fixed.X*vg.Length(zoom), Y: v.Y - fixed.Y*vg.Length(zoom)}
+	p.Refresh()
+}
+
+// PanBy moves the drawing by window units.
+func (p *Picture) PanBy(dx, dy float32) {
+	p.place()
+	p.moved = true
+	p.offset.X += Points(dx)
+	p.offset.Y -= Points(dy)
+	p.Refresh()
+}
+
+// MinSize implements fyne.CanvasObject.
+func (p *Picture) MinSize() fyne.Size {
+	p.ExtendBaseWidget(p)
+	return p.Least.Max(fyne.NewSquareSize(Target))
+}
+
+// Resize implements fyne.CanvasObject.
+func (p *Picture) Resize(s fyne.Size) {
+	if s != p.Size() {
+		p.stale = true
+	}
+	p.BaseWidget.Resize(s)
+}
+
+// place computes zoom and offset of a drawing that was not moved.
+func (p *Picture) place() {
+	if p.moved {
+		return
+	}
+	p.zoom, p.offset = 1, vg.Point{}
+	if p.Natural.X <= 0 || p.Natural.Y <= 0 {
+		return
+	}
+	w, h := Points(p.Size().Width), Points(p.Size().Height)
+	if w <= 0 || h <= 0 {
+		return
+	}
+	p.zoom = min(float64(w/p.Natural.X), float64(h/p.Natural.Y), greatestFit)
+	z := vg.Length(p.zoom)
+	p.offset = vg.Point{X: (w - p.Natural.X*z) / 2, Y: (h - p.Natural.Y*z) / 2}
+}
+
+// panelPoint converts a position in the panel to points, y up.
+func (p *Picture) panelPoint(at fyne.Position) vg.Point {
+	return vg.Point{X: Points(at.X), Y: Points(p.Size().Height - at.Y)}
+}
+
+// fromPanel converts a position in the panel to the drawing's coordinates.
+func (p *Picture) fromPanel(at fyne.Position) vg.Point {
+	v := p.panelPoint(at)
+	z := vg.Length(p.zoom)
+	return vg.Point{X: (v.X - p.offset.X) / z, Y: (v.Y - p.offset.Y) / z}
+}
+
+// toPanel converts a point of the drawing to a position in the panel.
+func (p *Picture) toPanel(v vg.Point) fyne.Position {
+	p.place()
+	z := vg.Length(p.zoom)
+	return fyne.NewPos(Units(v.X*z+p.offset.X), p.Size().Height-Units(v.Y*z+p.offset.Y))
+}
+
+// ensure draws the picture when it is not what it should be, at the pixels of
+// the canvas it is on.
+func (p *Picture) ensure() {
+	size := p.Size()
+	if size.Width < 1 || size.Height < 1 {
+		return
+	}
+	if p.raster != nil && !p.stale && p.drawnAt == size {
+		return
+	}
+	w, h := p.wish.w, p.wish.h
+	if p.wish.size != size {
+		scale := float32(1)
+		if p.wish.size.Width > 0 {
+			scale = float32(w) / p.wish.size.Width
+		} else if c := fyne.CurrentApp().Driver().CanvasForObject(p); c != nil {
+			scale = c.Scale()
+		}
+		w, h = int(math.Round(float64(size.Width*scale))), int(math.Round(float64(size.Height*scale)))
+	}
+	p.generate(w, h)
+}
+
+// A pixelWish is how many pixels the toolkit last asked for, at which size of
+// the panel: the next drawing is made at once with as many.
+type pixelWish struct {
+	w, h int
+	size fyne.Size
+}
+
+// asked draws for the toolkit.
+func (p *Picture) asked(w, h int) image.Image {
+	p.wish = pixelWish{w, h, p.Size()}
+	return p.generate(w, h)
+}
+
+// generate returns the picture at a number of pixels.
+func (p *Picture) generate(w, h int) image.Image {
+	size := p.Size()
+	if p.raster == nil {
+		p.raster = &Raster{}
+	}
+	b := image.Rectangle{}
+	if p.raster.img != nil {
+		b = p.raster.img.Rect
+	}
+	if !p.stale && b.Dx() == w && b.Dy() == h && p.drawnAt == size {
+		return p.raster.Image()
+	}
+	start := time.Now()
+	dpi := float64(UnitDPI)
+	if size.Width > 0 {
+		dpi *= float64(w) / float64(size.Width)
+	}
+	p.raster.Reset(w, h, dpi, p.ground())
+	p.hots = p.drawOn(p.raster)
+	p.took = time.Since(start)
+	p.stale, p.drawnAt = false, size
+	p.follow()
+	return p.raster.Image()
+}
+
+func (p *Picture) ground() color.Color {
+	if p.Ground != nil {
+		return p.Ground
+	}
+	return paletteOf(p).Ground
+}
+
+// drawOn draws on a raster and returns the places.
+func (p *Picture) drawOn(r *Raster) (hots []Hot) {
+	p.place()
+	r.Reset(r.img.Rect.Dx(), r.img.Rect.Dy(), r.dpi, p.ground())
+	p.fault = ""
+	if p.Draw == nil {
+		return nil
+	}
+	defer func() {
+		if v := recover(); v != nil {
+			hots = nil
+			r.Reset(r.img.Rect.Dx(), r.img.Rect.Dy(), r.dpi, p.ground())
+			p.fault = "This picture cannot be drawn. The numbers behind it are in the tables."
+			if p.OnFault != nil {
+				p.OnFault(fmt.Errorf("picture: %v", v))
+			}
+		}
+	}()
+	size := vg.Point{X: Points(p.Size().Width), Y: Points(p.Size().Height)}
+	if p.Natural.X > 0 && p.Natural.Y > 0 {
+		size = p.Natural
+	}
+	if p.offset.X != 0 || p.offset.Y != 0 {
+		r.Translate(p.offset)
+	}
+	if p.zoom != 1 {
+		r.Scale(p.zoom, p.zoom)
+	}
+	return p.Draw(draw.NewCanvas(r, size.X, size.Y))
+}
+
+// follow finds the places in hand in a new drawing.
+func (p *Picture) follow() {
+	find := func(h Hot) Hot {
+		if h.Zero() {
+			return h
+		}
+		for _, n := range p.hots {
+			if n.same(h) {
+				return n
+			}
+		}
+		return Hot{}
+	}
+	p.hover, p.current = find(p.hover), find(p.current)
+}
+
+// shown is the place whose read-out is shown.
+func (p *Picture) shown() Hot {
+	if !p.hover.Zero() {
+		return p.hover
+	}
+	if p.focused {
+		return p.current
+	}
+	return Hot{}
+}
+
+// overlay brings the objects above the picture up to date.
+func (p *Picture) overlay() {
+	if p.renderer != nil {
+		p.renderer.overlay()
+	}
+}
+
+func (p *Picture) at(pos fyne.Position) Hot {
+	p.ensure()
+	h, _ := hit(p.hots, p.fromPanel(pos), Points(Target)/vg.Length(p.zoom))
+	return h
+}
+
+func (p *Picture) setHover(h Hot) {
+	changed := h != p.hover
+	p.hover = h
+	p.overlay()
+	if changed && p.OnHover != nil {
+		p.OnHover(h)
+	}
+}
+
+// Tapped implements fyne.Tappable.
+func (p *Picture) Tapped(e *fyne.PointEvent) {
+	if c := fyne.CurrentApp().Driver().CanvasForObject(p); c != nil {
+		c.Focus(p)
+	}
+	h := p.at(e.Position)
+	p.current = h
+	clock := p.now
+	if clock == nil {
+		clock = time.Now
+	}
+	t := clock()
+	if p.OnDoubleTapped != nil && h.same(p.lastHot) && !p.lastTap.IsZero() && t.Sub(p.lastTap) < DoubleTapTime {
+		p.lastTap = time.Time{}
+		p.OnDoubleTapped(h)
+		return
+	}
+	p.lastTap, p.lastHot = t, h
+	p.tap(h)
+}
+
+func (p *Picture) tap(h Hot) {
+	if p.OnTapped != nil {
+		p.OnTapped(h)
+	}
+	p.overlay()
+}
+
+// TappedSecondary implements fyne.SecondaryTappable.
+func (p *Picture) TappedSecondary(e *fyne.PointEvent) {
+	if p.OnSecondary != nil {
+		p.OnSecondary(p.at(e.Position), e.AbsolutePosition)
+	}
+}
+
+// MouseIn implements desktop.Hoverable.
+func (p *Picture) MouseIn(e *desktop.MouseEvent) { p.MouseMoved(e) }
+
+// MouseMoved implements desktop.Hoverable.
+func (p *Picture) MouseMoved(e *desktop.MouseEvent) {
+	p.pointer = e.Position
+	p.setHover(p.at(e.Position))
+}
+
+// MouseOut implements desktop.Hoverable.
+func (p *Picture) MouseOut() { p.setHover(Hot{}) }
+
+// Cursor implements desktop.Cursorable.
+func (p *Picture) Cursor() desktop.Cursor {
+	if !p.hover.Zero() && p.hover.Role != "value" && p.OnTapped != nil {
+		return desktop.PointerCursor
+	}
+	return desktop.DefaultCursor
+}
+
+// dragged moves the place in hand, else the drawing.
+func (p *Picture) dragged(e *fyne.DragEvent) {
+	if !p.dragging {
+		p.dragging = true
+		p.drag = Hot{}
+		start := e.Position.Subtract(fyne.NewPos(e.Dragged.DX, e.Dragged.DY))
+		if h := p.at(start); !h.Zero() && p.OnDragged != nil && (p.CanDrag == nil || p.CanDrag(h)) {
+			p.drag = h
+		}
+	}
+	if p.drag.Zero() {
+		if p.Zoomable {
+			p.PanBy(e.Dragged.DX, e.Dragged.DY)
+		}
+		return
+	}
+	z := vg.Length(p.zoom)
+	p.OnDragged(p.drag, Points(e.Dragged.DX)/z, -Points(e.Dragged.DY)/z)
+}
+
+func (p *Picture) dragEnd() {
+	h := p.drag
+	p.dragging, p.drag = false, Hot{}
+	if !h.Zero() && p.OnDragEnd != nil {
+		p.OnDragEnd(h)
+	}
+}
+
+// scrolled zooms about the pointer.
+func (p *Picture) scrolled(e *fyne.ScrollEvent) {
+	p.ZoomBy(math.Pow(1.1, float64(e.Scrolled.DY)/10), e.Position)
+}
+
+// FocusGained implements fyne.Focusable.
+func (p *Picture) FocusGained() {
+	p.focused = true
+	p.overlay()
+}
+
+// FocusLost implements fyne.Focusable.
+func (p *Picture) FocusLost() {
+	p.focused = false
+	p.overlay()
+}
+
+// TypedRune implements fyne.Focusable.
+func (p *Picture) TypedRune(r rune) {
+	if !p.Zoomable {
+		return
+	}
+	middle := fyne.NewPos(p.Size().Width/2, p.Size().Height/2)
+	switch r {
+	case '+':
+		p.ZoomBy(1.25, middle)
+	case '-':
+		p.ZoomBy(0.8, middle)
+	case '0':
+		p.Fit()
+	}
+}
+
+// TypedKey implements fyne.Focusable.
+func (p *Picture) TypedKey(e *fyne.KeyEvent) {
+	switch e.Name {
+	case fyne.KeyLeft:
+		p.walk(direction{-1, 0})
+	case fyne.KeyRight:
+		p.walk(direction{1, 0})
+	case fyne.KeyUp:
+		p.walk(direction{0, 1})
+	case fyne.KeyDown:
+		p.walk(direction{0, -1})
+	case fyne.KeyHome:
+		p.current = Hot{}
+		p.walk(direction{1, 0})
+	case fyne.KeyEscape:
+		p.current = Hot{}
+		p.setHover(Hot{})
+	case fyne.KeySpace, fyne.KeyReturn, fyne.KeyEnter:
+		if !p.current.Zero() {
+			p.tap(p.current)
+		}
+	case desktop.KeyMenu:
+		if p.OnSecondary != nil && !p.current.Zero() {
+			pos, size := p.Place(p.current)
+			at := fyne.CurrentApp().Driver().AbsolutePositionForObject(p)
+			p.OnSecondary(p.current, at.Add(pos).AddXY(size.Width/2, size.Height/2))
+		}
+	}
+}
+
+// TypedShortcut implements fyne.Shortcutable.
+func (p *Picture) TypedShortcut(s fyne.Shortcut) {
+	if _, ok := s.(*fyne.ShortcutCopy); ok && p.OnCopy != nil {
+		p.OnCopy()
+	}
+}
+
+// walk moves to the next place in a direction and brings it into view.
+func (p *Picture) walk(d direction) {
+	p.ensure()
+	h, ok := neighbour(p.hots, p.current, d)
+	if !ok {
+		return
+	}
+	p.current = h
+	p.hover = Hot{}
+	p.reveal(h)
+	p.overlay()
+	if p.OnHover != nil {
+		p.OnHover(h)
+	}
+}
+
+// reveal pans a zoomed drawing so that a place is in view.
+func (p *Picture) reveal(h Hot) {
+	if !p.moved {
+		return
+	}
+	pos, size := p.Place(h)
+	panel := p.Size()
+	var dx, dy float32
+	if pos.X < 0 {
+		dx = Step - pos.X
+	} else if over := pos.X + size.Width - panel.Width; over > 0 {
+		dx = -over - Step
+	}
+	if pos.Y < 0 {
+		dy = Step - pos.Y
+	} else if over := pos.Y + size.Height - panel.Height; over > 0 {
+		dy = -over - Step
+	}
+	if dx != 0 || dy != 0 {
+		p.PanBy(dx, dy)
+	}
+}
+
+// CreateRenderer implements fyne.Widget.
+func (p *Picture) CreateRenderer() fyne.WidgetRenderer {
+	p.ExtendBaseWidget(p)
+	p.stale = true
+	r := &pictureRenderer{p: p, pad: newZoomPad(p), box: newReadout(),
+		selected: canvas.NewRectangle(color.Transparent),
+		outline:  canvas.NewRectangle(color.Transparent),
+		focus:    canvas.NewRectangle(color.Transparent),
+		fault:    newParagraph(theme.SizeNameText, theme.ColorNameForeground),
+	}
+	r.raster = canvas.NewRaster(p.asked)
+	r.raster.ScaleMode = canvas.ImageScalePixels
+	p.renderer = r
+	return r
+}
+
+type pictureRenderer struct {
+	p                        *Picture
+	raster                   *canvas.Raster
+	selected, outline, focus *canvas.Rectangle
+	box                      *readout
+	fault                    *paragraph
+	pad                      *zoomPad
+}
+
+func (r *pictureRenderer) Layout(size fyne.Size) {
+	r.raster.Resize(size)
+	r.pad.Resize(size)
+	r.focus.Resize(size)
+	r.fault.Resize(fyne.NewSize(max(size.Width-4*Step, 0), size.Height))
+	r.fault.Move(fyne.NewPos(2*Step, 2*Step))
+	r.overlay()
+}
+
+func (r *pictureRenderer) MinSize() fyne.Size { return r.p.MinSize() }
+
+func (r *pictureRenderer) Refresh() {
+	r.raster.Refresh()
+	r.overlay()
+}
+
+func (r *pictureRenderer) Objects() []fyne.CanvasObject {
+	return []fyne.CanvasObject{r.raster, r.selected, r.outline, r.fault, r.box, r.focus, r.pad}
+}
+
+func (r *pictureRenderer) Destroy() { r.p.renderer = nil }
+
+// overlay places outlines and read-out.
+func (r *pictureRenderer) overlay() {
+	p := r.p
+	p.ensure()
+	r.pad.wheel = p.Zoomable
+	if p.Zoomable || p.OnDragged != nil {
+		r.pad.Show()
+	} else {
+		r.pad.Hide()
+	}
+	palette := paletteOf(p)
+	r.fault.set(p.fault)
+
+	frame := func(o *canvas.Rectangle, h Hot, ok bool) {
+		if !ok {
+			o.Hide()
+			return
+		}
+		pos, size := p.Place(h)
+		const room = 3
+		o.StrokeColor, o.StrokeWidth, o.CornerRadius = palette.Accent, 2, 2
+		o.Move(pos.SubtractXY(room, room))
+		o.Resize(size.AddWidthHeight(2*room, 2*room))
+		o.Show()
+		o.Refresh()
+	}
+	shown := p.shown()
+	frame(r.outline, shown, !shown.Zero())
+	var selected Hot
+	if p.Selected != "" {
+		for _, h := range p.hots {
+			if h.ID == p.Selected && h.Role != "value" && h.Role != "switch" {
+				selected = h
+				break
+			}
+		}
+	}
+	frame(r.selected, selected, !selected.Zero() && !selected.same(shown))
+
+	if p.focused {
+		r.focus.StrokeColor, r.focus.StrokeWidth = palette.Accent, 2
+		r.focus.Show()
+		r.focus.Refresh()
+	} else {
+		r.focus.Hide()
+	}
+
+	if shown.Text == "" || p.dragging {
+		r.box.Hide()
+		return
+	}
+	at := p.pointer
+	if p.hover.Zero() {
+		pos, size := p.Place(shown)
+		at = fyne.NewPos(pos.X+size.Width, pos.Y)
+	}
+	r.box.set(shown.Text)
+	r.box.near(at, p.Size())
+	r.box.Show()
+}
