@@ -56,6 +56,16 @@ func (b *book) open(lying bool) {
 	b.y, b.empty = h-marginTop, true
 }
 
+// upright begins an upright page when the current one lies.
+func (b *book) upright() {
+	if b.lying() {
+		b.open(false)
+	}
+}
+
+// lying reports whether the current page is wider than it is high.
+func (b *book) lying() bool { return b.size().w > b.size().h }
+
 // size returns the size of the current page.
 func (b *book) size() pageSize { return b.pages[len(b.pages)-1] }
 
@@ -68,7 +78,7 @@ func (b *book) room() vg.Length { return b.y - marginBottom }
 // need begins another page of the same shape when less than h is left.
 func (b *book) need(h vg.Length) {
 	if b.room() < h && !b.empty {
-		b.open(b.size().w > b.size().h)
+		b.open(b.lying())
 	}
 }
 

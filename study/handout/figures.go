@@ -59,6 +59,7 @@ func (s *figureSet) all() (list []drawn) {
 func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet, error) {
 	s, after := in.study(), in.After
 	set := &figureSet{}
+	look := &scans{study: s}
 	if f := figure.SingleLine(s, before, after, nil, figure.View{}); f != nil {
 		set.single = &drawn{f, true}
 	}
@@ -70,7 +71,7 @@ func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet,
 		a := &s.Assessments[i]
 		if !slices.Contains(done, a.Bus) {
 			done = append(done, a.Bus)
-			sh, err := busFigures(ctx, s, before, after, a.Bus)
+			sh, err := busFigures(ctx, look, before, after, a.Bus)
 			if err != nil {
 				return nil, err
 			}
@@ -87,16 +88,16 @@ func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet,
 }
 
 // busFigures returns the voltage and the impedance at one bus.
-func busFigures(ctx context.Context, s *study.Study, before, after *study.Outcome, bus string) (figureSheet, error) {
+func busFigures(ctx context.Context, look *scans, before, after *study.Outcome, bus string) (figureSheet, error) {
 	sel := figure.Selection{Bus: bus}
 	sh := figureSheet{"Bus " + bus, []drawn{{figure.Spectrum(before, after, sel), true}, {figure.Waveform(before, after, sel), false}}}
-	now, err := scanOf(ctx, s, after, bus)
+	now, err := look.at(ctx, after, bus)
 	if err != nil {
 		return sh, err
 	}
 	var old *study.ScanResult
 	if before != nil {
-		if old, err = scanOf(ctx, s, before, bus); err != nil {
+		if old, err = look.at(ctx, before, bus); err != nil {
 			return sh, err
 		}
 	}
@@ -113,16 +114,29 @@ func scanList(r *study.ScanResult) []*study.ScanResult {
 	return []*study.ScanResult{r}
 }
 
-// scanOf returns the positive-sequence impedance at a bus: the scan the study
-// asked for, or one made now. It is nil for a bus without supply.
-func scanOf(ctx context.Context, s *study.Study, o *study.Outcome, bus string) (*study.ScanResult, error) {
+// scans finds impedances: those the study asked for, or made on the spot.
+type scans struct {
+	study    *study.Study
+	prepared *study.Prepared // nil until one is made
+}
+
+// at returns the positive-sequence impedance at a bus, nil for a bus without
+// supply.
+func (s *scans) at(ctx context.Context, o *study.Outcome, bus string) (*study.ScanResult, error) {
 	for i := range o.Scans {
 		if r := &o.Scans[i]; r.Bus == bus && r.Sequence == phasor.Positive {
 			return r, nil
 		}
 	}
-	if b := busOf(o, bus); b == nil || !b.Live {
+	if b := o.Bus(bus); b == nil || !b.Live {
 		return nil, nil
 	}
-	return study.Impedance(ctx, s, o.On, bus, phasor.Positive, 1, float64(s.Order()))
+	if s.prepared == nil {
+		p, err := study.Prepare(s.study)
+		if err != nil {
+			return nil, err
+		}
+		s.prepared = p
+	}
+	return s.prepared.Impedance(ctx, o.On, bus, phasor.Positive, 1, float64(s.study.Order()))
 }

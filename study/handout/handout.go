@@ -9,7 +9,6 @@ import (
 	"context"
 	"crypto/sha256"
 	"encoding/hex"
-	"encoding/json"
 	"fmt"
 	"time"
 
@@ -103,10 +102,9 @@ func (in *Input) digest() (string, error) {
 	raw := in.File
 	if raw == nil {
 		var err error
-		if raw, err = json.MarshalIndent(in.study(), "", "  "); err != nil {
+		if raw, err = in.study().Bytes(); err != nil {
 			return "", fmt.Errorf("the study cannot be written as a file: %w", err)
 		}
-		raw = append(raw, '\n')
 	}
 	sum := sha256.Sum256(raw)
 	return hex.EncodeToString(sum[:]), nil

@@ -49,9 +49,6 @@ func (p *printer) evidence() {
 			p.y = top - h - 10
 		}
 	}
-	if len(p.figures.sheets) > 0 {
-		p.open(false)
-	}
 }
 
 // placeIn draws a figure with its caption into width w and height h below the

@@ -36,7 +36,7 @@ func quantity(v InputValue) bool {
 		return false
 	}
 	switch x := v.Value.(type) {
-	case Num, int64:
+	case Num:
 		return true
 	case json.RawMessage:
 		return strings.Contains(string(x), "{")
@@ -127,20 +127,7 @@ func (p *printer) defaults() {
 			d := p.doc.Defaults[i]
 			values = append(values, fmt.Sprintf("%s: %s (%s)", d.Label, d.Default, strings.Join(d.Items, ", ")))
 		}
-		p.paragraph(span{p.small.bold(), kindTitle(p.doc.Defaults[first].Kind) + "  "}, span{p.small, strings.Join(values, "; ")})
+		p.paragraph(span{p.small.bold(), study.InfoOf(study.Kind(p.doc.Defaults[first].Kind)).Plural + "  "}, span{p.small, strings.Join(values, "; ")})
 		p.y -= 1.5
 	}
-}
-
-// kindTitle returns the plural of a kind of item, as a heading.
-func kindTitle(kind string) string {
-	switch study.Kind(kind) {
-	case study.KindSupply:
-		return "Supplies"
-	case study.KindBus:
-		return "Buses"
-	case study.KindNonlinearLoad:
-		return "Non-linear loads"
-	}
-	return strings.ToUpper(kind[:1]) + kind[1:] + "s"
 }

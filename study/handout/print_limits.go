@@ -23,6 +23,7 @@ func (p *printer) againstLimits() {
 	if len(p.after.Points) == 0 {
 		return
 	}
+	p.upright()
 	p.section("Against the limits", 60)
 	text := "Solid bar: after. Hollow bar: before. The line is the limit; a bar ends at twice the limit."
 	if p.before == nil {
@@ -216,6 +217,8 @@ func markWords(m limits.Mark) string {
 	switch m {
 	case limits.Memory:
 		return " (value from memory: to be confirmed against the document)"
+	case limits.Given:
+		return " (value given by the user)"
 	case limits.Derived:
 		return " (value derived: anyone can recompute it)"
 	}
@@ -239,6 +242,7 @@ func (p *printer) rules(n ruleNotes) {
 
 // busTable writes each bus's voltage and distortion.
 func (p *printer) busTable() {
+	p.upright()
 	p.section("Voltage at each bus", 60)
 	t := &table{columns: []column{
 		{head: "Bus", flex: 1, min: 90},
@@ -315,14 +319,10 @@ func largest(r *study.BusResult) (order int, percent float64) {
 	return order, percent
 }
 
+// busOf returns a bus of an outcome, nil when either is missing.
 func busOf(o *study.Outcome, name string) *study.BusResult {
 	if o == nil {
 		return nil
 	}
-	for i := range o.Buses {
-		if o.Buses[i].Name == name {
-			return &o.Buses[i]
-		}
-	}
-	return nil
+	return o.Bus(name)
 }

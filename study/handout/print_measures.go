@@ -2,6 +2,7 @@ package handout
 
 import (
 	"fmt"
+	"math"
 	"slices"
 	"strings"
 
@@ -13,6 +14,7 @@ import (
 // measures writes what was chosen and its cost, and a data sheet for each
 // measure that is on.
 func (p *printer) measures() {
+	p.upright()
 	if len(p.study.Measures) == 0 {
 		p.section("Measures", 20)
 		p.paragraph(span{p.body, "The study holds no measures."})
@@ -20,8 +22,14 @@ func (p *printer) measures() {
 	}
 	p.section("Measures", 70)
 	p.costTable()
+	capacitors := false
 	for i := range p.after.Measures {
-		p.dataSheet(&p.after.Measures[i])
+		r := &p.after.Measures[i]
+		p.dataSheet(r)
+		capacitors = capacitors || r.Duty != nil && r.Duty.RatedV > 0
+	}
+	if capacitors {
+		p.note("Capacitors: rating and duty of one phase, star equivalent. \"Over\" is said above 1.3 times rated current (IEC 60831-1), rated rms voltage, or 1.2 times the crest of rated voltage (IEEE 18); limits from memory, to be confirmed against the documents and the manufacturer.")
 	}
 }
 
@@ -144,7 +152,7 @@ func (p *printer) dataSheet(r *study.MeasureResult) {
 		p.table(response, half)
 	}
 	if len(r.Response) > 0 {
-		p.note("Outlet voltage over bus voltage by order, with the load behind the filter as the study describes it.")
+		p.note("Gain: outlet voltage over bus voltage, with the load behind the filter as the study describes it. Every order is in tables.xlsx.")
 	}
 	for _, text := range r.Notes {
 		p.skip(2)
@@ -199,34 +207,36 @@ func (p *printer) dutyTable(r *study.MeasureResult) *table {
 		return nil
 	}
 	t := &table{columns: []column{
-		{head: "Duty, worst phase", flex: 1, min: 80}, {head: "Order 1", align: point}, {head: "All orders", align: point}, {head: "Rating", align: point}, {head: ""},
+		{head: "Duty, worst phase", flex: 1, min: 80}, {head: ""}, {head: "Order 1", align: point}, {head: "All orders", align: point}, {head: "Rating", align: point}, {head: "Of it", unit: "%", align: point},
 	}}
-	add := func(name string, first, all, rating float64, unit string) {
+	add := func(name, unit string, first, all, rating, bearable float64) {
 		if all == 0 {
 			return
 		}
-		cells := plain(name, "", figures3(all), "", unit)
+		cells := plain(name, unit, "", figures3(all), "", "")
 		if first > 0 {
-			cells[1].text = figures3(first)
+			cells[2].text = figures3(first)
 		}
 		if rating > 0 {
-			cells[3].text = figures3(rating)
-			if all > rating*(1+1e-9) {
-				cells[2].style = p.small.bold().in(p.palette.Over)
-				cells[4].text += ", over"
-				cells[4].style = cells[2].style
+			cells[4].text, cells[5].text = figures3(rating), figures3(100*all/rating)
+			if all > bearable*rating*(1+1e-9) {
+				cells[5] = cell{text: figures3(100*all/rating) + " over", style: p.small.bold().in(p.palette.Over)}
 			}
 		}
 		t.add(cells...)
 	}
-	add("Line current, rms", d.CurrentA1, d.CurrentA, d.RatedA, "A")
-	add("Capacitor voltage, rms", d.VoltageV1, d.VoltageV, d.RatedV, "V")
-	add("Capacitor voltage, peak", 0, d.PeakV, 0, "V")
-	add("Loss, three phases", d.LossW1, d.LossW, 0, "W")
+	bearable := 1.0
+	if d.RatedV > 0 {
+		bearable = capacitorOvercurrent
+	}
+	add("Line current, rms", "A", d.CurrentA1, d.CurrentA, d.RatedA, bearable)
+	add("Capacitor voltage, rms", "V", d.VoltageV1, d.VoltageV, d.RatedV, 1)
+	add("Capacitor voltage, peak", "V", 0, d.PeakV, math.Sqrt2*d.RatedV, capacitorOverpeak)
+	add("Loss, three phases", "W", d.LossW1, d.LossW, 0, 0)
 	if d.KvarOutput > 0 {
-		cells := plain("Output, three phases", figures3(d.KvarOutput), "", "", "kvar")
+		cells := plain("Output, three phases", "kvar", figures3(d.KvarOutput), "", "", "")
 		if d.KvarRated > 0 {
-			cells[3].text = figures3(d.KvarRated)
+			cells[4].text = figures3(d.KvarRated)
 		}
 		t.add(cells...)
 	}
@@ -236,6 +246,18 @@ func (p *printer) dutyTable(r *study.MeasureResult) *table {
 	return t
 }
 
+// What a capacitor bears for long beyond its rated current and the crest of
+// its rated voltage: IEC 60831-1 (current, from memory) and IEEE 18 (peak,
+// from memory).
+const (
+	capacitorOvercurrent = 1.3
+	capacitorOverpeak    = 1.2
+)
+
+// respondsAt are the orders of which the gain of a low-pass is printed; all
+// are in the tables.
+var respondsAt = []int{1, 2, 3, 5, 7, 9, 11, 13, 17, 19, 23, 25}
+
 func responseTable(r *study.MeasureResult) *table {
 	if len(r.Response) == 0 {
 		return nil
@@ -244,6 +266,9 @@ func responseTable(r *study.MeasureResult) *table {
 		{head: "Order", align: right}, {head: "Gain", align: point}, {head: "Lag", unit: "deg", align: point}, {head: "", flex: 1},
 	}}
 	for _, g := range r.Response {
+		if !slices.Contains(respondsAt, g.Order) {
+			continue
+		}
 		t.add(plain(short(float64(g.Order)), figures3(g.Ratio), figures3(g.LagDeg), "")...)
 	}
 	return t

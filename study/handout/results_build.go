@@ -38,7 +38,9 @@ func NewResults(in Input) (*Results, error) {
 	}
 	doc.Before = b.state("before", in.Before)
 	doc.After = b.state("after", in.After)
-	doc.Provenance, doc.Defaults = inputs(s)
+	if doc.Provenance, doc.Defaults, err = inputs(s); err != nil {
+		return nil, err
+	}
 	if b.err != nil {
 		return nil, b.err
 	}

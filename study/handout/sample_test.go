@@ -85,6 +85,15 @@ func sampleOutcome(s *study.Study, on []string, level float64) *study.Outcome {
 		{Name: "Drives", Kind: study.KindNonlinearLoad, Ends: []study.EndResult{{Bus: "Board A", Phase: heavy}}},
 	}
 	o.Points = []study.PointResult{samplePoint("PCC", "PCC", level, true), samplePoint("Board A", "Board A", 3*level, false)}
+	for _, name := range []string{"PCC", "Board A"} {
+		r := study.ScanResult{Name: "look into " + name, Bus: name, Sequence: phasor.Positive}
+		for h := 1.0; h <= float64(n); h += 0.25 {
+			r.Orders = append(r.Orders, h)
+			r.Z = append(r.Z, 1/(1/complex(0.002, 0.01*h)+complex(0, h/(1.1+level))))
+		}
+		r.Peaks = []study.Peak{{Order: 11.2, Ohm: 0.21, Q: 9}}
+		o.Scans = append(o.Scans, r)
+	}
 	if len(on) > 0 {
 		o.Measures = sampleMeasures()
 		o.Warnings = []string{"Filter 5 carries 4.1 % more than its rating at the highest supply voltage."}

@@ -101,7 +101,7 @@ func (b *book) tableIn(t *table, x, w vg.Length) {
 			keep += b.rowHeight(t, g, &t.rows[i+1])
 		}
 		if b.room() < keep {
-			b.open(b.size().w > b.size().h)
+			b.open(b.lying())
 			b.tableHead(t, g, head)
 		}
 		b.tableRow(t, g, r, h)

@@ -1,10 +1,13 @@
 package handout
 
 import (
+	"archive/zip"
 	"bytes"
 	"encoding/csv"
 	"fmt"
+	"slices"
 	"strconv"
+	"strings"
 
 	"github.com/xuri/excelize/v2"
 )
@@ -182,7 +185,7 @@ func inputSheet(doc *Results) *sheet {
 	for _, v := range doc.Provenance {
 		value := v.Value
 		switch value.(type) {
-		case Num, int64, bool, string:
+		case Num, bool, string:
 		default:
 			value = valueText(v)
 		}
@@ -263,6 +266,30 @@ func workbook(list []*sheet) (raw []byte, err error) {
 	var b bytes.Buffer
 	if _, err := book.WriteTo(&b); err != nil {
 		return nil, fmt.Errorf("tables.xlsx: %w", err)
+	}
+	if raw, err = sorted(b.Bytes()); err != nil {
+		return nil, fmt.Errorf("tables.xlsx: %w", err)
+	}
+	return raw, nil
+}
+
+// sorted puts the parts of a workbook, which is a ZIP archive, in the order of
+// their names: streamed sheets come in any order.
+func sorted(raw []byte) ([]byte, error) {
+	in, err := zip.NewReader(bytes.NewReader(raw), int64(len(raw)))
+	if err != nil {
+		return nil, err
+	}
+	slices.SortFunc(in.File, func(a, b *zip.File) int { return strings.Compare(a.Name, b.Name) })
+	var b bytes.Buffer
+	out := zip.NewWriter(&b)
+	for _, f := range in.File {
+		if err := out.Copy(f); err != nil {
+			return nil, err
+		}
+	}
+	if err := out.Close(); err != nil {
+		return nil, err
 	}
 	return b.Bytes(), nil
 }
