@@ -182,6 +182,9 @@ func (c *coverage) spans(paint func(y, x0, x1 int, cover float32)) {
 				x = at + 1
 			}
 		}
+		if v := cut(sum); v > visible && x > 0 && x < c.w { // its right edge is outside
+			paint(y, x, c.w, v)
+		}
 	}
 	c.top, c.below = c.h, 0
 }
@@ -196,18 +199,92 @@ func cut(sum float32) float32 {
 // An ink is a premultiplied colour, eight bits a channel.
 type ink struct{ r, g, b, a uint32 }
 
-// blend paints the collected coverage into a picture and empties it.
+// blend paints the collected coverage into a picture and empties it. It is
+// spans with the painting written out: most runs are one pixel, and a call for
+// each would cost more than the pixel.
 func (c *coverage) blend(dst *image.RGBA, k ink) {
-	pix, stride := dst.Pix, dst.Stride
-	c.spans(func(y, x0, x1 int, cover float32) {
-		m := uint32(cover*255 + 0.5)
-		line := pix[y*stride+4*x0 : y*stride+4*x1 : y*stride+4*x1]
-		blendRun(line, k, m)
-	})
+	for y := c.top; y < c.below; y++ {
+		row := c.cells[y*c.stride : (y+1)*c.stride]
+		mask := c.touched[y*c.words : (y+1)*c.words]
+		line := dst.Pix[y*dst.Stride : y*dst.Stride+4*c.w]
+		var sum float32
+		m := uint32(0) // cover of the sum, 0..255
+		x := 0
+		for i, word := range mask {
+			if word == 0 {
+				continue
+			}
+			mask[i] = 0
+			for ; word != 0; word &= word - 1 {
+				at := i<<6 + bits.TrailingZeros64(word)
+				if m != 0 && at > x && x < c.w {
+					blendRun(line[4*x:4*min(at, c.w)], k, m)
+				}
+				x = at + 1
+				sum += row[at]
+				row[at] = 0
+				m = uint32(cut(sum)*255 + 0.5)
+				if m == 0 || at >= c.w {
+					continue
+				}
+				p := line[4*at : 4*at+4 : 4*at+4]
+				if k.a == 255 {
+					if m == 255 {
+						p[0], p[1], p[2], p[3] = uint8(k.r), uint8(k.g), uint8(k.b), 255
+						continue
+					}
+					n := 255 - m
+					p[0] = uint8((k.r*m + uint32(p[0])*n + 127) / 255)
+					p[1] = uint8((k.g*m + uint32(p[1])*n + 127) / 255)
+					p[2] = uint8((k.b*m + uint32(p[2])*n + 127) / 255)
+					p[3] = uint8((255*m + uint32(p[3])*n + 127) / 255)
+					continue
+				}
+				blendRun(p, k, m)
+			}
+		}
+		if m != 0 && x < c.w { // its right edge is outside
+			blendRun(line[4*x:], k, m)
+		}
+	}
+	c.top, c.below = c.h, 0
+}
+
+// blendRect paints a rectangle with sides along the pixels, in pixels.
+func blendRect(dst *image.RGBA, k ink, x0, y0, x1, y1 float64) {
+	w, h := float64(dst.Rect.Dx()), float64(dst.Rect.Dy())
+	x0, y0, x1, y1 = max(x0, 0), max(y0, 0), min(x1, w), min(y1, h)
+	if !(x0 < x1 && y0 < y1) {
+		return
+	}
+	left, right := int(x0), int(math.Ceil(x1))
+	part := func(lo, hi float64, cell int) float64 {
+		return min(hi, float64(cell+1)) - max(lo, float64(cell))
+	}
+	first, last := part(x0, x1, left), part(x0, x1, right-1)
+	for y := int(y0); y < int(math.Ceil(y1)); y++ {
+		v := part(y0, y1, y) * 255
+		line := dst.Pix[y*dst.Stride : y*dst.Stride+4*dst.Rect.Dx()]
+		from, to := left, right
+		if first < 1 {
+			blendRun(line[4*left:4*left+4], k, uint32(first*v+0.5))
+			from++
+		}
+		if last < 1 && right-1 > left {
+			blendRun(line[4*(right-1):4*right], k, uint32(last*v+0.5))
+			to--
+		}
+		if from < to {
+			blendRun(line[4*from:4*to], k, uint32(v+0.5))
+		}
+	}
 }
 
 // blendRun lays an ink of coverage m (0..255) over a run of pixels.
 func blendRun(line []uint8, k ink, m uint32) {
+	if m == 0 {
+		return
+	}
 	if m == 255 && k.a == 255 {
 		for i := 0; i+3 < len(line); i += 4 {
 			line[i], line[i+1], line[i+2], line[i+3] = uint8(k.r), uint8(k.g), uint8(k.b), 255

@@ -119,14 +119,12 @@ func (r *Raster) SetLineDash(pattern []vg.Length, offset vg.Length) {
 }
 
 // SetColor sets the colour of strokes, fills and text; nil is black.
-func (r *Raster) SetColor(c color.Color) {
+func (r *Raster) SetColor(c color.Color) { r.state.ink = inkOf(c) }
+
+func inkOf(c color.Color) ink {
 	if c == nil {
 		c = color.Black
 	}
-	r.state.ink = inkOf(c)
-}
-
-func inkOf(c color.Color) ink {
 	red, green, blue, alpha := c.RGBA()
 	return ink{red >> 8, green >> 8, blue >> 8, alpha >> 8}
 }
@@ -164,6 +162,12 @@ func (r *Raster) Pop() {
 // Fill fills a path by the non-zero rule.
 func (r *Raster) Fill(p vg.Path) {
 	r.flatten(p)
+	if len(r.parts) == 1 {
+		if a, b, ok := upright(r.parts[0].pts); ok {
+			blendRect(r.img, r.state.ink, a.x, a.y, b.x, b.y)
+			return
+		}
+	}
 	for _, part := range r.parts {
 		n := len(part.pts)
 		if n < 3 {
@@ -187,7 +191,11 @@ func (r *Raster) Stroke(p vg.Path) {
 	}
 	r.flatten(p)
 	if len(r.state.dashes) == 0 {
+		if len(r.parts) == 1 && r.strokeUpright(r.parts[0], width/2) {
+			return
+		}
 		for _, part := range r.parts {
+			part.pts = thin(part.pts, thinness)
 			r.cover.stroke(part, width)
 		}
 	} else {
@@ -200,6 +208,44 @@ func (r *Raster) Stroke(p vg.Path) {
 		}
 	}
 	r.cover.blend(r.img, r.state.ink)
+}
+
+// thinness is how far, in pixels, a thinned line may be from the true one.
+const thinness = 0.06
+
+// upright tells whether points are the corners of a rectangle with sides along
+// the pixels, and returns its top left and bottom right.
+func upright(pts []pixelPoint) (a, b pixelPoint, ok bool) {
+	n := len(pts)
+	if n == 5 && pts[4] == pts[0] {
+		n = 4
+	}
+	if n != 4 {
+		return a, b, false
+	}
+	p, q, s, t := pts[0], pts[1], pts[2], pts[3]
+	if !(p.x == q.x && q.y == s.y && s.x == t.x && t.y == p.y) && !(p.y == q.y && q.x == s.x && s.y == t.y && t.x == p.x) {
+		return a, b, false
+	}
+	return pixelPoint{min(p.x, s.x), min(p.y, s.y)}, pixelPoint{max(p.x, s.x), max(p.y, s.y)}, true
+}
+
+// strokeUpright draws a single line along the pixels, such as a grid line, and
+// tells whether it was one.
+func (r *Raster) strokeUpright(line polyline, half float64) bool {
+	if len(line.pts) != 2 || line.closed {
+		return false
+	}
+	a, b := line.pts[0], line.pts[1]
+	switch {
+	case a.y == b.y:
+		blendRect(r.img, r.state.ink, min(a.x, b.x), a.y-half, max(a.x, b.x), a.y+half)
+	case a.x == b.x:
+		blendRect(r.img, r.state.ink, a.x-half, min(a.y, b.y), a.x+half, max(a.y, b.y))
+	default:
+		return false
+	}
+	return true
 }
 
 // flatten turns a path into polylines in pixels. Points that are not numbers

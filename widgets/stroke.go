@@ -11,6 +11,50 @@ type polyline struct {
 	closed bool
 }
 
+// thin leaves out points of a polyline that no one would miss: those within
+// tolerance of the line between their neighbours that stay. It keeps a cone of
+// directions from the last point kept that passes all since, so it looks at
+// each point once. The result overwrites the input.
+func thin(pts []pixelPoint, tolerance float64) []pixelPoint {
+	if len(pts) < 3 {
+		return pts
+	}
+	out := pts[:1]
+	start, last := pts[0], pts[0]
+	reach := 0.0               // farthest point since start
+	var lx, ly, rx, ry float64 // sides of the cone, unit vectors
+	open := true               // any direction passes
+	for _, p := range pts[1:] {
+		dx, dy := p.x-start.x, p.y-start.y
+		d := math.Sqrt(dx*dx + dy*dy)
+		passes := open || (d >= reach && lx*dy-ly*dx >= 0 && rx*dy-ry*dx <= 0)
+		if !passes {
+			out = append(out, last)
+			start, open, reach = last, true, 0
+			dx, dy = p.x-start.x, p.y-start.y
+			d = math.Sqrt(dx*dx + dy*dy)
+		}
+		last = p
+		if d <= tolerance {
+			continue
+		}
+		reach = d
+		s := tolerance / d
+		k := math.Sqrt(1 - s*s)
+		ux, uy := dx/d, dy/d
+		alx, aly := ux*k+uy*s, uy*k-ux*s // turned back by the tolerance
+		arx, ary := ux*k-uy*s, uy*k+ux*s // turned on
+		if open || lx*aly-ly*alx > 0 {
+			lx, ly = alx, aly
+		}
+		if open || rx*ary-ry*arx < 0 {
+			rx, ry = arx, ary
+		}
+		open = false
+	}
+	return append(out, last)
+}
+
 // stroke adds the outline of a polyline drawn with a pen of the given width:
 // one quadrilateral a segment, and a wedge on the outer side of each turn. All
 // have the same orientation, so overlaps cut off at full coverage and nothing
@@ -69,9 +113,9 @@ func (c *coverage) turn(p pixelPoint, ax, ay, bx, by, half float64) {
 	if math.Abs(cross) < 1e-9 && ax*bx+ay*by > 0 {
 		return
 	}
-	steps := 1
-	angle := math.Atan2(cross, ax*bx+ay*by)
+	steps, angle := 1, 0.0
 	if half > 0.75 {
+		angle = math.Atan2(cross, ax*bx+ay*by)
 		steps = 1 + int(math.Abs(angle)*math.Sqrt(half)*1.2)
 	}
 	// The outer side is along -n when turning towards +n, else along +n. The
