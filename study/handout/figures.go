@@ -2,6 +2,7 @@ package handout
 
 import (
 	"context"
+	"math/cmplx"
 	"slices"
 
 	"quietbus/study"
@@ -35,14 +36,17 @@ func (s *figureSheet) rows() (rows [][]drawn) {
 
 // figureSet holds every figure of a handout.
 type figureSet struct {
-	single *drawn
-	sheets []figureSheet
+	single  *drawn
+	margins *drawn
+	sheets  []figureSheet
 }
 
 // all lists the figures, each key once.
 func (s *figureSet) all() (list []drawn) {
-	if s.single != nil {
-		list = append(list, *s.single)
+	for _, f := range []*drawn{s.single, s.margins} {
+		if f != nil {
+			list = append(list, *f)
+		}
 	}
 	for _, sh := range s.sheets {
 		for _, f := range sh.figures {
@@ -64,7 +68,7 @@ func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet,
 		set.single = &drawn{f, true}
 	}
 	if len(after.Points) > 0 {
-		set.sheets = append(set.sheets, figureSheet{"Share of each limit used", []drawn{{figure.Margins(before, after), true}}})
+		set.margins = &drawn{figure.Margins(before, after), true}
 	}
 	var done []string
 	for i := range s.Assessments {
@@ -84,7 +88,31 @@ func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet,
 			}})
 		}
 	}
+	if rest := scanFigures(before, after, done); len(rest) > 0 {
+		for i := 0; i < len(rest); i += 4 {
+			set.sheets = append(set.sheets, figureSheet{"Impedance scans", rest[i:min(i+4, len(rest))]})
+		}
+	}
 	return set, nil
+}
+
+// scanFigures returns the impedances that the study asks for and that no bus
+// in shown shows.
+func scanFigures(before, after *study.Outcome, shown []string) (list []drawn) {
+	for i := range after.Scans {
+		now := &after.Scans[i]
+		if now.Sequence == phasor.Positive && slices.Contains(shown, now.Bus) {
+			continue
+		}
+		var old []*study.ScanResult
+		if before != nil && i < len(before.Scans) && before.Scans[i].Name == now.Name {
+			old = scanList(&before.Scans[i])
+		}
+		f := figure.Impedance(old, scanList(now), injected(after))
+		f.Key += "-" + now.Sequence.String()
+		list = append(list, drawn{f, false})
+	}
+	return list
 }
 
 // busFigures returns the voltage and the impedance at one bus.
@@ -102,9 +130,29 @@ func busFigures(ctx context.Context, look *scans, before, after *study.Outcome, 
 		}
 	}
 	if now != nil {
-		sh.figures = append(sh.figures, drawn{figure.Impedance(scanList(old), scanList(now), nil), false})
+		sh.figures = append(sh.figures, drawn{figure.Impedance(scanList(old), scanList(now), injected(after)), false})
 	}
 	return sh, nil
+}
+
+// injected lists the orders at which a non-linear load draws more than 1 % of
+// its own fundamental.
+func injected(o *study.Outcome) (orders []int) {
+	for i := range o.Elements {
+		e := &o.Elements[i]
+		if e.Kind != study.KindNonlinearLoad || len(e.Ends) == 0 {
+			continue
+		}
+		for _, x := range e.Ends[0].Phase {
+			for h := 2; h < len(x); h++ {
+				if cmplx.Abs(x[h]) > 0.01*cmplx.Abs(x[1]) && !slices.Contains(orders, h) {
+					orders = append(orders, h)
+				}
+			}
+		}
+	}
+	slices.Sort(orders)
+	return orders
 }
 
 func scanList(r *study.ScanResult) []*study.ScanResult {

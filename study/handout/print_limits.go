@@ -33,6 +33,12 @@ func (p *printer) againstLimits() {
 	for i := range p.after.Points {
 		p.pointTable(i)
 	}
+	if f := p.figures.margins; f != nil {
+		h := f.Size.Y + 24
+		p.need(h + 12)
+		p.skip(12)
+		p.placeIn(*f, marginLeft, p.width(), h)
+	}
 }
 
 // pair is one limit row after, and before when there is one.

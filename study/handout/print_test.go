@@ -35,6 +35,24 @@ func made(t testing.TB, in Input, paper Paper) map[string][]byte {
 	return out
 }
 
+// summary returns the text of the PDF alone, without the pictures that take
+// the time.
+func summary(t *testing.T, in Input, paper Paper) (text string, raw []byte) {
+	t.Helper()
+	doc, err := NewResults(in)
+	if err != nil {
+		t.Fatal(err)
+	}
+	set, err := figures(context.Background(), &in, in.compared())
+	if err != nil {
+		t.Fatal(err)
+	}
+	if raw, err = printed(context.Background(), in, doc, set, Options{Paper: paper, Date: testDate}); err != nil {
+		t.Fatal(err)
+	}
+	return pdfText(t, raw), raw
+}
+
 // squeezed joins words by single spaces, so that line ends do not matter.
 func squeezed(text string) string { return strings.Join(strings.Fields(text), " ") }
 
@@ -42,8 +60,7 @@ func squeezed(text string) string { return strings.Join(strings.Fields(text), " 
 func TestPrinted(t *testing.T) {
 	for _, paper := range []Paper{A4, Letter} {
 		in := sample()
-		out := made(t, in, paper)
-		text := pdfText(t, out["handout.pdf"])
+		text, raw := summary(t, in, paper)
 		flat := squeezed(text)
 		for _, v := range study.Verdict(in.Before, in.After) {
 			for _, word := range strings.Fields(v.Text + " " + v.Before) {
@@ -52,7 +69,7 @@ func TestPrinted(t *testing.T) {
 				}
 			}
 		}
-		pages := strings.Count(string(out["handout.pdf"]), "/Type /Page\n")
+		pages := strings.Count(string(raw), "/Type /Page\n")
 		for i := 1; i <= pages; i++ {
 			if n := strings.Count(flat, fmt.Sprintf("page %d of %d", i, pages)); n != 1 {
 				t.Errorf("%s: page %d of %d is numbered %d times", paper, i, pages, n)
@@ -77,7 +94,7 @@ func TestPrinted(t *testing.T) {
 			}
 		}
 		w, h := paper.Size()
-		if box := fmt.Sprintf("%.2f %.2f", h.Points(), w.Points()); !strings.Contains(string(out["handout.pdf"]), box) {
+		if box := fmt.Sprintf("%.2f %.2f", h.Points(), w.Points()); !strings.Contains(string(raw), box) {
 			t.Errorf("%s: no lying page of %s points", paper, box)
 		}
 	}
@@ -114,7 +131,8 @@ func TestStates(t *testing.T) {
 		"nothing":        {bare, []string{"Nothing yet", "No assessment point yet", "holds no measures"}, []string{"Invented data"}},
 		"no points":      {none, []string{"No assessment point yet"}, []string{"Against the limits"}},
 	} {
-		text := squeezed(pdfText(t, made(t, c.in, A4)["handout.pdf"]))
+		text, _ := summary(t, c.in, A4)
+		text = squeezed(text)
 		for _, want := range c.with {
 			if !strings.Contains(text, want) {
 				t.Errorf("%s: %q is not printed", name, want)
