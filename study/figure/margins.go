@@ -116,9 +116,9 @@ func drawMargins(p *pen, list []share, both bool) []Hot {
 			far = max(far, at(l.before))
 		}
 		if l.after > 1 {
-			p.writeBold(far+0.6*s.Small, y, left, s.Small, s.Over, "over "+fmt.Sprintf("%.2f×", l.after))
+			p.patch(far+0.6*s.Small, y, s.Small, s.Over, true, fmt.Sprintf("over %.2f×", l.after))
 		} else {
-			p.write(far+0.6*s.Small, y, left, s.Small, s.Ink, fmt.Sprintf("%.0f %%", 100*l.after))
+			p.patch(far+0.6*s.Small, y, s.Small, s.Ink, false, fmt.Sprintf("%.0f %%", 100*l.after))
 		}
 		text := l.name + "\nafter\t" + fmt.Sprintf("%.3g %% of its limit", 100*l.after) + "\n\t" + l.detail
 		if !math.IsNaN(l.before) {

@@ -172,6 +172,17 @@ func number(v float64) string {
 	}
 }
 
+// plain formats a nameplate value as it was typed.
+func plain(v float64) string { return strconv.FormatFloat(v, 'g', 6, 64) }
+
+// patch writes a text on a piece of ground of its own, so that lines behind it
+// do not cross it.
+func (p *pen) patch(x, y vg.Length, size vg.Length, ink color.Color, bold bool, words string) {
+	ts := p.st.text(size, ink, bold, false)
+	p.fill(rect(x-1, y-0.55*size, x+ts.Width(words)+1, y+0.55*size), p.st.Ground)
+	p.set(ts, x, y, left, words)
+}
+
 // empty says in the middle of the canvas why there is nothing to see.
 func (p *pen) empty(words string) []Hot {
 	r := p.c.Rectangle

@@ -91,12 +91,12 @@ func (d *diagram) supply(s *PlacedSupply) {
 	d.infeed(q, 8, d.st.Line, d.st.Ink)
 	for _, x := range d.s.Supplies {
 		if x.Name == s.Name {
-			level := number(x.FaultMVA) + " MVA"
+			level := plain(x.FaultMVA) + " MVA"
 			if x.FaultKA > 0 {
-				level = number(x.FaultKA) + " kA"
+				level = plain(x.FaultKA) + " kA"
 			}
 			d.writeBold(q.X+13, q.Y+4.5, left, d.st.Small, d.st.Ink, s.Name)
-			d.write(q.X+13, q.Y-5, left, d.st.Small, d.st.Muted, level+", X/R "+number(x.XOverR))
+			d.write(q.X+13, q.Y-5, left, d.st.Small, d.st.Muted, level+", X/R "+plain(x.XOverR))
 		}
 	}
 	r := rect(q.X-10, q.Y-10, q.X+14+d.width(d.st.Small, s.Name), q.Y+10)
@@ -115,7 +115,8 @@ func (d *diagram) bus(b *PlacedBus) {
 		ink = d.st.Muted
 	}
 	d.fill(rect(x0, y-1.3, x1, y+1.3), ink)
-	d.writeBold(x0, y+24, left, d.st.Body, ink, d.fit(d.st.Body, x1-x0-46, b.Name))
+	text := d.wordsAt(b)
+	d.writeBold(text, y+24, left, d.st.Body, ink, d.fit(d.st.Body, x1-text-44, b.Name))
 	words := d.voltage(b.Name)
 	switch {
 	case dead:
@@ -127,9 +128,9 @@ func (d *diagram) bus(b *PlacedBus) {
 		}
 		words += number(100*now.THD()) + " %"
 	}
-	d.write(x0, y+11, left, d.st.Small, d.st.Muted, words)
+	d.write(text, y+11, left, d.st.Small, d.st.Muted, words)
 	if over, times := d.over(b.Name); over {
-		at := vg.Point{X: x0 + d.width(d.st.Small, words) + 11, Y: y + 11}
+		at := vg.Point{X: text + d.width(d.st.Small, words) + 11, Y: y + 11}
 		var path vg.Path
 		path.Move(vg.Point{X: at.X, Y: at.Y + 5})
 		path.Line(vg.Point{X: at.X + 5, Y: at.Y})
@@ -146,6 +147,18 @@ func (d *diagram) bus(b *PlacedBus) {
 	d.rake(b)
 }
 
+// wordsAt returns where the words of a bus begin: right of a feeder that comes
+// down at the bar's left end, so that no line crosses text.
+func (d *diagram) wordsAt(b *PlacedBus) vg.Length {
+	x := px(b.X)
+	for i := range d.lay.Feeders {
+		if f := &d.lay.Feeders[i]; f.Tree && f.To == b.Name && f.X >= b.X && f.X < b.X+2 {
+			x = px(f.X) + 6
+		}
+	}
+	return x
+}
+
 func (d *diagram) result(o *study.Outcome, bus string) *study.BusResult {
 	if o == nil {
 		return nil
@@ -157,9 +170,9 @@ func (d *diagram) voltage(bus string) string {
 	for _, b := range d.s.Buses {
 		if b.Name == bus {
 			if b.NominalKV < 1 {
-				return number(1000*b.NominalKV) + " V"
+				return plain(1000*b.NominalKV) + " V"
 			}
-			return number(b.NominalKV) + " kV"
+			return plain(b.NominalKV) + " kV"
 		}
 	}
 	return ""
@@ -303,21 +316,21 @@ func (d *diagram) rating(row Row) string {
 	switch x := item.(type) {
 	case *study.NonlinearLoad:
 		if x.CurrentA > 0 {
-			return number(x.CurrentA) + " A" + phaseWords(x.Connection)
+			return plain(x.CurrentA) + " A" + phaseWords(x.Connection)
 		}
-		return number(x.KW) + " kW" + phaseWords(x.Connection)
+		return plain(x.KW) + " kW" + phaseWords(x.Connection)
 	case *study.Load:
-		return number(x.KW) + " kW" + phaseWords(x.Connection)
+		return plain(x.KW) + " kW" + phaseWords(x.Connection)
 	case *study.Motor:
-		return number(x.KW) + " kW"
+		return plain(x.KW) + " kW"
 	case *study.Bank:
-		text := number(x.Kvar) + " kvar"
+		text := plain(x.Kvar) + " kvar"
 		if x.DetuningPercent > 0 {
-			text += ", " + number(x.DetuningPercent) + " %"
+			text += ", " + plain(x.DetuningPercent) + " %"
 		}
 		return text
 	case *study.Filter:
-		return number(x.Kvar) + " kvar, order " + number(x.Order)
+		return plain(x.Kvar) + " kvar, order " + plain(x.Order)
 	}
 	return ""
 }
@@ -333,17 +346,17 @@ func phaseWords(c study.Connection) string {
 func MeasureWords(m *study.Measure) string {
 	switch m.Kind {
 	case study.SingleTuned:
-		return fmt.Sprintf("tuned filter, %s kvar, order %s", number(m.Kvar), number(m.Order))
+		return fmt.Sprintf("tuned filter, %s kvar, order %s", plain(m.Kvar), plain(m.Order))
 	case study.HighPass:
-		return fmt.Sprintf("high-pass, %s kvar, order %s", number(m.Kvar), number(m.Order))
+		return fmt.Sprintf("high-pass, %s kvar, order %s", plain(m.Kvar), plain(m.Order))
 	case study.DetuneBank:
-		return fmt.Sprintf("detune %s, %s %%", m.Target, number(m.Percent))
+		return fmt.Sprintf("detune %s, %s %%", m.Target, plain(m.Percent))
 	case study.RemoveBank:
 		return "remove " + m.Target
 	case study.ActiveFilter:
-		return "active filter, " + number(m.RatedA) + " A"
+		return "active filter, " + plain(m.RatedA) + " A"
 	case study.LineReactor:
-		return fmt.Sprintf("line reactor %s %% on %s", number(m.Percent), m.Target)
+		return fmt.Sprintf("line reactor %s %% on %s", plain(m.Percent), m.Target)
 	case study.LowPassRC:
 		return "R-C low-pass before " + m.Target
 	case study.LowPassLC:
@@ -443,7 +456,7 @@ func (d *diagram) device(f *Feeder, q vg.Point) {
 		d.transformer(q, 8, d.st.Line, d.st.Ink)
 		for _, t := range d.s.Transformers {
 			if t.Name == f.Name {
-				words[1] = number(t.RatedKVA) + " kVA  " + t.VectorGroup
+				words[1] = plain(t.RatedKVA) + " kVA  " + t.VectorGroup
 			}
 		}
 	case study.KindReactor:
@@ -455,7 +468,7 @@ func (d *diagram) device(f *Feeder, q vg.Point) {
 		d.fillPath(d.st.Ink, circle(q, 1.6))
 		for _, c := range d.s.Cables {
 			if c.Name == f.Name {
-				words[1] = number(c.LengthM) + " m"
+				words[1] = plain(c.LengthM) + " m"
 			}
 		}
 	}

@@ -210,7 +210,7 @@ func drawSpectrum(p *pen, sel Selection, b, a series, rows map[int]limits.Row, s
 	for _, h := range carried {
 		x.bars(h, bar, b, a, rows)
 	}
-	x.limits(rows, carried, last, set)
+	x.limits(rows, carried, last, set, b, a)
 	x.base(0)
 	x.orderLabels(carried)
 	for _, h := range carried {
@@ -285,7 +285,7 @@ func (x *axes) bars(h int, bar vg.Length, b, a series, rows map[int]limits.Row) 
 		if over {
 			x.hatch(rect(r.Min.X, body.Max.Y, r.Max.X, r.Max.Y), x.st.Over)
 			if i == 1 || !a.ok {
-				x.write(at, r.Max.Y+x.st.Small*0.8, centre, x.st.Small, x.st.Over, fmt.Sprintf("over %.2g×", v/limit.Limit))
+				x.write(at, r.Max.Y+x.st.Small*0.8, centre, x.st.Small, x.st.Over, fmt.Sprintf("over %.2f×", v/limit.Limit))
 			}
 		}
 	}
@@ -293,7 +293,7 @@ func (x *axes) bars(h int, bar vg.Length, b, a series, rows map[int]limits.Row) 
 
 // limits draws the limit of each order as a step, joined where neighbours are
 // equal, and writes the set's name on it.
-func (x *axes) limits(rows map[int]limits.Row, carried []int, last int, set string) {
+func (x *axes) limits(rows map[int]limits.Row, carried []int, last int, set string, b, a series) {
 	if len(rows) == 0 {
 		return
 	}
@@ -306,33 +306,59 @@ func (x *axes) limits(rows map[int]limits.Row, carried []int, last int, set stri
 		}
 	}
 	var path vg.Path
-	highest := vg.Point{Y: -1}
-	seen := false
+	var steps []vg.Rectangle
 	for h := 2; h <= last; h++ {
 		r, ok := rows[h]
-		if !ok || r.Limit > x.y1 {
-			continue
-		}
-		if !uniform && !hasOrder(carried, h) {
+		if !ok || r.Limit > x.y1 || (!uniform && !hasOrder(carried, h)) {
 			continue
 		}
 		y := x.y(r.Limit)
-		path.Move(vg.Point{X: x.x(float64(h) - 0.5), Y: y})
-		path.Line(vg.Point{X: x.x(float64(h) + 0.5), Y: y})
-		if y >= highest.Y {
-			highest, seen = vg.Point{X: x.x(float64(h) + 0.5), Y: y}, true
-		}
+		steps = append(steps, rect(x.x(float64(h)-0.5), y, x.x(float64(h)+0.5), y))
+		path.Move(steps[len(steps)-1].Min)
+		path.Line(steps[len(steps)-1].Max)
 	}
-	if !seen {
+	if len(steps) == 0 {
 		return
 	}
 	x.strokePath(x.st.Line*1.3, x.st.Limit, nil, path)
-	w := x.width(x.st.Small, set)
-	at := x.area.Max.X - w
-	if !uniform {
-		at = min(at, highest.X+0.4*x.st.Small)
+	at := x.labelPlace(steps, carried, set, b, a)
+	x.write(at.X, at.Y, left, x.st.Small, x.st.Limit, set)
+}
+
+// labelPlace finds room for the set's name on one of the limit's steps: above
+// it, from the last step to the first, where no bar and no other step is in the
+// way; above everything at the right when there is none.
+func (x *axes) labelPlace(steps []vg.Rectangle, carried []int, set string, b, a series) vg.Point {
+	size := x.st.Small
+	w := x.width(size, set)
+	for i := len(steps) - 1; i >= 0; i-- {
+		for _, from := range []vg.Length{steps[i].Min.X, steps[i].Max.X - w} {
+			place := rect(from, steps[i].Min.Y+0.25*size, from+w, steps[i].Min.Y+1.35*size)
+			if place.Max.X > x.area.Max.X || place.Min.X < x.area.Min.X || place.Max.Y > x.area.Max.Y {
+				continue
+			}
+			free := true
+			for _, s := range steps {
+				free = free && !meet(place, s)
+			}
+			for _, h := range carried {
+				for _, s := range []series{b, a} {
+					if s.ok && h < len(s.value) {
+						at := x.x(float64(h))
+						free = free && !meet(place, rect(at-10, x.y(0), at+10, x.y(s.value[h])+size))
+					}
+				}
+			}
+			if free {
+				return vg.Point{X: from, Y: steps[i].Min.Y + 0.8*size}
+			}
+		}
 	}
-	x.write(at, highest.Y+0.75*x.st.Small, left, x.st.Small, x.st.Limit, set)
+	return vg.Point{X: x.area.Max.X - w, Y: x.area.Max.Y - 0.8*size}
+}
+
+func meet(a, b vg.Rectangle) bool {
+	return a.Min.X < b.Max.X && b.Min.X < a.Max.X && a.Min.Y <= b.Max.Y && b.Min.Y <= a.Max.Y
 }
 
 func hasOrder(list []int, h int) bool {
