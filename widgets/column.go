@@ -2,13 +2,14 @@ package widgets
 
 import "fyne.io/fyne/v2"
 
-// A column stacks objects at full width. It reads an object's least height
+// A column stacks objects at full width, less a margin on the right. It reads an object's least height
 // after giving it its width, since wrapped text depends on it.
-type column struct{ gap float32 }
+type column struct{ gap, right float32 }
 
 // Layout implements fyne.Layout.
 func (c column) Layout(objects []fyne.CanvasObject, size fyne.Size) {
 	y := float32(0)
+	size.Width = max(size.Width-c.right, 0)
 	for _, o := range objects {
 		if !o.Visible() {
 			continue
@@ -37,5 +38,6 @@ func (c column) MinSize(objects []fyne.CanvasObject) fyne.Size {
 		}
 	}
 	s.Height = max(s.Height-c.gap, 0)
+	s.Width += c.right
 	return s
 }

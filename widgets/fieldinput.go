@@ -5,7 +5,6 @@ import (
 	"strings"
 
 	"fyne.io/fyne/v2"
-	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
 )
 
@@ -38,8 +37,8 @@ func (e *fieldEntry) FocusGained() {
 
 // TypedKey implements fyne.Focusable: escape cancels.
 func (e *fieldEntry) TypedKey(k *fyne.KeyEvent) {
-	if k.Name == fyne.KeyEscape && e.row.sheet.OnCancel != nil {
-		e.row.sheet.OnCancel()
+	if k.Name == fyne.KeyEscape {
+		e.row.escape()
 		return
 	}
 	e.Entry.TypedKey(k)
@@ -69,13 +68,15 @@ func (s *fieldSelect) put() {
 	s.values = slices.Clone(f.Choices)
 	labels := slices.Clone(f.Choices)
 	copy(labels, f.Labels)
-	if !f.Need {
-		empty := "none"
-		if f.Default != "" {
-			empty = f.Default
-		}
+	if !f.Need && !slices.Contains(s.values, "") {
 		s.values = slices.Insert(s.values, 0, "")
-		labels = slices.Insert(labels, 0, "("+empty+")")
+		labels = slices.Insert(labels, 0, "")
+	}
+	if i := slices.Index(labels, ""); i >= 0 {
+		labels[i] = "(none)"
+		if f.Default != "" {
+			labels[i] = "(" + f.Default + ")"
+		}
 	}
 	at := slices.Index(s.values, s.row.text)
 	if at < 0 && s.row.text != "" {
@@ -99,6 +100,15 @@ func (s *fieldSelect) FocusGained() {
 	s.row.gained()
 }
 
+// TypedKey implements fyne.Focusable: escape cancels.
+func (s *fieldSelect) TypedKey(k *fyne.KeyEvent) {
+	if k.Name == fyne.KeyEscape {
+		s.row.escape()
+		return
+	}
+	s.Select.TypedKey(k)
+}
+
 // newFieldSwitch returns a switch for a field that is yes or no.
 func newFieldSwitch(row *fieldRow) *Switch {
 	s := NewSwitch(false, func(on bool) {
@@ -108,7 +118,7 @@ func newFieldSwitch(row *fieldRow) *Switch {
 		}
 		row.used(text)
 	})
-	s.onFocus = row.gained
+	s.onFocus, s.onEscape = row.gained, row.escape
 	return s
 }
 
@@ -128,6 +138,15 @@ type fieldCheck struct {
 func (c *fieldCheck) FocusGained() {
 	c.Check.FocusGained()
 	c.row.gained()
+}
+
+// TypedKey implements fyne.Focusable: escape cancels.
+func (c *fieldCheck) TypedKey(k *fyne.KeyEvent) {
+	if k.Name == fyne.KeyEscape {
+		c.row.escape()
+		return
+	}
+	c.Check.TypedKey(k)
 }
 
 func newFieldSet(row *fieldRow) *fieldSet {
@@ -201,34 +220,3 @@ func (r *fieldSetRenderer) Objects() []fyne.CanvasObject {
 }
 
 func (r *fieldSetRenderer) Destroy() {}
-
-// A fieldButton opens the choice of origins.
-type fieldButton struct {
-	widget.Button
-	row *fieldRow
-}
-
-func newFieldButton(row *fieldRow, tapped func()) *fieldButton {
-	b := &fieldButton{row: row}
-	b.Importance = widget.LowImportance
-	b.Alignment = widget.ButtonAlignLeading
-	b.ExtendBaseWidget(b)
-	b.OnTapped = tapped
-	return b
-}
-
-// widest is the width of the longest origin, so that fields line up.
-func (b *fieldButton) widest() float32 {
-	size := sizeOf(b, theme.SizeNameText)
-	width := float32(0)
-	for _, o := range []string{OriginGiven, OriginMeasured, OriginAssumed, ""} {
-		width = max(width, fyne.MeasureText(originWord(o), size, fyne.TextStyle{}).Width)
-	}
-	return width + 4*Step
-}
-
-// FocusGained implements fyne.Focusable.
-func (b *fieldButton) FocusGained() {
-	b.Button.FocusGained()
-	b.row.gained()
-}

@@ -14,6 +14,7 @@ func newFieldLines(row *fieldRow) *LinesEditor {
 	e.OnChanged = func(rows [][]string) { row.used(JoinRows(rows)) }
 	e.OnFocus = row.gained
 	e.OnSize = row.sheet.relayout
+	e.onEscape = row.escape
 	return e
 }
 

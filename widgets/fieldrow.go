@@ -25,7 +25,7 @@ type fieldRow struct {
 
 	label, trouble, help, source *paragraph
 	input                        fyne.CanvasObject
-	origin                       *fieldButton
+	origin                       *quietButton
 	note                         *fieldEntry
 }
 
@@ -38,7 +38,9 @@ func newFieldRow(s *Sheet, f SheetField) *fieldRow {
 	}
 	r.trouble.style.Bold = true
 	r.source.style.Italic = true
-	r.origin = newFieldButton(r, r.chooseOrigin)
+	r.origin = newQuietButton("", r.chooseOrigin)
+	r.origin.chevron, r.origin.framed, r.origin.left = true, true, true
+	r.origin.onFocus, r.origin.onEscape = r.gained, r.escape
 	r.note = newFieldEntry(r, func(text string) {
 		r.field.Note = text
 		if s.OnOrigin != nil {
@@ -207,6 +209,23 @@ func (r *fieldRow) focusable() fyne.Focusable {
 
 func (r *fieldRow) gained() { r.sheet.activate(r) }
 
+// escape leaves the sheet.
+func (r *fieldRow) escape() {
+	if r.sheet.OnCancel != nil {
+		r.sheet.OnCancel()
+	}
+}
+
+// widestOrigin is the width of the longest origin, so that fields line up.
+func (r *fieldRow) widestOrigin() float32 {
+	size := sizeOf(r, theme.SizeNameText)
+	width := float32(0)
+	for _, o := range []string{OriginGiven, OriginMeasured, OriginAssumed, ""} {
+		width = max(width, fyne.MeasureText(originWord(o), size, fyne.TextStyle{}).Width)
+	}
+	return width + 3*Step + 10*typeScaleOf(r)
+}
+
 // chooseOrigin opens the choice of origins.
 func (r *fieldRow) chooseOrigin() {
 	c := fyne.CurrentApp().Driver().CanvasForObject(r)
@@ -244,7 +263,8 @@ func originWord(origin string) string {
 // stand in italics.
 func (r *fieldRow) showSource() {
 	f := r.field
-	r.origin.SetText(originWord(f.Origin))
+	italic := fyne.TextStyle{Italic: f.Origin == OriginAssumed}
+	r.origin.set(originWord(f.Origin), italic)
 	r.source.text = ""
 	if f.Sourced && f.Note != "" {
 		r.source.text = originWord(f.Origin) + ": " + f.Note
@@ -259,7 +279,6 @@ func (r *fieldRow) showSource() {
 		hint = "Why this value?"
 	}
 	r.note.SetPlaceHolder(hint)
-	italic := fyne.TextStyle{Italic: f.Origin == OriginAssumed}
 	if e, ok := r.input.(*fieldEntry); ok && e.TextStyle != italic {
 		e.TextStyle = italic
 		e.Refresh()
@@ -300,7 +319,7 @@ func (r *fieldRow) lay(width float32, move bool) float32 {
 	}
 	originWide := float32(0)
 	if r.field.Sourced {
-		originWide = r.origin.widest()
+		originWide = r.widestOrigin()
 	}
 	x, y := float32(0), float32(0)
 	controlWide := width

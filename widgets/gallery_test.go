@@ -14,14 +14,23 @@ import (
 	"gonum.org/v1/plot/vg/draw"
 )
 
-// stage shows an object in a window of the test driver, in our theme.
-func stage(t testing.TB, o fyne.CanvasObject, size fyne.Size, dark bool, typeScale, pixels float32) fyne.Window {
+// A look is a way to see a widget.
+type look struct {
+	name         string
+	dark         bool
+	size, pixels float32 // type scale, pixels a window unit
+}
+
+var plain = look{"light", false, 1, 1}
+
+// stage shows what build makes in a window of the test driver, in our theme.
+func stage(t testing.TB, l look, size fyne.Size, build func() fyne.CanvasObject) fyne.Window {
 	t.Helper()
 	test.NewTempApp(t)
-	fyne.CurrentApp().Settings().SetTheme(NewTheme(dark, typeScale))
-	w := test.NewTempWindow(t, o)
+	fyne.CurrentApp().Settings().SetTheme(NewTheme(l.dark, l.size))
+	w := test.NewTempWindow(t, build())
 	w.SetPadded(false)
-	w.Canvas().(test.WindowlessCanvas).SetScale(pixels)
+	w.Canvas().(test.WindowlessCanvas).SetScale(l.pixels)
 	w.Resize(size)
 	settle(w)
 	return w
@@ -53,12 +62,8 @@ func keep(t testing.TB, name string, img image.Image) {
 }
 
 // looks are the ways every widget is looked at.
-var looks = []struct {
-	name         string
-	dark         bool
-	size, pixels float32
-}{
-	{"light", false, 1, 1},
+var looks = []look{
+	plain,
 	{"dark", true, 1, 1},
 	{"light-2x", false, 1, 2},
 	{"dark-200", true, 2, 1},

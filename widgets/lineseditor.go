@@ -28,6 +28,7 @@ type LinesEditor struct {
 	// OnSize is told when rows were added or went away.
 	OnSize func()
 
+	onEscape func()
 	columns  []Column
 	rows     []*linesRow
 	problems []string
@@ -377,6 +378,10 @@ func (c *linesCell) TypedKey(k *fyne.KeyEvent) {
 		c.editor.focus(c.at[0]+1, c.at[1])
 	case fyne.KeyReturn, fyne.KeyEnter:
 		c.editor.focus(c.at[0]+1, 0)
+	case fyne.KeyEscape:
+		if c.editor.onEscape != nil {
+			c.editor.onEscape()
+		}
 	default:
 		c.Entry.TypedKey(k)
 	}

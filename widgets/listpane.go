@@ -216,7 +216,7 @@ func (r *listPaneRenderer) Layout(size fyne.Size) {
 }
 
 func (r *listPaneRenderer) MinSize() fyne.Size {
-	return fyne.NewSize(24*Step, 4*newListRow(r.p).MinSize().Height)
+	return fyne.NewSize(24*Step, 4*listRowHeight(r.p))
 }
 
 func (r *listPaneRenderer) Refresh() {
@@ -254,7 +254,7 @@ type listRow struct {
 
 	hovered               bool
 	name, detail, problem *paragraph
-	add                   *widget.Button
+	add                   *quietButton
 }
 
 func newListRow(pane *ListPane) *listRow {
@@ -262,10 +262,9 @@ func newListRow(pane *ListPane) *listRow {
 		name:    newParagraph(theme.SizeNameText, theme.ColorNameForeground),
 		detail:  newParagraph(theme.SizeNameCaptionText, theme.ColorNamePlaceHolder),
 		problem: newParagraph(theme.SizeNameCaptionText, theme.ColorNameError),
-		add:     widget.NewButton("", nil),
+		add:     newQuietButton("", nil),
 	}
 	w.name.most, w.detail.most, w.problem.most = 1, 1, 1
-	w.add.Importance = widget.LowImportance
 	w.ExtendBaseWidget(w)
 	return w
 }
@@ -280,13 +279,13 @@ func (w *listRow) show(n int) {
 	if line.item < 0 {
 		w.name.style.Bold = true
 		w.name.text, w.detail.text, w.problem.text = group.Title, "", ""
-		w.add.Text = group.Add
-		w.add.OnTapped = func() { w.pane.add(group.Kind) }
+		w.add.text = group.Add
+		w.add.onTapped = func() { w.pane.add(group.Kind) }
 	} else {
 		item := group.Items[line.item]
 		w.name.style.Bold = false
 		w.name.text, w.detail.text, w.problem.text = item.Name, item.Detail, item.Problem
-		w.add.Text = ""
+		w.add.text = ""
 	}
 	w.Refresh()
 }
@@ -343,7 +342,7 @@ func (r *listRowRenderer) Layout(size fyne.Size) {
 		w.add.Resize(fyne.NewSize(button.Width, size.Height))
 		w.add.Move(fyne.NewPos(size.Width-button.Width-Step, 0))
 		width = size.Width - x - 2*Step
-		if w.add.Text != "" {
+		if w.add.text != "" {
 			width -= button.Width
 		}
 	}
@@ -366,9 +365,13 @@ func (r *listRowRenderer) Layout(size fyne.Size) {
 }
 
 func (r *listRowRenderer) MinSize() fyne.Size {
-	w := r.w
+	return fyne.NewSize(16*Step, listRowHeight(r.w))
+}
+
+// listRowHeight is the height of every line of a pane.
+func listRowHeight(w fyne.CanvasObject) float32 {
 	height := lineHeight(sizeOf(w, theme.SizeNameText), fyne.TextStyle{}) + lineHeight(sizeOf(w, theme.SizeNameCaptionText), fyne.TextStyle{})
-	return fyne.NewSize(16*Step, max(height+Step, Target))
+	return max(height+Step, Target)
 }
 
 func (r *listRowRenderer) Refresh() {
@@ -389,7 +392,7 @@ func (r *listRowRenderer) Refresh() {
 			o.Hide()
 		}
 	}
-	show(w.add, item == nil && w.add.Text != "")
+	show(w.add, item == nil && w.add.text != "")
 	show(w.problem, w.problem.text != "")
 	show(w.detail, w.problem.text == "")
 	r.Layout(w.Size())

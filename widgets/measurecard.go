@@ -24,7 +24,7 @@ type Measure struct {
 	On       bool
 
 	// Mark draws the measure's geometric mark into a square, the same as in the
-	// figures; nil for none.
+	// figures, with the theme's ink set; nil for none.
 	Mark func(c draw.Canvas)
 }
 
@@ -42,7 +42,7 @@ type MeasureCard struct {
 
 	mark                                    *drawing
 	sw                                      *Switch
-	edit                                    *widget.Button
+	edit                                    *quietButton
 	name, kind, facts, worth, cost, trouble *paragraph
 }
 
@@ -63,6 +63,8 @@ func NewMeasureCard(m Measure) *MeasureCard {
 	c.name.most, c.kind.most, c.facts.most, c.cost.most, c.worth.most, c.trouble.most = 1, 1, 1, 1, 2, 2
 	c.mark = newDrawing(fyne.NewSquareSize(20), func(cv draw.Canvas) {
 		if c.measure.Mark != nil {
+			cv.SetColor(paletteOf(c).Ink)
+			cv.SetLineWidth(Points(1.5))
 			c.measure.Mark(cv)
 		}
 	})
@@ -73,12 +75,12 @@ func NewMeasureCard(m Measure) *MeasureCard {
 			c.OnChanged(on)
 		}
 	})
-	c.edit = widget.NewButton("Edit", func() {
+	c.edit = newQuietButton("Edit", func() {
 		if c.OnEdit != nil {
 			c.OnEdit()
 		}
 	})
-	c.edit.Importance = widget.LowImportance
+	c.edit.framed = true
 	c.ExtendBaseWidget(c)
 	c.take(m)
 	return c
@@ -151,13 +153,15 @@ type measureCardRenderer struct {
 	back *canvas.Rectangle
 }
 
-// line heights of the card: name, kind, facts, two of worth or trouble, foot.
-func (r *measureCardRenderer) MinSize() fyne.Size {
-	c := r.c
-	k := max(typeScaleOf(c), 1)
-	caption := lineHeight(sizeOf(c, theme.SizeNameCaptionText), fyne.TextStyle{})
-	height := Step + c.sw.MinSize().Height + 4*caption + Step/2 + max(c.edit.MinSize().Height, caption) + Step/2
-	return fyne.NewSize(CardWidth*k, height)
+func (r *measureCardRenderer) MinSize() fyne.Size { return cardSize(r.c) }
+
+// cardSize is the size of every card as shown beside a widget: name, kind,
+// facts, two lines of worth or trouble, foot.
+func cardSize(w fyne.CanvasObject) fyne.Size {
+	k := max(typeScaleOf(w), 1)
+	caption := lineHeight(sizeOf(w, theme.SizeNameCaptionText), fyne.TextStyle{})
+	text := lineHeight(sizeOf(w, theme.SizeNameText), fyne.TextStyle{})
+	return fyne.NewSize(CardWidth*k, Step+switchHeight*k+4*caption+Step/2+text+Step+Step)
 }
 
 func (r *measureCardRenderer) Layout(size fyne.Size) {
@@ -203,9 +207,10 @@ func (r *measureCardRenderer) Layout(size fyne.Size) {
 		row(c.worth, 2)
 	}
 	edit := c.edit.MinSize()
-	y = size.Height - Step/2 - edit.Height
+	edit.Height = max(edit.Height-Step, Target)
+	y = size.Height - Step - edit.Height
 	c.edit.Resize(edit)
-	c.edit.Move(fyne.NewPos(size.Width-Step/2-edit.Width, y))
+	c.edit.Move(fyne.NewPos(size.Width-Step-edit.Width, y))
 	c.cost.Move(fyne.NewPos(pad, y+(edit.Height-caption)/2))
 	c.cost.Resize(fyne.NewSize(max(inner-edit.Width, 0), caption))
 }

@@ -18,7 +18,7 @@ type MeasureRow struct {
 
 	cards  []*MeasureCard
 	empty  *EmptyState
-	add    *widget.Button
+	add    *quietButton
 	strip  *fyne.Container
 	scroll *container.Scroll
 }
@@ -32,8 +32,8 @@ func NewMeasureRow() *MeasureRow {
 		}
 	}
 	m.empty = NewEmptyState("No measures yet. Add one at a bus.", "Add a measure", added)
-	m.add = widget.NewButton("Add a measure", added)
-	m.add.Importance = widget.LowImportance
+	m.add = newQuietButton("Add a measure", added)
+	m.add.framed = true
 	m.strip = container.New(shelf{gap: Step})
 	m.scroll = container.NewHScroll(m.strip)
 	m.ExtendBaseWidget(m)
@@ -138,8 +138,7 @@ func (r *measureRowRenderer) Layout(size fyne.Size) {
 // MinSize is the height of a card in any case, so the first card does not push
 // the rest of the window.
 func (r *measureRowRenderer) MinSize() fyne.Size {
-	height := NewMeasureCard(Measure{}).MinSize().Height
-	return fyne.NewSize(CardWidth/2, max(height, r.m.empty.MinSize().Height)+Step)
+	return fyne.NewSize(CardWidth/2, max(cardSize(r.m).Height, r.m.empty.MinSize().Height)+Step)
 }
 
 func (r *measureRowRenderer) Refresh() {

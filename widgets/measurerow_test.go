@@ -19,12 +19,13 @@ func someMeasures() []Measure {
 
 func TestMeasureRowLooks(t *testing.T) {
 	for _, look := range looks {
-		m := NewMeasureRow()
-		m.SetMeasures(someMeasures())
-		w := stage(t, m, fyne.NewSize(1280, 190*look.size), look.dark, look.size, look.pixels)
+		w := stage(t, look, fyne.NewSize(1280, 190*look.size), func() fyne.CanvasObject {
+			m := NewMeasureRow()
+			m.SetMeasures(someMeasures())
+			return m
+		})
 		keep(t, "measures-"+look.name, w.Canvas().Capture())
-		e := NewMeasureRow()
-		w = stage(t, e, fyne.NewSize(900, 190*look.size), look.dark, look.size, look.pixels)
+		w = stage(t, look, fyne.NewSize(900, 190*look.size), func() fyne.CanvasObject { return NewMeasureRow() })
 		keep(t, "measures-empty-"+look.name, w.Canvas().Capture())
 	}
 }

@@ -6,15 +6,12 @@ import (
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/test"
 	"gonum.org/v1/plot"
-	"gonum.org/v1/plot/font/liberation"
 	"gonum.org/v1/plot/plotter"
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
 
 	"quietbus/assets"
 )
-
-var _ = liberation.Collection
 
 func bars(c draw.Canvas) []Hot {
 	p := plot.New()
@@ -29,8 +26,7 @@ func bars(c draw.Canvas) []Hot {
 
 func TestPictureLooks(t *testing.T) {
 	for _, look := range looks {
-		p := NewPicture(bars)
-		w := stage(t, p, fyne.NewSize(480, 300), look.dark, look.size, look.pixels)
+		w := stage(t, look, fyne.NewSize(480, 300), func() fyne.CanvasObject { return NewPicture(bars) })
 		test.MoveMouse(w.Canvas(), fyne.NewPos(140, 150))
 		keep(t, "picture-"+look.name, w.Canvas().Capture())
 	}

@@ -64,7 +64,7 @@ func NewSheet(title string) *Sheet {
 			s.OnRemove()
 		}
 	})
-	s.body = container.New(column{gap: 2 * Step})
+	s.body = container.New(column{gap: Step, right: 2 * Step})
 	s.scroll = container.NewVScroll(s.body)
 	s.ExtendBaseWidget(s)
 	return s
@@ -285,7 +285,7 @@ func (r *sheetRenderer) Layout(size fyne.Size) {
 		y += height + 2*Step
 	}
 	s.scroll.Move(fyne.NewPos(2*Step, y))
-	s.scroll.Resize(fyne.NewSize(inner+Step, max(bottom-y, 0)))
+	s.scroll.Resize(fyne.NewSize(inner+2*Step, max(bottom-y, 0)))
 	s.relayout()
 }
 

@@ -23,11 +23,14 @@ func someFields() []SheetField {
 
 func TestSheetLooks(t *testing.T) {
 	for _, look := range looks {
-		s := NewSheet("Transformer T1")
-		s.Fields = someFields
-		s.OnRemove = func() {}
-		s.Reload()
-		w := stage(t, s, fyne.NewSize(560, 720), look.dark, look.size, look.pixels)
+		var s *Sheet
+		w := stage(t, look, fyne.NewSize(560, 720), func() fyne.CanvasObject {
+			s = NewSheet("Transformer T1")
+			s.Fields = someFields
+			s.OnRemove = func() {}
+			s.Reload()
+			return s
+		})
 		s.SetText("ratedKVA", "6e")
 		s.FocusField("impedancePercent")
 		keep(t, "sheet-"+look.name, w.Canvas().Capture())

@@ -19,7 +19,12 @@ type Switch struct {
 
 	hovered, focused bool
 	onFocus          func()
+	onEscape         func()
 }
+
+// switchHeight is the height of a switch at type scale 1, with room for its
+// focus ring.
+const switchHeight float32 = 32
 
 // NewSwitch returns a switch.
 func NewSwitch(on bool, changed func(on bool)) *Switch {
@@ -102,8 +107,13 @@ func (s *Switch) TypedRune(r rune) {
 
 // TypedKey implements fyne.Focusable.
 func (s *Switch) TypedKey(e *fyne.KeyEvent) {
-	if e.Name == fyne.KeyReturn || e.Name == fyne.KeyEnter {
+	switch e.Name {
+	case fyne.KeyReturn, fyne.KeyEnter:
 		s.flip()
+	case fyne.KeyEscape:
+		if s.onEscape != nil {
+			s.onEscape()
+		}
 	}
 }
 
@@ -111,7 +121,7 @@ func (s *Switch) TypedKey(e *fyne.KeyEvent) {
 func (s *Switch) MinSize() fyne.Size {
 	s.ExtendBaseWidget(s)
 	k := max(typeScaleOf(s), 1)
-	return fyne.NewSize(56*k, 32*k)
+	return fyne.NewSize(56*k, switchHeight*k)
 }
 
 // CreateRenderer implements fyne.Widget.

@@ -65,8 +65,10 @@ func (t *Theme) Color(name fyne.ThemeColorName, _ fyne.ThemeVariant) color.Color
 		return p.Ink
 	case theme.ColorNameButton, theme.ColorNameMenuBackground, theme.ColorNameHeaderBackground:
 		return p.Surface
-	case theme.ColorNameOverlayBackground, theme.ColorNameInputBackground:
+	case theme.ColorNameOverlayBackground:
 		return p.Ground
+	case theme.ColorNameInputBackground:
+		return mix(p.Surface, p.Ground, 0.4)
 	case theme.ColorNameDisabled:
 		return mix(p.Muted, p.Ground, 0.35)
 	case theme.ColorNameDisabledButton:

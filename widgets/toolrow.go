@@ -2,7 +2,6 @@ package widgets
 
 import (
 	"fyne.io/fyne/v2"
-	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/widget"
 )
 
@@ -33,8 +32,8 @@ type ToolRow struct {
 // NewToolRow returns a row.
 func NewToolRow(tools ...Tool) *ToolRow {
 	t := &ToolRow{}
-	t.more = newToolButton(t, Tool{Label: "More"})
-	t.more.OnTapped = t.menu
+	t.more = newToolButton(t, Tool{Label: "More", OnTapped: t.menu})
+	t.more.chevron = true
 	t.ExtendBaseWidget(t)
 	t.SetTools(tools)
 	return t
@@ -53,11 +52,15 @@ func (t *ToolRow) SetTools(tools []Tool) {
 	t.Refresh()
 }
 
-// Button returns the button of a label, nil when there is none.
+// Button returns the button of a label, for a menu to open under it: the one
+// that says "More" when the tool is behind it, nil when there is no such tool.
 func (t *ToolRow) Button(label string) fyne.CanvasObject {
 	for i, tool := range t.tools {
 		if tool.Label == label {
-			return t.buttons[i]
+			if i >= t.shown {
+				return t.more.quietButton
+			}
+			return t.buttons[i].quietButton
 		}
 	}
 	return nil
@@ -75,7 +78,7 @@ func (t *ToolRow) menu() {
 		item.Icon, item.Disabled = tool.Icon, tool.Disabled
 		items = append(items, item)
 	}
-	at := fyne.CurrentApp().Driver().AbsolutePositionForObject(t.more)
+	at := fyne.CurrentApp().Driver().AbsolutePositionForObject(t.more.quietButton)
 	widget.ShowPopUpMenuAtPosition(fyne.NewMenu("", items...), c, at.AddXY(0, t.more.Size().Height))
 }
 
@@ -146,34 +149,37 @@ func (r *toolRowRenderer) Refresh() {
 func (r *toolRowRenderer) Objects() []fyne.CanvasObject {
 	objects := make([]fyne.CanvasObject, 0, len(r.t.buttons)+1)
 	for _, b := range r.t.buttons {
-		objects = append(objects, b)
+		objects = append(objects, b.quietButton)
 	}
-	return append(objects, r.t.more)
+	return append(objects, r.t.more.quietButton)
 }
 
 func (r *toolRowRenderer) Destroy() {}
 
-// A toolButton is a button that tells its hint.
-type toolButton struct {
-	widget.Button
-	row  *ToolRow
-	hint string
-}
-
+// newToolButton returns a button that tells its hint.
 func newToolButton(row *ToolRow, tool Tool) *toolButton {
-	b := &toolButton{row: row}
-	b.Importance = widget.LowImportance
-	b.ExtendBaseWidget(b)
+	b := &toolButton{row: row, quietButton: newQuietButton("", nil)}
+	b.onHover = func(inside bool) {
+		if inside {
+			b.tell(b.hint)
+		} else {
+			b.tell("")
+		}
+	}
+	b.onFocus = func() { b.tell(b.hint) }
 	b.set(tool)
 	return b
 }
 
+// A toolButton is a button with its hint.
+type toolButton struct {
+	*quietButton
+	row  *ToolRow
+	hint string
+}
+
 func (b *toolButton) set(tool Tool) {
-	b.hint = tool.Hint
-	b.Text, b.Icon = tool.Label, tool.Icon
-	if tool.OnTapped != nil {
-		b.OnTapped = tool.OnTapped
-	}
+	b.hint, b.text, b.icon, b.onTapped = tool.Hint, tool.Label, tool.Icon, tool.OnTapped
 	if tool.Disabled {
 		b.Disable()
 	} else {
@@ -182,26 +188,8 @@ func (b *toolButton) set(tool Tool) {
 	b.Refresh()
 }
 
-// MouseIn implements desktop.Hoverable.
-func (b *toolButton) MouseIn(e *desktop.MouseEvent) {
-	b.Button.MouseIn(e)
-	b.tell(b.hint)
-}
-
-// MouseOut implements desktop.Hoverable.
-func (b *toolButton) MouseOut() {
-	b.Button.MouseOut()
-	b.tell("")
-}
-
-// FocusGained implements fyne.Focusable.
-func (b *toolButton) FocusGained() {
-	b.Button.FocusGained()
-	b.tell(b.hint)
-}
-
 func (b *toolButton) tell(hint string) {
-	if b.row.OnHint != nil && (b.hint != "") {
+	if b.row.OnHint != nil && b.hint != "" {
 		b.row.OnHint(hint)
 	}
 }

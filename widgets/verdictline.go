@@ -5,6 +5,7 @@ import (
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
+	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/theme"
 	"fyne.io/fyne/v2/widget"
@@ -22,7 +23,8 @@ type Verdict struct {
 // mark and a word for its state. A sentence can be tapped, and reached and
 // opened by keyboard.
 //
-// Its height is kept when a flip makes a sentence shorter, so that what is
+// Many sentences scroll rather than push the rest of the window away. The
+// height is kept when a flip makes a sentence shorter, so that what is
 // below does not jump; a new width, type size or number of sentences starts
 // over.
 type VerdictLine struct {
@@ -33,6 +35,7 @@ type VerdictLine struct {
 	verdicts []Verdict
 	note     string
 	rows     []*verdictRow
+	scroll   *container.Scroll
 	kept     float32
 	keptFor  verdictKey
 }
@@ -71,11 +74,18 @@ func (v *VerdictLine) Verdicts() []Verdict { return v.verdicts }
 func (v *VerdictLine) CreateRenderer() fyne.WidgetRenderer {
 	v.ExtendBaseWidget(v)
 	r := &verdictLineRenderer{v: v}
+	r.stack = container.New(verdictStack{r})
+	r.scroll = container.NewVScroll(r.stack)
+	v.scroll = r.scroll
 	r.rebuild()
 	return r
 }
 
-type verdictLineRenderer struct{ v *VerdictLine }
+type verdictLineRenderer struct {
+	v      *VerdictLine
+	stack  *fyne.Container
+	scroll *container.Scroll
+}
 
 func (r *verdictLineRenderer) rebuild() {
 	v := r.v
@@ -84,16 +94,19 @@ func (r *verdictLineRenderer) rebuild() {
 		v.rows = append(v.rows, newVerdictRow(v, len(v.rows)))
 	}
 	v.rows = v.rows[:n]
+	r.stack.Objects = r.stack.Objects[:0]
 	for i, row := range v.rows {
 		if i < len(v.verdicts) {
 			row.set(v.verdicts[i], false)
 		} else {
 			row.set(Verdict{Text: v.note}, true)
 		}
+		r.stack.Objects = append(r.stack.Objects, row)
 	}
 }
 
-func (r *verdictLineRenderer) heights(width float32) float32 {
+// height is what the sentences need at a width.
+func (r *verdictLineRenderer) height(width float32) float32 {
 	total := float32(0)
 	for _, row := range r.v.rows {
 		total += row.heightFor(width)
@@ -101,43 +114,60 @@ func (r *verdictLineRenderer) heights(width float32) float32 {
 	return total
 }
 
-func (r *verdictLineRenderer) Layout(size fyne.Size) {
-	y := float32(0)
-	for _, row := range r.v.rows {
-		height := row.heightFor(size.Width)
-		row.Move(fyne.NewPos(0, y))
-		row.Resize(fyne.NewSize(size.Width, height))
-		y += height
+// most is the share of the window that sentences may take before they scroll.
+func (r *verdictLineRenderer) most() float32 {
+	if c := fyne.CurrentApp().Driver().CanvasForObject(r.v); c != nil && c.Size().Height > 0 {
+		return c.Size().Height * 0.3
 	}
+	return 30 * Step
 }
+
+func (r *verdictLineRenderer) Layout(size fyne.Size) { r.scroll.Resize(size) }
 
 func (r *verdictLineRenderer) MinSize() fyne.Size {
 	v := r.v
-	key := verdictKey{v.Size().Width, sizeOf(v, theme.SizeNameSubHeadingText), len(v.rows)}
+	width := v.Size().Width
+	if width == 0 {
+		width = 160 * Step // not laid out yet: think of a window
+	}
+	key := verdictKey{width, sizeOf(v, theme.SizeNameSubHeadingText), len(v.rows)}
 	if key != v.keptFor {
 		v.kept, v.keptFor = 0, key
 	}
-	v.kept = max(v.kept, r.heights(v.Size().Width))
-	return fyne.NewSize(20*Step, v.kept)
+	v.kept = max(v.kept, r.height(width))
+	return fyne.NewSize(20*Step, min(v.kept, r.most()))
 }
 
 func (r *verdictLineRenderer) Refresh() {
 	r.rebuild()
-	r.Layout(r.v.Size())
-	for _, row := range r.v.rows {
-		row.Refresh()
-	}
+	r.stack.Refresh()
+	r.scroll.Refresh()
 }
 
-func (r *verdictLineRenderer) Objects() []fyne.CanvasObject {
-	objects := make([]fyne.CanvasObject, len(r.v.rows))
-	for i, row := range r.v.rows {
-		objects[i] = row
-	}
-	return objects
-}
+func (r *verdictLineRenderer) Objects() []fyne.CanvasObject { return []fyne.CanvasObject{r.scroll} }
 
 func (r *verdictLineRenderer) Destroy() {}
+
+// A verdictStack lays the rows of a verdict line out.
+type verdictStack struct{ r *verdictLineRenderer }
+
+func (s verdictStack) Layout(objects []fyne.CanvasObject, size fyne.Size) {
+	y := float32(0)
+	for _, o := range objects {
+		height := o.(*verdictRow).heightFor(size.Width)
+		o.Move(fyne.NewPos(0, y))
+		o.Resize(fyne.NewSize(size.Width, height))
+		y += height
+	}
+}
+
+func (s verdictStack) MinSize([]fyne.CanvasObject) fyne.Size {
+	width := s.r.scroll.Size().Width
+	if width == 0 {
+		width = 160 * Step
+	}
+	return fyne.NewSize(20*Step, s.r.height(width))
+}
 
 // A verdictRow is one sentence with its mark.
 type verdictRow struct {
@@ -199,6 +229,15 @@ func (w *verdictRow) Tapped(*fyne.PointEvent) {
 	}
 }
 
+// Enable implements fyne.Disableable.
+func (w *verdictRow) Enable() {}
+
+// Disable implements fyne.Disableable.
+func (w *verdictRow) Disable() {}
+
+// Disabled implements fyne.Disableable: a note takes no focus.
+func (w *verdictRow) Disabled() bool { return w.note }
+
 // MouseIn implements desktop.Hoverable.
 func (w *verdictRow) MouseIn(*desktop.MouseEvent) {
 	w.hovered = true
@@ -226,6 +265,12 @@ func (w *verdictRow) Cursor() desktop.Cursor {
 func (w *verdictRow) FocusGained() {
 	w.focused = true
 	w.Refresh()
+	if s := w.line.scroll; s != nil {
+		top, bottom := w.Position().Y, w.Position().Y+w.Size().Height
+		if top < s.Offset.Y || bottom > s.Offset.Y+s.Size().Height {
+			s.ScrollToOffset(fyne.NewPos(0, top))
+		}
+	}
 }
 
 // FocusLost implements fyne.Focusable.

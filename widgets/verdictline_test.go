@@ -15,18 +15,23 @@ var someVerdicts = []Verdict{
 
 func TestVerdictLineLooks(t *testing.T) {
 	for _, look := range looks {
-		v := NewVerdictLine(func(int) {})
-		v.SetVerdicts(someVerdicts)
-		w := stage(t, v, fyne.NewSize(1280, 220*look.size), look.dark, look.size, look.pixels)
+		w := stage(t, look, fyne.NewSize(1280, 220*look.size), func() fyne.CanvasObject {
+			v := NewVerdictLine(func(int) {})
+			v.SetVerdicts(someVerdicts)
+			return v
+		})
 		keep(t, "verdict-"+look.name, w.Canvas().Capture())
 	}
 }
 
 func TestVerdictLineTapsAndKeys(t *testing.T) {
 	var tapped []int
-	v := NewVerdictLine(func(i int) { tapped = append(tapped, i) })
-	v.SetVerdicts(someVerdicts)
-	w := stage(t, v, fyne.NewSize(900, 200), false, 1, 1)
+	var v *VerdictLine
+	w := stage(t, plain, fyne.NewSize(900, 200), func() fyne.CanvasObject {
+		v = NewVerdictLine(func(i int) { tapped = append(tapped, i) })
+		v.SetVerdicts(someVerdicts)
+		return v
+	})
 	test.TapCanvas(w.Canvas(), fyne.NewPos(300, v.rows[1].Position().Y+10))
 	test.FocusNext(w.Canvas())
 	w.Canvas().Focused().TypedKey(&fyne.KeyEvent{Name: fyne.KeyReturn})
