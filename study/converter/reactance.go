@@ -9,39 +9,65 @@ import (
 // reactor of its own behind an ordinary supply.
 const noReactor = 0.5
 
-// byReactance is six-pulse input current against total source and line
-// reactance, per cent of the load's rating: reactance, then orders 5, 7, 11,
-// 13, 17, 19. Source: trade table of a drive application handbook, from
-// memory (medium confidence).
-var byReactance = [][7]float64{
-	{0.5, 80, 60, 18, 10, 7, 6},
-	{1, 60, 37, 12, 7.5, 5, 4},
-	{1.5, 51, 28, 11, 6.5, 4, 3},
-	{2, 46, 22, 9, 6, 4, 3},
-	{3, 40, 17, 7.3, 4.9, 3, 2.2},
-	{4, 34, 13, 6.3, 4.2, 2.4, 2},
-	{5, 32, 12, 5.8, 3.9, 2.2, 0.8},
-	{6, 30, 11, 5.2, 3.6, 1.8, 0.7},
+// reactanceOrders are the orders that the table holds. It says nothing of
+// higher ones, which are left out.
+var reactanceOrders = [...]int{5, 7, 11, 13, 17, 19}
+
+// reactanceRow is the input current of a capacitor-smoothed six-pulse bridge
+// behind one total reactance.
+type reactanceRow struct {
+	reactance float64    // source and line, per cent of the load's rating
+	percent   [6]float64 // by reactanceOrders, of order 1
+	angle     [6]float64 // degrees, unwrapped from row to row
+}
+
+// byReactance: magnitudes are a trade table of input current against total
+// reactance, its origin a drive application handbook (memory, medium). Angles
+// are derived: steady state of a diode bridge that feeds a stiff direct voltage
+// at rated power behind the same reactance, against the voltage behind it.
+var byReactance = []reactanceRow{
+	{0.5, [6]float64{80, 60, 18, 10, 7, 6}, [6]float64{118, 90, 194, 124, 186, 136}},
+	{1, [6]float64{60, 37, 12, 7.5, 5, 4}, [6]float64{105, 69, 120, 40, 99, 8}},
+	{1.5, [6]float64{51, 28, 11, 6.5, 4, 3}, [6]float64{104, 56, 99, 9, 66, -44}},
+	{2, [6]float64{46, 22, 9, 6, 4, 3}, [6]float64{104, 45, 85, -18, 41, -86}},
+	{3, [6]float64{40, 17, 7.3, 4.9, 3, 2.2}, [6]float64{101, 22, 62, -68, 1, -150}},
+	{4, [6]float64{34, 13, 6.3, 4.2, 2.4, 2}, [6]float64{97, -1, 42, -107, -33, -195}},
+	{5, [6]float64{32, 12, 5.8, 3.9, 2.2, 0.8}, [6]float64{92, -23, 24, -136, -66, -231}},
+	{6, [6]float64{30, 11, 5.2, 3.6, 1.8, 0.7}, [6]float64{88, -42, 8, -160, -99, -264}},
 }
 
 // WithReactance returns the typical spectrum of a capacitor-smoothed six-pulse
-// bridge behind the given total reactance in per cent of its rating, by linear
-// interpolation; outside the table the nearest row is used.
+// bridge behind a total reactance, source and line together, in per cent of
+// the load's rating: magnitudes and angles interpolated linearly in the trade
+// table. Outside 0.5 to 6 % the nearest row is used and the source says so.
 func WithReactance(total float64) Model {
-	last := len(byReactance) - 1
-	total = math.Max(byReactance[0][0], math.Min(total, byReactance[last][0]))
+	first, last := byReactance[0].reactance, byReactance[len(byReactance)-1].reactance
+	m := Model{ThreePhase: true, Mark: "memory",
+		Title:  fmt.Sprintf("Six-pulse drive, %.3g %% reactance", total),
+		Source: "trade table of drive input current against total reactance, from memory, orders to 19" + stiff}
+	if !(total >= first && total <= last) { // also when it is not a number
+		at := last
+		if !(total > last) {
+			at = first
+		}
+		m.Source += fmt.Sprintf("; the table holds %g to %g %%: its row of %g %% is used for %.3g %%", first, last, at, total)
+		total = at
+	}
 	i := 1
-	for i < last && total > byReactance[i][0] {
+	for i < len(byReactance)-1 && total > byReactance[i].reactance {
 		i++
 	}
-	lo, hi := byReactance[i-1], byReactance[i]
-	t := (total - lo[0]) / (hi[0] - lo[0])
-	percent := map[int]float64{}
-	for k, h := range [...]int{5, 7, 11, 13, 17, 19} {
-		percent[h] = lo[k+1] + t*(hi[k+1]-lo[k+1])
+	lo, hi := &byReactance[i-1], &byReactance[i]
+	t := (total - lo.reactance) / (hi.reactance - lo.reactance)
+	between := func(a, b float64) float64 { return a + t*(b-a) }
+	for k, h := range reactanceOrders {
+		m.Lines = append(m.Lines, Line{Order: h, Percent: between(lo.percent[k], hi.percent[k]), AngleDeg: wrapped(between(lo.angle[k], hi.angle[k]))})
 	}
-	return Model{Title: fmt.Sprintf("Six-pulse bridge, %.3g %% reactance", total), Lines: bridge(percent), ThreePhase: true, Source: reactance, Mark: "memory"}
+	return m
 }
+
+// wrapped returns an angle in degrees in the range -180 (not included) to 180.
+func wrapped(deg float64) float64 { return 180 - math.Mod(math.Mod(180-deg, 360)+360, 360) }
 
 // ReactanceOf returns the total reactance, per cent, that a typical six-pulse
 // spectrum stands for; false for any other name.
