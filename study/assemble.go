@@ -61,8 +61,8 @@ func (m *model) buses(o *Outcome, sol *solution) {
 	s := m.plan.study
 	for _, b := range s.Buses {
 		id := m.bus[b.Name]
-		o.Buses = append(o.Buses, BusResult{Name: b.Name, NominalV: 1000 * b.NominalKV, Live: m.system.Live(id),
-			Phase: sol.net.BusPhase(id), Seq: sol.net.BusSequence(id)})
+		phase, seq := sol.net.BusVoltage(id)
+		o.Buses = append(o.Buses, BusResult{Name: b.Name, NominalV: 1000 * b.NominalKV, Live: m.system.Live(id), Phase: phase, Seq: seq})
 	}
 	for _, x := range m.plan.chosen {
 		out, ok := m.outlets[x.Name]
@@ -178,17 +178,16 @@ func source(kind Kind, name, bus string, current [3]phasor.Spectrum) ElementResu
 // any.
 func endResult(bus string, phase [3]phasor.Spectrum) EndResult {
 	e := EndResult{Bus: bus, Phase: phase}
-	neutral := make(phasor.Spectrum, len(phase[0]))
-	largest, sum := 0.0, 0.0
-	for h := range neutral {
-		for i := range phase {
-			neutral[h] += phase[i].At(h)
-			largest = math.Max(largest, cmplx.Abs(phase[i].At(h)))
+	for h := range phase[0] {
+		a, b, c := phase[0][h], phase[1].At(h), phase[2].At(h)
+		sum := a + b + c
+		if sum == 0 || cmplx.Abs(sum) <= 1e-9*(cmplx.Abs(a)+cmplx.Abs(b)+cmplx.Abs(c)) {
+			continue
 		}
-		sum = math.Max(sum, cmplx.Abs(neutral[h]))
-	}
-	if sum > 1e-9*largest {
-		e.Neutral = neutral
+		if e.Neutral == nil {
+			e.Neutral = make(phasor.Spectrum, len(phase[0]))
+		}
+		e.Neutral[h] = sum
 	}
 	return e
 }

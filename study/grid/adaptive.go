@@ -29,14 +29,17 @@ type Extremum struct {
 // refined by golden section on |Z|.
 func (s *System) ScanAdaptive(ctx context.Context, bus BusID, q phasor.Sequence, from, to float64) (*ScanCurve, error) {
 	var failed error
-	one := make([]complex128, 1)
+	scanner := s.NewScanner(bus, q)
 	z := func(h float64) complex128 {
-		v, err := s.Scan(ctx, bus, q, []float64{h}, one)
+		v, err := scanner.At(h)
+		if err == nil {
+			err = ctx.Err()
+		}
 		if err != nil {
 			failed = err
 			return cmplx.NaN()
 		}
-		return v[0]
+		return v
 	}
 	c := &ScanCurve{}
 	steps := int(math.Ceil((to - from) / 0.1))

@@ -2,7 +2,6 @@ package grid
 
 import (
 	"math"
-	"math/cmplx"
 
 	"quietbus/study/phasor"
 )
@@ -42,12 +41,10 @@ func (e *Supply) admittance(h float64, q phasor.Sequence) complex128 {
 	if r == 0 && x == 0 {
 		return 0
 	}
-	return 1 / complex(r*math.Pow(h, e.Exponent), x*h)
+	return 1 / complex(r*power(h, e.Exponent), x*h)
 }
-func (e *Supply) stamp(_, h float64, q phasor.Sequence, add Stamp) {
-	if y := e.admittance(h, q); y != 0 {
-		add(0, 0, y)
-	}
+func (e *Supply) admit(_, h float64, q phasor.Sequence) primitive {
+	return primitive{y00: e.admittance(h, q)}
 }
 func (e *Supply) emf(h int, q phasor.Sequence) complex128 {
 	if h == 1 {
@@ -91,38 +88,46 @@ func (e *Transformer) check() *ElementError {
 	return positive(e.Name, "impedance", math.Hypot(e.R, e.X))
 }
 func at(z complex128, h float64) complex128 { return complex(real(z), imag(z)*h) }
-func (e *Transformer) stamp(_, h float64, q phasor.Sequence, add Stamp) {
-	z := complex(e.R*math.Pow(h, e.Exponent), e.X*h)
+func (e *Transformer) admit(_, h float64, q phasor.Sequence) primitive {
+	z := complex(e.R*power(h, e.Exponent), e.X*h)
 	n := complex(e.Ratio, 0)
-	if q != phasor.Zero {
+	through := func(z complex128) primitive {
 		y := 1 / z
-		add(0, 0, y/(n*n))
-		add(1, 1, y)
-		add(0, 1, -y/n)
-		return
+		return primitive{y / (n * n), -y / n, y}
+	}
+	if q != phasor.Zero {
+		return through(z)
 	}
 	if e.ZeroRatio > 0 {
 		z *= complex(e.ZeroRatio, 0)
 	}
-	hv, lv := e.Group.HV, e.Group.LV
-	hvThrough, lvThrough := hv == 'Y' && e.Group.HVN, lv == 'Y' && e.Group.LVN
+	g := e.Group
+	hvEarthed, lvEarthed := g.HVN && g.HV != 'D', g.LVN && g.LV != 'D'
+	hvN, lvN := 3*at(e.HVN, h), 3*at(e.LVN, h)
+	var p primitive
 	switch {
-	case hvThrough && lvThrough:
-		y := 1 / (z + 3*at(e.LVN, h) + 3*at(e.HVN, h)/(n*n))
-		add(0, 0, y/(n*n))
-		add(1, 1, y)
-		add(0, 1, -y/n)
-	case hvThrough && lv == 'D':
-		add(0, 0, 1/(z*n*n+3*at(e.HVN, h)))
-	case lvThrough && hv == 'D':
-		add(1, 1, 1/(z+3*at(e.LVN, h)))
+	case g.HV == 'Y' && g.LV == 'Y' && hvEarthed && lvEarthed:
+		return through(z + lvN + hvN/(n*n))
+	case g.HV == 'Y' && hvEarthed && g.LV == 'D':
+		p.y00 = 1 / (z*n*n + hvN)
+	case g.LV == 'Y' && lvEarthed && g.HV == 'D':
+		p.y11 = 1 / (z + lvN)
 	}
-	if lv == 'Z' && e.Group.LVN { // zig-zag: leakage between its own half windings
-		add(1, 1, 1/(z+3*at(e.LVN, h)))
+	if g.HV == 'Z' && hvEarthed { // the halves of a zig-zag winding balance each other
+		p.y00 = 1 / (z*n*n + hvN)
 	}
-	if hv == 'Z' && e.Group.HVN {
-		add(0, 0, 1/(z*n*n+3*at(e.HVN, h)))
+	if g.LV == 'Z' && lvEarthed {
+		p.y11 = 1 / (z + lvN)
 	}
+	return p
+}
+
+// power is h to the exponent, without the cost of math.Pow for a constant.
+func power(h, exponent float64) float64 {
+	if exponent == 0 {
+		return 1
+	}
+	return math.Pow(h, exponent)
 }
 
 // Cable is a cable or line as a nominal pi.
@@ -140,7 +145,7 @@ func (e *Cable) series() bool  { return true }
 func (e *Cable) check() *ElementError {
 	return positive(e.Name, "impedance", math.Hypot(e.R, e.X))
 }
-func (e *Cable) stamp(f1, h float64, q phasor.Sequence, add Stamp) {
+func (e *Cable) admit(f1, h float64, q phasor.Sequence) primitive {
 	r, x, c := e.R, e.X, e.C
 	if q == phasor.Zero {
 		r, x, c = e.R0, e.X0, e.C0
@@ -150,10 +155,8 @@ func (e *Cable) stamp(f1, h float64, q phasor.Sequence, add Stamp) {
 		k = e.Skin(h)
 	}
 	y := 1 / complex(r*k, x*h)
-	half := complex(0, math.Pi*f1*h*c)
-	add(0, 0, y+half)
-	add(1, 1, y+half)
-	add(0, 1, -y)
+	ends := y + complex(0, math.Pi*f1*h*c)
+	return primitive{ends, -y, ends}
 }
 
 // Shunt is a balanced three-phase shunt branch in star equivalent.
@@ -168,10 +171,9 @@ func (e *Shunt) label() string        { return e.Name }
 func (e *Shunt) ends() []BusID        { return []BusID{e.Bus} }
 func (e *Shunt) series() bool         { return false }
 func (e *Shunt) check() *ElementError { return nil }
-func (e *Shunt) stamp(_, h float64, q phasor.Sequence, add Stamp) {
+func (e *Shunt) admit(_, h float64, q phasor.Sequence) primitive {
 	if q != phasor.Zero || e.Zero {
-		add(0, 0, e.Branch.Admittance(h))
+		return primitive{y00: e.Branch.Admittance(h)}
 	}
+	return primitive{}
 }
-
-var _ = cmplx.Abs

@@ -28,6 +28,7 @@ type Solution struct {
 	sys   *System
 	order int
 	seq   [3][][]complex128 // by sequence and order: shift-free node voltages, nil when zero
+	prim  [3][][]primitive  // by sequence and order: each element's admittance, nil when not solved
 	base  *Fundamental
 	shunt map[ElementID]phasor.Spectrum // current through phase shunts, orders 2..H
 }
@@ -39,8 +40,8 @@ type Solution struct {
 func (s *System) Harmonics(ctx context.Context, base *Fundamental, order int, injections []Injection) (*Solution, error) {
 	sol := &Solution{sys: s, order: order, base: base, shunt: map[ElementID]phasor.Spectrum{}, Check: Check{Rounds: base.Rounds}}
 	for q := range sol.seq {
-		sol.seq[q] = make([][]complex128, order+1)
-		sol.seq[q][1] = base.seq[q]
+		sol.seq[q], sol.prim[q] = make([][]complex128, order+1), make([][]primitive, order+1)
+		sol.seq[q][1], sol.prim[q][1] = base.seq[q], base.prim[q]
 	}
 	w := s.newWork()
 	for h := 2; h <= order; h++ {
@@ -59,18 +60,20 @@ func (s *System) Harmonics(ctx context.Context, base *Fundamental, order int, in
 
 // work is what one order needs, kept from order to order.
 type work struct {
-	factors [3]*factors
-	current [3][]complex128
-	shunts  []ElementID
+	factors  [3]*factors
+	current  [3][]complex128
+	b        []complex128 // right-hand side in elimination order
+	residual []complex128
+	shunts   []ElementID
 }
 
 func (s *System) newWork() *work {
-	w := &work{}
+	w := &work{b: make([]complex128, s.nodes), residual: make([]complex128, s.nodes)}
 	for q := range w.factors {
 		w.factors[q], w.current[q] = s.pat.newFactors(), make([]complex128, s.nodes)
 	}
 	for id, e := range s.net.elements {
-		if x, ok := e.(*PhaseShunt); ok && s.Live(x.Bus) {
+		if _, ok := e.(*PhaseShunt); ok && s.place[id].live {
 			w.shunts = append(w.shunts, ElementID(id))
 		}
 	}
@@ -79,19 +82,22 @@ func (s *System) newWork() *work {
 
 // order solves one order.
 func (s *System) order(sol *Solution, w *work, h int, injections []Injection) error {
-	sourced := s.sources(w, h, injections)
-	if sourced == [3]bool{} {
-		return nil
+	sourced, err := s.sources(w, h, injections)
+	if err != nil || sourced == [3]bool{} {
+		return err
 	}
 	coupled := len(w.shunts) > 0
 	for q := phasor.Zero; q <= phasor.Negative; q++ {
 		if !sourced[q] && !coupled {
 			continue
 		}
-		if err := s.prepare(sol, w.factors[q], h, q); err != nil {
-			return err
+		sol.prim[q][h], sol.seq[q][h] = make([]primitive, len(s.net.elements)), make([]complex128, s.nodes)
+		s.admit(sol.prim[q][h], float64(h), q)
+		if s.factor(w.factors[q], sol.prim[q][h], q) {
+			s.back(w.factors[q], w.current[q], w.b, sol.seq[q][h])
+		} else if sol.Check.Fallback++; coupled || !s.dense(sol.prim[q][h], q, w.current[q], sol.seq[q][h]) {
+			return &SingularError{Sequence: q, Order: h}
 		}
-		sol.seq[q][h] = s.solveSequence(w.factors[q], w.current[q])
 	}
 	if coupled {
 		if err := s.compensate(sol, w, h); err != nil {
@@ -104,13 +110,11 @@ func (s *System) order(sol *Solution, w *work, h int, injections []Injection) er
 			continue
 		}
 		for k := range v {
-			if cmplx.IsNaN(v[k]) || cmplx.Abs(v[k]) > 1e3*s.scale[k] {
+			if a := cmplxAbs1(v[k]); !(a <= 100*s.scale[k]) {
 				return &PathError{Bus: s.busName(k), Sequence: q, Order: h}
 			}
 		}
-		residual, balance := s.audit(float64(h), q, v, w.current[q])
-		sol.Check.Residual = math.Max(sol.Check.Residual, residual)
-		sol.Check.Balance = math.Max(sol.Check.Balance, balance)
+		s.audit(sol, w, h, q)
 	}
 	return nil
 }
@@ -118,29 +122,25 @@ func (s *System) order(sol *Solution, w *work, h int, injections []Injection) er
 // PathError says that a current finds no way back to its source, or meets a
 // resonance without any damping.
 type PathError struct {
+	Load     string // that draws the current; empty when several do
 	Bus      string
 	Sequence phasor.Sequence
 	Order    int
 }
 
 func (e *PathError) Error() string {
+	if e.Load != "" {
+		return fmt.Sprintf("%s: the zero-sequence current of order %d that it draws at bus %s has no path back; connect the load without neutral, or earth a neutral on this side of the transformer", e.Load, e.Order, e.Bus)
+	}
 	if e.Sequence == phasor.Zero {
 		return fmt.Sprintf("%s: the zero-sequence current of order %d has no path back; connect the load without neutral, or earth a neutral on this side of the transformer", e.Bus, e.Order)
 	}
 	return fmt.Sprintf("%s: order %d meets a resonance without any damping; give reactors, cables or loads their resistance", e.Bus, e.Order)
 }
 
-// prepare assembles and factors one sequence at one order.
-func (s *System) prepare(sol *Solution, f *factors, h int, q phasor.Sequence) error {
-	if _, ok := s.matrix(f, float64(h), q); !ok {
-		return fmt.Errorf("the %s-sequence network cannot be solved at order %d", q, h)
-	}
-	return nil
-}
-
 // sources fills in the node currents of one order, shift-free, and reports
 // which sequences carry any.
-func (s *System) sources(w *work, h int, injections []Injection) (any [3]bool) {
+func (s *System) sources(w *work, h int, injections []Injection) (any [3]bool, err error) {
 	for q := range w.current {
 		clear(w.current[q])
 	}
@@ -151,7 +151,10 @@ func (s *System) sources(w *work, h int, injections []Injection) (any [3]bool) {
 			continue
 		}
 		for q, v := range phasor.ToSequence([3]complex128{in.Current[0].At(h), in.Current[1].At(h), in.Current[2].At(h)}) {
-			if cmplx.Abs(v) > 1e-12 {
+			if cmplxAbs1(v) > 1e-12 {
+				if s.floating[q] != nil && s.floating[q][k] {
+					return any, &PathError{Load: in.Name, Bus: s.busName(k), Sequence: phasor.Sequence(q), Order: h}
+				}
 				any[q] = true
 				w.current[q][k] -= s.turned(k, mirror(phasor.Sequence(q)), v)
 			}
@@ -165,7 +168,7 @@ func (s *System) sources(w *work, h int, injections []Injection) (any [3]bool) {
 			}
 		}
 	}
-	return any
+	return any, nil
 }
 
 // compensate puts the phase shunts in: with e the voltages across them, e0
@@ -182,7 +185,8 @@ func (s *System) compensate(sol *Solution, w *work, h int) error {
 			injected[i][q] = -s.turned(k, mirror(phasor.Sequence(q)), v)
 			one := make([]complex128, s.nodes)
 			one[k] = injected[i][q]
-			response[i][q] = s.solveSequence(w.factors[q], one)
+			response[i][q] = make([]complex128, s.nodes)
+			s.back(w.factors[q], one, w.b, response[i][q])
 		}
 	}
 	a, e := make([][]complex128, n), make([]complex128, n)
@@ -221,78 +225,83 @@ func (s *System) compensate(sol *Solution, w *work, h int) error {
 	return nil
 }
 
-// audit returns max |Y V - I| over max |I|, and the net complex power of all
-// elements over the sum of its magnitudes (Tellegen), both element by element
-// without the assembled matrix.
-func (s *System) audit(h float64, q phasor.Sequence, v, cur []complex128) (residual, balance float64) {
-	r := make([]complex128, s.nodes)
-	var size, total float64
+// audit adds to the check the residual max |Y V - I| over max |I|, and the net
+// complex power of all elements over the sum of its magnitudes (Tellegen), both
+// taken element by element without the assembled matrix.
+func (s *System) audit(sol *Solution, w *work, h int, q phasor.Sequence) {
+	v, r := sol.seq[q][h], w.residual
+	var size, total, worst float64
 	var net complex128
-	for k, i := range cur {
+	for k, i := range w.current[q] {
 		r[k] = -i
-		size = math.Max(size, cmplx.Abs(i)*s.scale[k])
-		power := v[k] * cmplx.Conj(i)
-		net -= power
-		total += cmplx.Abs(power)
-	}
-	for _, e := range s.net.elements {
-		b := e.ends()
-		if !s.live[s.node[b[0]]] {
+		if i == 0 {
 			continue
 		}
-		e.stamp(s.net.f1, h, q, func(i, j int, y complex128) {
-			m, n := s.node[b[i]], s.node[b[j]]
-			r[m] += y * v[n]
-			net += v[m] * cmplx.Conj(y*v[n])
-			if i != j {
-				r[n] += y * v[m]
-				net += v[n] * cmplx.Conj(y*v[m])
-			}
-		})
+		size = max(size, cmplxAbs1(i)*s.scale[k])
+		power := v[k] * cmplx.Conj(i)
+		net -= power
+		total += cmplxAbs1(power)
+	}
+	for i, y := range sol.prim[q][h] {
+		p := &s.place[i]
+		if !p.live {
+			continue
+		}
+		v0 := v[p.n0]
+		i0 := y.y00 * v0
+		if p.low >= 0 {
+			v1 := v[p.n1]
+			i0 += y.y01 * v1
+			i1 := y.y01*v0 + y.y11*v1
+			r[p.n1] += i1
+			net += v1 * cmplx.Conj(i1)
+		}
+		r[p.n0] += i0
+		net += v0 * cmplx.Conj(i0)
 	}
 	for k := range r {
 		if s.live[k] && v[k] != 0 {
-			residual = math.Max(residual, cmplx.Abs(r[k])*s.scale[k])
+			worst = max(worst, cmplxAbs1(r[k])*s.scale[k])
 		}
 	}
 	if size > 0 {
-		residual /= size
+		sol.Check.Residual = max(sol.Check.Residual, worst/size)
 	}
 	if total > 0 {
-		balance = cmplx.Abs(net) / total
+		sol.Check.Balance = max(sol.Check.Balance, cmplxAbs1(net)/total)
 	}
-	return residual, balance
+	if math.IsNaN(worst) || math.IsNaN(cmplxAbs1(net)) {
+		sol.Check.Residual = math.NaN()
+	}
 }
 
-// BusSequence returns the sequence voltages of a bus by order.
-func (x *Solution) BusSequence(b BusID) [3]phasor.Spectrum {
+// three returns three zero spectra in one block.
+func three(order int) [3]phasor.Spectrum {
+	n := order + 1
+	all := make(phasor.Spectrum, 3*n)
+	return [3]phasor.Spectrum{all[:n:n], all[n : 2*n : 2*n], all[2*n:]}
+}
+
+// BusVoltage returns the phase-to-neutral and the sequence voltages of a bus by
+// order.
+func (x *Solution) BusVoltage(b BusID) (phase, seq [3]phasor.Spectrum) {
 	k := x.sys.node[b]
-	var out [3]phasor.Spectrum
-	for q := range out {
-		out[q] = phasor.New(x.order)
-		for h := 1; h <= x.order; h++ {
+	phase, seq = three(x.order), three(x.order)
+	for h := 1; h <= x.order; h++ {
+		var s [3]complex128
+		for q := range s {
 			if v := x.seq[q][h]; v != nil {
-				out[q][h] = x.sys.turned(k, phasor.Sequence(q), v[k])
+				s[q] = x.sys.turned(k, phasor.Sequence(q), v[k])
+				seq[q][h] = s[q]
+			}
+		}
+		if s != [3]complex128{} {
+			for i, v := range phasor.ToPhase(s) {
+				phase[i][h] = v
 			}
 		}
 	}
-	return out
-}
-
-// BusPhase returns the phase-to-neutral voltages of a bus by order.
-func (x *Solution) BusPhase(b BusID) [3]phasor.Spectrum { return phases(x.BusSequence(b)) }
-
-func phases(seq [3]phasor.Spectrum) [3]phasor.Spectrum {
-	var out [3]phasor.Spectrum
-	for i := range out {
-		out[i] = make(phasor.Spectrum, len(seq[0]))
-	}
-	for h := range seq[0] {
-		for i, v := range phasor.ToPhase([3]complex128{seq[0][h], seq[1][h], seq[2][h]}) {
-			out[i][h] = v
-		}
-	}
-	return out
+	return phase, seq
 }
 
 // End is the current into an element at one of its ends.
@@ -304,68 +313,109 @@ type End struct {
 // Ends returns the current into an element at each of its ends.
 func (x *Solution) Ends(id ElementID) []End {
 	e := x.sys.net.elements[id]
+	p := &x.sys.place[id]
 	bus := e.ends()
-	seq := make([][3]phasor.Spectrum, len(bus))
-	for i := range seq {
-		for q := range seq[i] {
-			seq[i][q] = phasor.New(x.order)
-		}
-	}
-	for q := phasor.Zero; q <= phasor.Negative; q++ {
-		for h := 1; h <= x.order; h++ {
-			v := x.seq[q][h]
-			if v == nil || !x.sys.live[x.sys.node[bus[0]]] {
-				continue
-			}
-			i := make([]complex128, len(bus))
-			e.stamp(x.sys.net.f1, float64(h), q, func(a, b int, y complex128) {
-				i[a] += y * v[x.sys.node[bus[b]]]
-				if a != b {
-					i[b] += y * v[x.sys.node[bus[a]]]
-				}
-			})
-			if sup, ok := e.(*Supply); ok {
-				i[0] -= sup.emf(h, q) * sup.admittance(float64(h), q)
-			}
-			for n := range bus {
-				seq[n][q][h] = x.sys.turned(x.sys.node[bus[n]], q, i[n])
-			}
-		}
-	}
 	out := make([]End, len(bus))
 	for n := range out {
-		out[n] = End{bus[n], phases(seq[n])}
-		if d, ok := x.base.drawn[id]; ok {
-			for p := range d {
-				out[n].Phase[p][1] += d[p]
+		out[n] = End{bus[n], three(x.order)}
+	}
+	if !p.live {
+		return out
+	}
+	sup, supply := e.(*Supply)
+	for h := 1; h <= x.order; h++ {
+		var s [2][3]complex128
+		for q := range s[0] {
+			v := x.seq[q][h]
+			if v == nil {
+				continue
+			}
+			y := &x.prim[q][h][id]
+			i := y.y00 * v[p.n0]
+			if p.low >= 0 {
+				i += y.y01 * v[p.n1]
+				s[1][q] = x.sys.turned(int(p.n1), phasor.Sequence(q), y.y01*v[p.n0]+y.y11*v[p.n1])
+			}
+			if supply {
+				i -= sup.emf(h, phasor.Sequence(q)) * y.y00
+			}
+			s[0][q] = x.sys.turned(int(p.n0), phasor.Sequence(q), i)
+		}
+		for n := range out {
+			if s[n] != [3]complex128{} {
+				for i, v := range phasor.ToPhase(s[n]) {
+					out[n].Phase[i][h] = v
+				}
 			}
 		}
-		if current := x.shunt[id]; current != nil {
-			for h := 2; h <= x.order; h++ {
-				for p, i := range e.(*PhaseShunt).through(current[h]) {
-					out[n].Phase[p][h] += i
-				}
+	}
+	if d, ok := x.base.drawn[id]; ok {
+		for i := range d {
+			out[0].Phase[i][1] += d[i]
+		}
+	}
+	if current := x.shunt[id]; current != nil {
+		for h := 2; h <= x.order; h++ {
+			for i, v := range e.(*PhaseShunt).through(current[h]) {
+				out[0].Phase[i][h] += v
 			}
 		}
 	}
 	return out
 }
 
-// Scan returns the driving-point impedance at a bus.
+// Scan returns the driving-point impedance at a bus in one sequence, ohm, for
+// each order: EMFs shorted, non-linear loads open. dst is used when it is long
+// enough.
 func (s *System) Scan(ctx context.Context, bus BusID, q phasor.Sequence, orders []float64, dst []complex128) ([]complex128, error) {
-	fac := s.pat.newFactors()
-	k := s.node[bus]
-	cur := make([]complex128, s.nodes)
-	cur[k] = 1
+	sc := s.NewScanner(bus, q)
 	dst = dst[:0]
-	for _, h := range orders {
-		if err := ctx.Err(); err != nil {
+	for i, h := range orders {
+		if i%64 == 0 {
+			if err := ctx.Err(); err != nil {
+				return nil, err
+			}
+		}
+		z, err := sc.At(h)
+		if err != nil {
 			return nil, err
 		}
-		if _, ok := s.matrix(fac, h, q); !ok {
-			return nil, fmt.Errorf("the network cannot be solved at order %g", h)
-		}
-		dst = append(dst, s.solveSequence(fac, cur)[k])
+		dst = append(dst, z)
 	}
 	return dst, nil
+}
+
+// Scanner looks into one bus in one sequence, order after order, without
+// allocating.
+type Scanner struct {
+	s    *System
+	q    phasor.Sequence
+	node int
+	f    *factors
+	prim []primitive
+	one  []complex128
+	b, v []complex128
+}
+
+// NewScanner returns a scanner. It is not safe for concurrent use.
+func (s *System) NewScanner(bus BusID, q phasor.Sequence) *Scanner {
+	sc := &Scanner{s: s, q: q, node: s.node[bus], f: s.pat.newFactors(), prim: make([]primitive, len(s.net.elements)),
+		one: make([]complex128, s.nodes), b: make([]complex128, s.nodes), v: make([]complex128, s.nodes)}
+	sc.one[sc.node] = 1
+	return sc
+}
+
+// At returns the driving-point impedance at order h, ohm.
+func (sc *Scanner) At(h float64) (complex128, error) {
+	s := sc.s
+	if s.floating[sc.q] != nil && s.floating[sc.q][sc.node] {
+		return 0, fmt.Errorf("%s: nothing ties this bus to earth in the %s sequence, so its impedance has no value", s.busName(sc.node), sc.q)
+	}
+	s.admit(sc.prim, h, sc.q)
+	if s.factor(sc.f, sc.prim, sc.q) {
+		s.back(sc.f, sc.one, sc.b, sc.v)
+	} else if !s.dense(sc.prim, sc.q, sc.one, sc.v) {
+		return 0, &SingularError{Sequence: sc.q, Order: int(math.Round(h))}
+	}
+	return sc.v[sc.node], nil
 }

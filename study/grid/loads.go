@@ -20,16 +20,11 @@ func (e *Load) label() string        { return e.Name }
 func (e *Load) ends() []BusID        { return []BusID{e.Bus} }
 func (e *Load) series() bool         { return false }
 func (e *Load) check() *ElementError { return positive(e.Name, "voltage", e.NominalV) }
-func (e *Load) stamp(_, h float64, q phasor.Sequence, add Stamp) {
-	if q == phasor.Zero {
-		return
+func (e *Load) admit(_, h float64, q phasor.Sequence) primitive {
+	if q == phasor.Zero || (h == 1 && q == phasor.Positive && e.AtOrder1 != "impedance") {
+		return primitive{}
 	}
-	if h == 1 && q == phasor.Positive && e.AtOrder1 != "impedance" {
-		return
-	}
-	if y := LoadAdmittance(e.Model, e.P, e.Q, e.NominalV, h); y != 0 {
-		add(0, 0, y)
-	}
+	return primitive{y00: LoadAdmittance(e.Model, e.P, e.Q, e.NominalV, h)}
 }
 
 // LoadAdmittance returns the per-phase admittance of a linear load of p W and
@@ -95,10 +90,10 @@ func (e *Motor) series() bool  { return false }
 func (e *Motor) check() *ElementError {
 	return positive(e.Name, "locked-rotor impedance", math.Hypot(e.R, e.X))
 }
-func (e *Motor) stamp(_, h float64, q phasor.Sequence, add Stamp) {
+func (e *Motor) admit(_, h float64, q phasor.Sequence) primitive {
 	if q == phasor.Zero || (h == 1 && q == phasor.Positive) {
-		return
+		return primitive{}
 	}
-	add(0, 0, 1/complex(e.R*math.Pow(h, e.Exponent), e.X*h))
+	return primitive{y00: 1 / complex(e.R*power(h, e.Exponent), e.X*h)}
 }
 func (e *Motor) draw(v [3]complex128) [3]complex128 { return (&PowerLoad{P: e.P, Q: e.Q}).draw(v) }

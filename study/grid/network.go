@@ -24,16 +24,28 @@ type (
 	ElementID int
 )
 
-// Stamp adds admittance v (siemens) between ends i and j of an element; i = j
-// adds to the diagonal. Off-diagonal values are added once for (i,j) and (j,i).
-type Stamp func(i, j int, v complex128)
+// primitive is an element's nodal admittance in shift-free coordinates,
+// siemens: of its first end, between the ends, of its second end.
+type primitive struct{ y00, y01, y11 complex128 }
 
-// Element is one item of the network.
+// grounded reports whether the element gives its ends a way to earth, by
+// itself or as a branch: whether its admittance is not singular.
+func (p primitive) grounded() bool {
+	if p.y01 == 0 {
+		return p.y00 != 0 || p.y11 != 0
+	}
+	product := p.y00 * p.y11
+	return cmplxAbs1(product-p.y01*p.y01) > 1e-12*cmplxAbs1(product)
+}
+
+// Element is one item of the network: a supply, branch or shunt of this
+// package.
 type Element interface {
 	label() string
 	ends() []BusID
 	check() *ElementError
-	stamp(f1, h float64, q phasor.Sequence, add Stamp)
+	// admit returns the admittance at order h in sequence q.
+	admit(f1, h float64, q phasor.Sequence) primitive
 	series() bool
 }
 

@@ -15,11 +15,12 @@ type PhaseShunt struct {
 	Branch interface{ Admittance(h float64) complex128 }
 }
 
-func (e *PhaseShunt) label() string                                  { return e.Name }
-func (e *PhaseShunt) ends() []BusID                                  { return []BusID{e.Bus} }
-func (e *PhaseShunt) series() bool                                   { return false }
-func (e *PhaseShunt) check() *ElementError                           { return nil }
-func (e *PhaseShunt) stamp(_, _ float64, _ phasor.Sequence, _ Stamp) {}
+func (e *PhaseShunt) label() string                                   { return e.Name }
+func (e *PhaseShunt) ends() []BusID                                   { return []BusID{e.Bus} }
+func (e *PhaseShunt) series() bool                                    { return false }
+func (e *PhaseShunt) check() *ElementError                            { return nil }
+func (e *PhaseShunt) admit(_, _ float64, _ phasor.Sequence) primitive { return primitive{} }
+func (e *PhaseShunt) weights() [3]float64                             { return e.Weight }
 
 // terminal returns the voltage across the shunt.
 func (e *PhaseShunt) terminal(v [3]complex128) complex128 {

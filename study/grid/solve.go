@@ -9,61 +9,141 @@ import (
 	"quietbus/study/phasor"
 )
 
-// matrix assembles and factors the admittance of one sequence at order h, in
-// per unit of each node's nominal voltage so that pivots are comparable.
-// Nodes without supply, and nodes that nothing holds in this sequence, get a
-// unit pivot and a zero right-hand side.
-func (s *System) matrix(f *factors, h float64, q phasor.Sequence) ([]complex128, bool) {
-	clear(f.diag)
-	clear(f.low)
-	for _, e := range s.net.elements {
+// place is where an element's admittance goes in the factors: diagonal
+// positions of its ends, the entry between them, and whether it counts.
+type place struct {
+	d0, d1, low   int32 // low < 0: a shunt
+	s00, s01, s11 float64
+	n0, n1        int32
+	live          bool
+}
+
+// places finds the place of each element, once for a topology.
+func (s *System) places() {
+	s.place = make([]place, len(s.net.elements))
+	for i, e := range s.net.elements {
 		b := e.ends()
-		if !s.live[s.node[b[0]]] {
+		p := &s.place[i]
+		m := s.node[b[0]]
+		p.n0, p.d0, p.low, p.live = int32(m), int32(s.pat.rank[m]), -1, s.live[m]
+		p.s00 = s.scale[m] * s.scale[m]
+		if len(b) == 1 {
 			continue
 		}
-		e.stamp(s.net.f1, h, q, func(i, j int, v complex128) {
-			m, n := s.node[b[i]], s.node[b[j]]
-			v *= complex(s.scale[m]*s.scale[n], 0)
-			r, c := s.pat.rank[m], s.pat.rank[n]
-			if r == c {
-				f.diag[r] += v
-				return
-			}
-			if r < c {
-				r, c = c, r
-			}
-			f.low[s.pat.slot[[2]int{r, c}]] += v
-		})
+		n := s.node[b[1]]
+		p.n1, p.d1 = int32(n), int32(s.pat.rank[n])
+		p.s01, p.s11 = s.scale[m]*s.scale[n], s.scale[n]*s.scale[n]
+		r, c := s.pat.rank[m], s.pat.rank[n]
+		if r < c {
+			r, c = c, r
+		}
+		p.low = int32(s.pat.slot[[2]int{r, c}])
+	}
+}
+
+// admit fills in the admittance of every element of one sequence at order h.
+func (s *System) admit(dst []primitive, h float64, q phasor.Sequence) {
+	for i, e := range s.net.elements {
+		if s.place[i].live {
+			dst[i] = e.admit(s.net.f1, h, q)
+		} else {
+			dst[i] = primitive{}
+		}
+	}
+}
+
+// factor assembles and factors one sequence from its elements' admittances, in
+// per unit of each node's nominal voltage so that pivots are comparable. Nodes
+// without supply, and nodes that nothing holds in this sequence, get a unit
+// pivot. It reports false when a pivot is poor.
+func (s *System) factor(f *factors, prim []primitive, q phasor.Sequence) bool {
+	clear(f.diag)
+	clear(f.low)
+	floating := s.floating[q]
+	for i := range prim {
+		p := &s.place[i]
+		if !p.live {
+			continue
+		}
+		y := &prim[i]
+		if floating == nil || !floating[p.n0] {
+			f.diag[p.d0] += y.y00 * complex(p.s00, 0)
+		}
+		if p.low < 0 {
+			continue
+		}
+		if floating == nil || !floating[p.n1] {
+			f.diag[p.d1] += y.y11 * complex(p.s11, 0)
+		}
+		if floating == nil || !floating[p.n0] && !floating[p.n1] {
+			f.low[p.low] += y.y01 * complex(p.s01, 0)
+		}
 	}
 	for k := range f.diag {
 		if f.diag[k] == 0 {
 			f.diag[k] = 1
 		}
 	}
-	before := append([]complex128(nil), f.diag...)
-	return before, s.pat.factor(f)
+	return s.pat.factor(f)
 }
 
-// solveSequence solves Y V = I for node currents (A) and returns V (V).
-func (s *System) solveSequence(f *factors, current []complex128) []complex128 {
-	b := make([]complex128, s.nodes)
-	for k, v := range current {
-		b[s.pat.rank[k]] = v * complex(s.scale[k], 0)
+// back solves Y V = I for node currents (A) into v (V), with b for the work.
+func (s *System) back(f *factors, current, b, v []complex128) {
+	for k, i := range current {
+		b[s.pat.rank[k]] = i * complex(s.scale[k], 0)
 	}
 	s.pat.solve(f, b)
-	out := make([]complex128, s.nodes)
-	for k := range out {
+	for k := range v {
+		v[k] = 0
 		if s.live[k] {
-			out[k] = b[s.pat.rank[k]] * complex(s.scale[k], 0)
+			v[k] = b[s.pat.rank[k]] * complex(s.scale[k], 0)
 		}
 	}
-	return out
+}
+
+// dense solves the same system by a pivoted dense solver, for the orders at
+// which a pivot is poor. It reports false when the matrix is singular.
+func (s *System) dense(prim []primitive, q phasor.Sequence, current, v []complex128) bool {
+	a := make([][]complex128, s.nodes)
+	for k := range a {
+		a[k] = make([]complex128, s.nodes)
+	}
+	floating := s.floating[q]
+	loose := func(k int32) bool { return floating != nil && floating[k] }
+	for i := range prim {
+		p := &s.place[i]
+		if !p.live || loose(p.n0) {
+			continue
+		}
+		a[p.n0][p.n0] += prim[i].y00 * complex(p.s00, 0)
+		if p.low < 0 || loose(p.n1) {
+			continue
+		}
+		a[p.n1][p.n1] += prim[i].y11 * complex(p.s11, 0)
+		a[p.n0][p.n1] += prim[i].y01 * complex(p.s01, 0)
+		a[p.n1][p.n0] += prim[i].y01 * complex(p.s01, 0)
+	}
+	b := make([]complex128, s.nodes)
+	for k := range a {
+		if a[k][k] == 0 {
+			a[k][k] = 1
+		}
+		b[k] = current[k] * complex(s.scale[k], 0)
+	}
+	if !solveDense(a, b) {
+		return false
+	}
+	for k := range v {
+		v[k] = b[k] * complex(s.scale[k], 0)
+	}
+	return true
 }
 
 // Fundamental is the solution at order 1.
 type Fundamental struct {
 	sys    *System
 	seq    [3][]complex128 // shift-free node voltages
+	prim   [3][]primitive
 	drawn  map[ElementID][3]complex128
 	Rounds int
 }
@@ -102,11 +182,12 @@ type PowerLoad struct {
 	NominalV float64    // terminal voltage at which a constant current is stated; 0: not
 }
 
-func (e *PowerLoad) label() string                                  { return e.Name }
-func (e *PowerLoad) ends() []BusID                                  { return []BusID{e.Bus} }
-func (e *PowerLoad) series() bool                                   { return false }
-func (e *PowerLoad) check() *ElementError                           { return nil }
-func (e *PowerLoad) stamp(_, _ float64, _ phasor.Sequence, _ Stamp) {}
+func (e *PowerLoad) label() string                                   { return e.Name }
+func (e *PowerLoad) ends() []BusID                                   { return []BusID{e.Bus} }
+func (e *PowerLoad) series() bool                                    { return false }
+func (e *PowerLoad) check() *ElementError                            { return nil }
+func (e *PowerLoad) admit(_, _ float64, _ phasor.Sequence) primitive { return primitive{} }
+func (e *PowerLoad) weights() [3]float64                             { return e.Weight }
 func (e *PowerLoad) draw(v [3]complex128) [3]complex128 {
 	power := complex(e.P, e.Q)
 	current := func(u complex128, share float64) complex128 {
@@ -134,61 +215,94 @@ func (e *PowerLoad) draw(v [3]complex128) [3]complex128 {
 }
 
 // Fundamental solves order 1 by current injection: the linear network is
-// factored once and the loads' currents are corrected until they settle.
+// factored once and the loads' currents are corrected until they settle. A
+// supply too weak for its loads does not settle and is a *WeakError.
 func (s *System) Fundamental(ctx context.Context) (*Fundamental, error) {
 	f := &Fundamental{sys: s, drawn: map[ElementID][3]complex128{}}
-	var fac [3]*factors
+	w := s.newWork()
 	var base [3][]complex128
-	for q := range fac {
-		fac[q] = s.pat.newFactors()
-		if _, ok := s.matrix(fac[q], 1, phasor.Sequence(q)); !ok {
-			return nil, fmt.Errorf("the %s-sequence network cannot be solved at order 1", phasor.Sequence(q))
+	n := s.nodes
+	block := make([]complex128, 7*n)
+	next := block[6*n:]
+	for q := range base {
+		base[q], f.seq[q] = block[q*n:(q+1)*n], block[(3+q)*n:(4+q)*n]
+		f.prim[q] = make([]primitive, len(s.net.elements))
+		s.admit(f.prim[q], 1, phasor.Sequence(q))
+		if !s.factor(w.factors[q], f.prim[q], phasor.Sequence(q)) {
+			return nil, &SingularError{Sequence: phasor.Sequence(q), Order: 1}
 		}
-		base[q] = make([]complex128, s.nodes)
 		for _, sup := range s.supplies {
-			k := s.node[sup.Bus]
-			base[q][k] += sup.emf(1, phasor.Sequence(q)) * sup.admittance(1, phasor.Sequence(q))
+			base[q][s.node[sup.Bus]] += sup.emf(1, phasor.Sequence(q)) * sup.admittance(1, phasor.Sequence(q))
 		}
-		f.seq[q] = s.solveSequence(fac[q], base[q])
+		s.back(w.factors[q], base[q], w.b, f.seq[q])
 	}
-	const rounds = 200
+	const rounds = 300
+	weakest := 0
 	for f.Rounds = 1; f.Rounds <= rounds; f.Rounds++ {
 		if err := ctx.Err(); err != nil {
 			return nil, err
 		}
-		var cur [3][]complex128
-		for q := range cur {
-			cur[q] = append([]complex128(nil), base[q]...)
+		for q := range base {
+			copy(w.current[q], base[q])
 		}
 		for id, e := range s.net.elements {
 			d, ok := e.(Drawing)
-			if !ok || !s.live[s.node[e.ends()[0]]] {
+			if !ok || !s.place[id].live {
 				continue
 			}
-			k := s.node[e.ends()[0]]
+			k := int(s.place[id].n0)
 			i := d.draw(s.phaseAt(&f.seq, k))
 			f.drawn[ElementID(id)] = i
 			for q, v := range phasor.ToSequence(i) {
-				cur[q][k] -= s.turned(k, mirror(phasor.Sequence(q)), v)
+				w.current[q][k] -= s.turned(k, mirror(phasor.Sequence(q)), v)
 			}
 		}
 		var worst float64
-		for q := range cur {
-			v := s.solveSequence(fac[q], cur[q])
-			for k := range v {
-				d := cmplx.Abs(v[k]-f.seq[q][k]) / s.scale[k]
-				worst = math.Max(worst, d)
+		for q := range base {
+			s.back(w.factors[q], w.current[q], w.b, next)
+			for k := range next {
+				if d := cmplxAbs1(next[k]-f.seq[q][k]) / s.scale[k]; d > worst || math.IsNaN(d) {
+					worst, weakest = d, k
+				}
 			}
-			f.seq[q] = v
+			copy(f.seq[q], next)
 		}
 		if math.IsNaN(worst) || worst > 1e6 {
 			break
 		}
 		if worst < 1e-13 {
-			return f, nil
+			return f, s.sound(f)
 		}
 	}
-	return nil, fmt.Errorf("the power flow does not settle: the supply is too weak for the loads as stated")
+	return nil, &WeakError{Bus: s.busName(weakest)}
+}
+
+// sound refuses a solution in which a bus has lost more than six tenths of its
+// voltage: loads do not work there, and the stable branch is not sure.
+func (s *System) sound(f *Fundamental) error {
+	for k, live := range s.live {
+		if live && cmplx.Abs(f.seq[phasor.Positive][k]) < 0.4*s.scale[k] {
+			return &WeakError{Bus: s.busName(k)}
+		}
+	}
+	return nil
+}
+
+// WeakError says that the power flow has no sound solution.
+type WeakError struct{ Bus string }
+
+func (e *WeakError) Error() string {
+	return fmt.Sprintf("%s: the supply is too weak for the loads as stated, the voltage collapses; check fault level, impedances and powers on the way to this bus", e.Bus)
+}
+
+// SingularError says that a network has no solution.
+type SingularError struct {
+	Sequence phasor.Sequence
+	Order    int
+}
+
+func (e *SingularError) Error() string {
+	return fmt.Sprintf("the %s-sequence network has no solution at order %d: a resonance without any damping; give reactors, cables or loads their resistance", e.Sequence, e.Order)
 }
 
 // mirror returns the sequence whose turn undoes that of q.

@@ -29,6 +29,9 @@ type System struct {
 	pat      *pattern
 	scale    []float64 // by node: nominal line-to-neutral voltage
 	supplies []*Supply
+	place    []place
+	turn     []complex128 // by node: e^(-j shift)
+	floating [3][]bool    // by sequence and node: nothing holds it; nil for none
 }
 
 // Compile finds nodes, islands, angles and the order of elimination.
@@ -89,7 +92,69 @@ func (n *Network) Compile() (*System, error) {
 		}
 	}
 	s.pat = newPattern(s.nodes, adj)
-	return s, nil
+	s.places()
+	s.turn = make([]complex128, s.nodes)
+	for k := range s.turn {
+		s.turn[k] = cmplx.Rect(1, -s.shift[k])
+	}
+	return s, s.float()
+}
+
+// float finds the nodes that nothing ties to earth in the zero sequence, and
+// refuses loads to neutral that stand there.
+func (s *System) float() error {
+	group := make([]int, s.nodes)
+	for k := range group {
+		group[k] = k
+	}
+	var find func(int) int
+	find = func(k int) int {
+		for group[k] != k {
+			group[k] = group[group[k]]
+			k = group[k]
+		}
+		return k
+	}
+	held := make([]bool, s.nodes)
+	prim := make([]primitive, len(s.net.elements))
+	s.admit(prim, 3, phasor.Zero)
+	for i := range prim {
+		if prim[i].y01 != 0 {
+			group[find(int(s.place[i].n0))] = find(int(s.place[i].n1))
+		}
+	}
+	for i := range prim {
+		p := &s.place[i]
+		if prim[i].y01 != 0 {
+			if prim[i].grounded() {
+				held[find(int(p.n0))] = true
+			}
+			continue
+		}
+		held[find(int(p.n0))] = held[find(int(p.n0))] || prim[i].y00 != 0
+		if p.low >= 0 {
+			held[find(int(p.n1))] = held[find(int(p.n1))] || prim[i].y11 != 0
+		}
+	}
+	loose := make([]bool, s.nodes)
+	any := false
+	for k := range loose {
+		loose[k] = s.live[k] && !held[find(k)]
+		any = any || loose[k]
+	}
+	if !any {
+		return nil
+	}
+	s.floating[phasor.Zero] = loose
+	for i, e := range s.net.elements {
+		w, ok := e.(interface{ weights() [3]float64 })
+		if ok && loose[s.place[i].n0] {
+			if v := w.weights(); v[0]+v[1]+v[2] != 0 {
+				return &ElementError{e.label(), "connection", "is to the neutral, but no neutral is earthed on this side, so its current has no way back; earth a neutral, or connect it between phases"}
+			}
+		}
+	}
+	return nil
 }
 
 // reach walks from the supplies and finds which nodes are live and at what
@@ -154,9 +219,9 @@ func (s *System) Live(b BusID) bool { return s.live[s.node[b]] }
 func (s *System) turned(node int, q phasor.Sequence, v complex128) complex128 {
 	switch q {
 	case phasor.Positive:
-		return v * cmplx.Rect(1, -s.shift[node])
+		return v * s.turn[node]
 	case phasor.Negative:
-		return v * cmplx.Rect(1, s.shift[node])
+		return v * complex(real(s.turn[node]), -imag(s.turn[node]))
 	}
 	return v
 }
