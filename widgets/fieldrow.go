@@ -37,7 +37,6 @@ func newFieldRow(s *Sheet, f SheetField) *fieldRow {
 		source:  newParagraph(theme.SizeNameCaptionText, theme.ColorNamePlaceHolder),
 	}
 	r.trouble.style.Bold = true
-	r.source.style.Italic = true
 	r.origin = newQuietButton("", r.chooseOrigin)
 	r.origin.chevron, r.origin.framed, r.origin.left = true, true, true
 	r.origin.onFocus, r.origin.onEscape = r.gained, r.escape
@@ -266,9 +265,10 @@ func (r *fieldRow) showSource() {
 	italic := fyne.TextStyle{Italic: f.Origin == OriginAssumed}
 	r.origin.set(originWord(f.Origin), italic)
 	r.source.text = ""
-	if f.Sourced && f.Note != "" {
-		r.source.text = originWord(f.Origin) + ": " + f.Note
+	if f.Sourced {
+		r.source.text = f.Note
 	}
+	r.source.style = italic
 	r.setting = true
 	if r.note.Text != f.Note {
 		r.note.SetText(f.Note)

@@ -2,6 +2,8 @@ package widgets
 
 import (
 	"image"
+	"image/color"
+	xdraw "image/draw"
 	"image/png"
 	"math"
 	"os"
@@ -85,4 +87,15 @@ func diamond(c draw.Canvas) {
 	}
 	p.Close()
 	c.Fill(p)
+}
+
+var black, white = color.Black, color.White
+
+func newCanvas(c vg.Canvas, w, h vg.Length) draw.Canvas { return draw.NewCanvas(c, w, h) }
+
+// grey takes the colour out of a picture.
+func grey(m image.Image) image.Image {
+	g := image.NewGray(m.Bounds())
+	xdraw.Draw(g, g.Rect, m, m.Bounds().Min, xdraw.Src)
+	return g
 }

@@ -4,6 +4,8 @@ import (
 	"testing"
 
 	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/driver/desktop"
+	"fyne.io/fyne/v2/test"
 )
 
 func someMeasures() []Measure {
@@ -19,13 +21,114 @@ func someMeasures() []Measure {
 
 func TestMeasureRowLooks(t *testing.T) {
 	for _, look := range looks {
-		w := stage(t, look, fyne.NewSize(1280, 190*look.size), func() fyne.CanvasObject {
+		w := stage(t, look, fyne.NewSize(1280, 160*look.size), func() fyne.CanvasObject {
 			m := NewMeasureRow()
+			m.OnEdit, m.OnAdd = func(string) {}, func() {}
 			m.SetMeasures(someMeasures())
 			return m
 		})
+		assertFits(t, look.name, w)
 		keep(t, "measures-"+look.name, w.Canvas().Capture())
-		w = stage(t, look, fyne.NewSize(900, 190*look.size), func() fyne.CanvasObject { return NewMeasureRow() })
+		w = stage(t, look, fyne.NewSize(900, 160*look.size), func() fyne.CanvasObject { return NewMeasureRow() })
+		assertFits(t, look.name+" empty", w)
 		keep(t, "measures-empty-"+look.name, w.Canvas().Capture())
+	}
+}
+
+func TestMeasureRowSwitches(t *testing.T) {
+	type flip struct {
+		id string
+		on bool
+	}
+	var flips []flip
+	var edited, tapped []string
+	added := 0
+	var m *MeasureRow
+	w := stage(t, plain, fyne.NewSize(1280, 200), func() fyne.CanvasObject {
+		m = NewMeasureRow()
+		m.OnChanged = func(id string, on bool) { flips = append(flips, flip{id, on}) }
+		m.OnEdit = func(id string) { edited = append(edited, id) }
+		m.OnTapped = func(id string) { tapped = append(tapped, id) }
+		m.OnAdd = func() { added++ }
+		return m
+	})
+	test.TapCanvas(w.Canvas(), fyne.CurrentApp().Driver().AbsolutePositionForObject(m.empty.button).AddXY(5, 5))
+	if added != 1 {
+		t.Fatalf("the empty state's button added %d", added)
+	}
+	m.SetMeasures(someMeasures())
+	settle(w)
+	middle := func(o fyne.CanvasObject) fyne.Position {
+		return fyne.CurrentApp().Driver().AbsolutePositionForObject(o).AddXY(o.Size().Width/2, o.Size().Height/2)
+	}
+	sw := m.Card("R").Switch()
+	if s := sw.Size(); s.Width < Target || s.Height < Target {
+		t.Errorf("the switch is %v, a target is %v", s, Target)
+	}
+	test.TapCanvas(w.Canvas(), middle(sw))
+	test.TapCanvas(w.Canvas(), middle(m.Card("F5").Switch()))
+	if len(flips) != 2 || flips[0] != (flip{"R", true}) || flips[1] != (flip{"F5", false}) {
+		t.Fatalf("flips %v", flips)
+	}
+	if !m.Card("R").Measure().On {
+		t.Error("the card does not know that it is on")
+	}
+
+	// The same cards stay, with the focus, when only their words change.
+	next := someMeasures()
+	next[3].On, next[3].Worth = true, "On."
+	card := m.Card("R")
+	m.SetMeasures(next)
+	if m.Card("R") != card || w.Canvas().Focused() != fyne.Focusable(m.Card("F5").Switch()) {
+		t.Error("cards or focus changed with the words")
+	}
+	if len(flips) != 2 {
+		t.Error("setting a switch from outside told OnChanged")
+	}
+
+	// By keyboard: from switch to edit button to the next switch.
+	w.Canvas().Focused().TypedRune(' ')
+	test.FocusNext(w.Canvas())
+	w.Canvas().Focused().TypedKey(&fyne.KeyEvent{Name: fyne.KeyReturn})
+	test.FocusNext(w.Canvas())
+	w.Canvas().Focused().TypedKey(&fyne.KeyEvent{Name: fyne.KeyReturn})
+	if len(flips) != 4 || flips[2] != (flip{"F5", false}) || flips[3] != (flip{"D7", true}) {
+		t.Errorf("flips by keyboard %v", flips)
+	}
+	if len(edited) != 1 || edited[0] != "F5" {
+		t.Errorf("edited %v", edited)
+	}
+	test.TapCanvas(w.Canvas(), middle(m.Card("A").name))
+	if len(tapped) != 1 || tapped[0] != "A" {
+		t.Errorf("tapped %v", tapped)
+	}
+	m.SetMeasures(next[:1])
+	if m.Card("R") != nil || m.Card("F5") == nil {
+		t.Error("the wrong card went away")
+	}
+}
+
+func TestSwitchTellsByShape(t *testing.T) {
+	var s *Switch
+	w := stage(t, plain, fyne.NewSize(64, 40), func() fyne.CanvasObject {
+		s = NewSwitch(false, nil)
+		return s
+	})
+	off := w.Canvas().Capture()
+	s.SetOn(true)
+	on := w.Canvas().Capture()
+	keep(t, "switch-off", off)
+	keep(t, "switch-on", on)
+	if _, _, far := difference(t, grey(off), grey(on)); far < 0.15 {
+		t.Errorf("without colour on and off differ in %.0f %% of the pixels", 100*far)
+	}
+	s.Disable()
+	s.Tapped(&fyne.PointEvent{})
+	s.TypedRune(' ')
+	if !s.On {
+		t.Error("a disabled switch flipped")
+	}
+	if s.Cursor() != desktop.DefaultCursor {
+		t.Error("a disabled switch invites a tap")
 	}
 }

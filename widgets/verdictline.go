@@ -218,8 +218,18 @@ func (w *verdictRow) lead() float32 {
 
 func (w *verdictRow) heightFor(width float32) float32 {
 	inner := max(width-w.lead()-Step, 8*Step)
-	height := w.text.heightFor(inner) + w.before.heightFor(inner)
+	height := w.text.heightFor(inner)
+	if _, beside := w.beside(inner); !beside {
+		height += w.before.heightFor(inner)
+	}
 	return max(height, w.mark.MinSize().Height, Target) + Step
+}
+
+// beside tells whether the words on before fit on the line of the finding, and
+// how far the finding reaches.
+func (w *verdictRow) beside(inner float32) (float32, bool) {
+	reach := fyne.MeasureText(w.text.text, sizeOf(w, w.text.size), w.text.style).Width + 2*Step
+	return reach, reach+fyne.MeasureText(w.before.text, sizeOf(w, w.before.size), w.before.style).Width+1 <= inner
 }
 
 // Tapped implements fyne.Tappable.
@@ -319,6 +329,12 @@ func (r *verdictRowRenderer) Layout(size fyne.Size) {
 	height := w.text.heightFor(inner)
 	w.text.Move(fyne.NewPos(lead, top))
 	w.text.Resize(fyne.NewSize(inner, height))
+	if reach, beside := w.beside(inner); beside {
+		small := lineHeight(sizeOf(w, theme.SizeNameText), fyne.TextStyle{})
+		w.before.Move(fyne.NewPos(lead+reach, top+(line-small)*0.8)) // on one baseline
+		w.before.Resize(fyne.NewSize(inner-reach, small))
+		return
+	}
 	w.before.Move(fyne.NewPos(lead, top+height))
 	w.before.Resize(fyne.NewSize(inner, w.before.heightFor(inner)))
 }
