@@ -14,11 +14,12 @@ import (
 type plan struct {
 	study   *Study
 	chosen  []*Measure
-	banks   []Bank                     // that stand, detuned ones as they would be
-	filters []Filter                   // that stand
-	spectra map[string]converter.Model // of loads behind a new line reactor
-	lowpass map[string]*Measure        // by the load behind them
-	notes   map[string][]string        // by measure
+	banks   []Bank                             // that stand, detuned ones as they would be
+	filters []Filter                           // that stand
+	spectra map[string]converter.Model         // of loads behind a new line reactor
+	lowpass map[string]*Measure                // by the load behind them
+	notes   map[string][]string                // by measure
+	skin    map[string]func(h float64) float64 // by cable, worked out once; may be nil
 }
 
 // apply returns the plan of the named measures. It fails on names that are no

@@ -152,16 +152,25 @@ func (m *model) transformer(t *Transformer) (*grid.Transformer, error) {
 func (m *model) cable(c *Cable) *grid.Cable {
 	km, n := c.LengthM/1000, math.Max(1, float64(c.Parallel))
 	r0, x0 := or(c.R0OhmPerKm, 4*c.ROhmPerKm), or(c.X0OhmPerKm, 3*c.XOhmPerKm)
-	var skin func(h float64) float64
-	switch c.Skin {
-	case "", "round":
-		skin = grid.SkinLaw(grid.RoundSkin, c.ROhmPerKm/1000, m.plan.study.FrequencyHz)
-	case "iec60287":
-		skin = grid.SkinLaw(grid.IECSkin, c.ROhmPerKm/1000, m.plan.study.FrequencyHz)
+	skin, known := m.plan.skin[c.Name]
+	if !known {
+		skin = c.skin(m.plan.study)
 	}
 	return &grid.Cable{Name: c.Name, From: m.bus[c.From], To: m.bus[c.To], Skin: skin,
 		R: c.ROhmPerKm * km / n, X: c.XOhmPerKm * km / n, C: 1e-9 * c.CNFPerKm * km * n,
 		R0: r0 * km / n, X0: x0 * km / n, C0: 1e-9 * or(c.C0NFPerKm, c.CNFPerKm) * km * n}
+}
+
+// skin returns the law by which the cable's resistance rises with the order,
+// nil for none.
+func (c *Cable) skin(s *Study) func(h float64) float64 {
+	switch c.Skin {
+	case "none":
+		return nil
+	case "iec60287":
+		return grid.SkinLaw(grid.IECSkin, c.ROhmPerKm/1000, s.FrequencyHz, s.Order())
+	}
+	return grid.SkinLaw(grid.RoundSkin, c.ROhmPerKm/1000, s.FrequencyHz, s.Order())
 }
 
 // addLoads adds linear loads, motors and the order 1 part of the non-linear

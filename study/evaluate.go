@@ -3,7 +3,6 @@ package study
 import (
 	"context"
 	"fmt"
-	"slices"
 
 	"quietbus/study/grid"
 	"quietbus/study/phasor"
@@ -27,14 +26,21 @@ func Evaluate(ctx context.Context, s *Study, on []string) (*Outcome, error) {
 // Prepared is a study that has been validated once, ready to be evaluated for
 // many choices of measures. It is immutable and safe for concurrent use. The
 // study must not be changed afterwards: clone it first.
-type Prepared struct{ study *Study }
+type Prepared struct {
+	study *Study
+	skin  map[string]func(h float64) float64 // by cable
+}
 
 // Prepare validates s. All problems found come back as one error.
 func Prepare(s *Study) (*Prepared, error) {
 	if problems := s.Validate(); len(problems) > 0 {
 		return nil, FieldErrors(problems)
 	}
-	return &Prepared{s}, nil
+	p := &Prepared{s, map[string]func(float64) float64{}}
+	for i := range s.Cables {
+		p.skin[s.Cables[i].Name] = s.Cables[i].skin(s)
+	}
+	return p, nil
 }
 
 // Study returns the study that was prepared.
@@ -42,11 +48,7 @@ func (p *Prepared) Study() *Study { return p.study }
 
 // Evaluate is the function of the same name for a prepared study.
 func (p *Prepared) Evaluate(ctx context.Context, on []string) (*Outcome, error) {
-	plan, err := p.study.apply(on)
-	if err != nil {
-		return nil, err
-	}
-	m, err := plan.build()
+	m, err := p.model(on)
 	if err != nil {
 		return nil, err
 	}
@@ -55,6 +57,16 @@ func (p *Prepared) Evaluate(ctx context.Context, on []string) (*Outcome, error) 
 		return nil, err
 	}
 	return m.outcome(ctx, sol)
+}
+
+// model returns the network with the named measures on.
+func (p *Prepared) model(on []string) (*model, error) {
+	plan, err := p.study.apply(on)
+	if err != nil {
+		return nil, err
+	}
+	plan.skin = p.skin
+	return plan.build()
 }
 
 // solution is a solved model: the network's solution, what each non-linear
@@ -115,11 +127,7 @@ func (m *model) named(err error) error { return asFieldError("", err) }
 // measures on, from one order to another, with its peaks and valleys refined.
 // EMFs are shorted and non-linear loads open.
 func (p *Prepared) Impedance(ctx context.Context, on []string, bus string, seq phasor.Sequence, from, to float64) (*ScanResult, error) {
-	plan, err := p.study.apply(on)
-	if err != nil {
-		return nil, err
-	}
-	m, err := plan.build()
+	m, err := p.model(on)
 	if err != nil {
 		return nil, err
 	}
@@ -131,16 +139,4 @@ func (p *Prepared) Impedance(ctx context.Context, on []string, bus string, seq p
 		return nil, fmt.Errorf("bus %q has no supply, so it has no impedance to scan", bus)
 	}
 	return m.scan(ctx, "", bus, seq, from, to)
-}
-
-// energised reports which of the study's buses a supply reaches.
-func (m *model) energised() []string {
-	var live []string
-	for name, id := range m.bus {
-		if m.system.Live(id) {
-			live = append(live, name)
-		}
-	}
-	slices.Sort(live)
-	return live
 }

@@ -57,7 +57,7 @@ func TestEvaluateFundamental(t *testing.T) {
 			t.Logf("%+v %+v", m.Duty, m.Notes)
 		}
 	}
-	scan, err := (&Prepared{small()}).Impedance(context.Background(), nil, "LV", phasor.Positive, 1, 25)
+	scan, err := (&Prepared{study: small()}).Impedance(context.Background(), nil, "LV", phasor.Positive, 1, 25)
 	if err != nil {
 		t.Fatal(err)
 	}

@@ -22,7 +22,7 @@ func RoundSkin(x float64) float64 {
 		b *= q / complex(n*(n+1), 0)
 		i0 += a
 		i1 += b
-		if cmplx.Abs(a) < 1e-17*cmplx.Abs(i0) {
+		if cmplxAbs1(a) < 1e-17*cmplxAbs1(i0) {
 			break
 		}
 	}
@@ -42,9 +42,20 @@ func IECSkin(x float64) float64 {
 }
 
 // SkinLaw returns R(h)/R(1) of a conductor of the given resistance in ohm/m by
-// RoundSkin or IECSkin.
-func SkinLaw(law func(x float64) float64, ohmPerM, f1 float64) func(h float64) float64 {
+// RoundSkin or IECSkin. The values at whole orders up to order are worked out
+// at once; the law may be shared between networks.
+func SkinLaw(law func(x float64) float64, ohmPerM, f1 float64, order int) func(h float64) float64 {
 	square := 8 * math.Pi * f1 * 1e-7 / ohmPerM
 	first := law(math.Sqrt(square))
-	return func(h float64) float64 { return law(math.Sqrt(square*h)) / first }
+	at := func(h float64) float64 { return law(math.Sqrt(square*h)) / first }
+	table := make([]float64, order+1)
+	for h := range table {
+		table[h] = at(float64(h))
+	}
+	return func(h float64) float64 {
+		if n := int(h); float64(n) == h && n >= 0 && n < len(table) {
+			return table[n]
+		}
+		return at(h)
+	}
 }
