@@ -3,6 +3,7 @@ package handout
 import (
 	"fmt"
 	"image/color"
+	"sort"
 
 	"gonum.org/v1/plot/vg"
 
@@ -29,6 +30,7 @@ type book struct {
 	y     vg.Length // the next line begins below this height
 	empty bool      // nothing stands on the page yet
 	fresh bool      // a heading is the last that was written
+	float func()    // draws what waits for the top of the next upright page
 
 	body, small, muted, heading style
 }
@@ -54,6 +56,10 @@ func (b *book) open(lying bool) {
 	b.page(w, h)
 	b.pages = append(b.pages, pageSize{w, h})
 	b.y, b.empty = h-marginTop, true
+	if waiting := b.float; waiting != nil && !lying {
+		b.float = nil
+		waiting()
+	}
 }
 
 // upright begins an upright page when the current one lies.
@@ -77,7 +83,7 @@ func (b *book) room() vg.Length { return b.y - marginBottom }
 
 // need begins another page of the same shape when less than h is left.
 func (b *book) need(h vg.Length) {
-	if b.room() < h && !b.empty {
+	for b.room() < h && !b.empty {
 		b.open(b.lying())
 	}
 }
@@ -130,7 +136,7 @@ func (b *book) section(title string, keep vg.Length) {
 	b.skip(14)
 	b.bookmark(title, 0, b.y)
 	b.y -= b.heading.line()
-	b.text(b.heading, marginLeft, b.y+3, title)
+	b.text(b.heading, marginLeft, b.y+3, b.fit(b.heading, title, b.width()))
 	b.y -= 4
 	b.fresh = true
 }
@@ -142,7 +148,7 @@ func (b *book) subsection(title string, keep vg.Length) {
 	b.skip(8)
 	b.bookmark(title, 1, b.y)
 	b.y -= s.line()
-	b.text(s, marginLeft, b.y+2.5, title)
+	b.text(s, marginLeft, b.y+2.5, b.fit(s, title, b.width()))
 	b.y -= 2
 	b.fresh = true
 }
@@ -173,6 +179,7 @@ func (b *book) finish(header, revision, footer string) {
 	for i, p := range b.pages {
 		b.reopen(i + 1)
 		right := p.w - marginRight
+		revision := b.fit(b.muted, revision, (right-marginLeft)/2)
 		if i > 0 {
 			y := p.h - 40
 			b.text(b.muted, marginLeft, y, b.fit(b.muted, header, right-marginLeft-b.fonts.width(b.muted, revision)-18))
@@ -190,8 +197,6 @@ func (b *book) fit(s style, text string, w vg.Length) string {
 		return text
 	}
 	letters := []rune(text)
-	for len(letters) > 0 && b.fonts.width(s, string(letters)+"…") > w {
-		letters = letters[:len(letters)-1]
-	}
-	return string(letters) + "…"
+	n := sort.Search(len(letters), func(n int) bool { return b.fonts.width(s, string(letters[:n+1])+"…") > w })
+	return string(letters[:n]) + "…"
 }

@@ -47,8 +47,8 @@ func newCanvas(title, author string, date time.Time) *canvas {
 	doc.SetCatalogSort(true)
 	doc.SetCreationDate(date)
 	doc.SetModificationDate(date)
-	doc.SetTitle(title, true)
-	doc.SetAuthor(author, true)
+	doc.SetTitle(basic(title), true)
+	doc.SetAuthor(basic(author), true)
 	doc.SetCreator("Quietbus", true)
 	doc.SetProducer("Quietbus", true)
 	return &canvas{doc: doc, faces: map[font.Font]string{}}
@@ -72,7 +72,7 @@ func (c *canvas) reopen(n int) {
 // bookmark puts an entry of the outline at height y of the current page.
 func (c *canvas) bookmark(text string, level int, y vg.Length) {
 	_, h := c.doc.GetPageSize()
-	c.doc.Bookmark(text, level, h-y.Points())
+	c.doc.Bookmark(basic(text), level, h-y.Points())
 }
 
 // WriteTo closes the document and writes it.

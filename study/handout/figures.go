@@ -64,7 +64,7 @@ func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet,
 	s, after := in.study(), in.After
 	set := &figureSet{}
 	look := &scans{study: s}
-	if f := figure.SingleLine(s, before, after, nil, figure.View{}); f != nil {
+	if f := figure.SingleLine(s, before, after, nil, figure.View{Plain: true}); f.Size.X > 0 && f.Size.Y > 0 {
 		set.single = &drawn{f, true}
 	}
 	if len(after.Points) > 0 {

@@ -5,7 +5,6 @@ import (
 	"context"
 	"errors"
 	"fmt"
-	"image/png"
 	"runtime"
 	"slices"
 	"strings"
@@ -125,12 +124,11 @@ func asSVG(f *figure.Figure, st *figure.Style) ([]byte, error) {
 func asPNG(f *figure.Figure, st *figure.Style) ([]byte, error) {
 	c := vgimg.NewWith(vgimg.UseWH(f.Size.X, f.Size.Y), vgimg.UseDPI(pictureDPI))
 	f.Draw(draw.New(c), st)
-	var b bytes.Buffer
-	enc := png.Encoder{CompressionLevel: png.BestSpeed}
-	if err := enc.Encode(&b, c.Image()); err != nil {
+	raw, err := encodePNG(c.Image())
+	if err != nil {
 		return nil, fmt.Errorf("figure %s as PNG: %w", f.Key, err)
 	}
-	return b.Bytes(), nil
+	return raw, nil
 }
 
 // asPDF returns the figure as a page of its own size.

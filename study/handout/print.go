@@ -40,6 +40,9 @@ func printed(ctx context.Context, in Input, doc *Results, set *figureSet, opt Op
 		}
 		part()
 	}
+	if p.float != nil {
+		p.open(false)
+	}
 	p.finish(s.Title.Study, revision(s), p.footer(opt.Date))
 	var b bytes.Buffer
 	if _, err := p.WriteTo(&b); err != nil {

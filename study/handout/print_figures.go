@@ -8,22 +8,30 @@ import (
 	"quietbus/study/figure"
 )
 
-// singleLine puts the single-line on the first page when it fits there in a
-// readable size, else on a page of its own.
+// singleLine puts the single-line on the first page when it fits there, else
+// on top of the next one, while the text goes on; a wide one lies on a page of
+// its own.
 func (p *printer) singleLine() {
 	f := p.figures.single
 	if f == nil {
 		return
 	}
-	const caption = vg.Length(30)
+	const caption, gap, least = vg.Length(30), vg.Length(8), 0.75 // of its natural size
 	w, h := f.Size.X, f.Size.Y
 	scale := min(1, p.width()/w)
-	if lying := h < w*0.8; p.room() < h*scale+caption+8 || scale < 0.75 {
-		p.open(lying)
-		scale = min(p.width()/w, (p.room()-caption)/h)
+	switch {
+	case p.room() >= h*scale+caption+gap && scale >= least:
+		p.skip(gap)
+		p.placeIn(*f, marginLeft, p.width(), h*scale+caption)
+	case scale >= least && h*scale+caption <= p.size().h-marginTop-marginBottom:
+		p.float = func() {
+			p.placeIn(*f, marginLeft, p.width(), h*scale+caption)
+			p.skip(gap)
+		}
+	default:
+		p.open(w > h)
+		p.placeIn(*f, marginLeft, p.width(), p.room())
 	}
-	p.skip(8)
-	p.placeIn(*f, marginLeft, p.width(), h*scale+caption)
 }
 
 // evidence sets the figures on lying pages: wide ones over the whole width,
@@ -54,7 +62,7 @@ func (p *printer) evidence() {
 // placeIn draws a figure with its caption into width w and height h below the
 // cursor, and moves the cursor below it.
 func (p *printer) placeIn(f drawn, x, w, h vg.Length) {
-	lines := p.wrap(w, []span{{p.small.bold(), f.Title + "  "}, {p.muted, strings.TrimSpace(f.Caption)}})
+	lines := first(6, p.wrap(w, []span{{p.small.bold(), f.Title + "  "}, {p.muted, strings.TrimSpace(f.Caption)}}))
 	text := vg.Length(4)
 	for _, l := range lines {
 		text += l.height

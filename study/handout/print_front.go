@@ -17,7 +17,7 @@ func (p *printer) front() {
 	p.y -= sizeSmall * leading
 	p.text(p.muted, marginLeft, p.y, "Harmonic study: summary")
 	title := style{bold, sizeTitle, p.palette.Ink}
-	for _, l := range p.wrap(p.width(), []span{{title, t.Study}}) {
+	for _, l := range first(4, p.wrap(p.width(), []span{{title, t.Study}})) {
 		p.y -= sizeTitle * 1.2
 		p.set(l, marginLeft, p.y)
 	}
@@ -33,7 +33,7 @@ func (p *printer) front() {
 		p.paragraph(span{p.body, t.Remarks})
 	}
 	p.skip(4)
-	p.note("Prepared as an aid for a licensed engineer, who checks and signs it. Local codes and the network operator's rules come first. Cautions are on the last page.")
+	p.note("Prepared as an aid for a licensed engineer, who checks and signs it. Local codes and the network operator's rules come first. Cautions stand at the end.")
 	p.singleLine()
 }
 
@@ -60,7 +60,7 @@ func (p *printer) titleBlock() {
 		for k := i; k < min(i+2, len(kept)); k++ {
 			x, y := marginLeft+half*vg.Length(k-i), p.y
 			p.text(p.muted, x, y-sizeBody, kept[k][0])
-			for _, l := range p.wrap(half-labelWidth-10, []span{{p.body, kept[k][1]}}) {
+			for _, l := range first(3, p.wrap(half-labelWidth-10, []span{{p.body, kept[k][1]}})) {
 				p.set(l, x+labelWidth, y-sizeBody)
 				y -= l.height
 			}
@@ -71,6 +71,9 @@ func (p *printer) titleBlock() {
 	p.y -= 4
 	p.rule(marginLeft, marginLeft+p.width(), p.y, 0.7, p.palette.Ink)
 }
+
+// first returns the first n lines: a title block is no place for an essay.
+func first(n int, lines []line) []line { return lines[:min(n, len(lines))] }
 
 // banner writes a notice on a tinted ground.
 func (p *printer) banner(head, text string) {

@@ -25,6 +25,7 @@ func (p *printer) assumptions() {
 	p.paragraph(span{p.body, text})
 	p.skip(3)
 	p.originTable(by)
+	p.unusual()
 	p.unstatedInputs(by[unstated])
 	p.defaults()
 }
@@ -91,6 +92,18 @@ func valueText(v InputValue) string {
 	return fmt.Sprint(v.Value)
 }
 
+// unusual lists the values that a practitioner would look at twice.
+func (p *printer) unusual() {
+	list := p.study.Warnings()
+	if len(list) == 0 {
+		return
+	}
+	p.subsection("Unusual values", 24)
+	for _, w := range list {
+		p.item(p.small, w.Error())
+	}
+}
+
 // unstatedInputs lists what nobody said the origin of, in running text.
 func (p *printer) unstatedInputs(list []InputValue) {
 	if len(list) == 0 {
@@ -98,18 +111,33 @@ func (p *printer) unstatedInputs(list []InputValue) {
 	}
 	p.subsection(fmt.Sprintf("No origin stated: %s", counted(len(list), "value", "values")), 30)
 	for i := 0; i < len(list); {
-		first := i
-		var values []string
-		for ; i < len(list) && list[i].Item == list[first].Item; i++ {
-			text := list[i].Label + " " + valueText(list[i])
-			if list[i].Unit != "" {
-				text += " " + list[i].Unit
+		names, text, kind := list[i].Item, "", list[i].Kind
+		text, i = unstatedText(list, i)
+		for i < len(list) && list[i].Kind == kind { // items alike share a line
+			next, end := unstatedText(list, i)
+			if next != text {
+				break
 			}
-			values = append(values, text)
+			names += ", " + list[i].Item
+			i = end
 		}
-		p.paragraph(span{p.small.bold(), list[first].Item + "  "}, span{p.small, strings.Join(values, "; ")})
+		p.paragraph(span{p.small.bold(), names + "  "}, span{p.small, text})
 		p.y -= 1.5
 	}
+}
+
+// unstatedText words the values of the item at i, and returns where the next
+// item begins.
+func unstatedText(list []InputValue, i int) (text string, next int) {
+	var values []string
+	for next = i; next < len(list) && list[next].Item == list[i].Item; next++ {
+		v := list[next].Label + " " + valueText(list[next])
+		if list[next].Unit != "" {
+			v += " " + list[next].Unit
+		}
+		values = append(values, v)
+	}
+	return strings.Join(values, "; "), next
 }
 
 // defaults lists the values that are absent and what stood in for them.
@@ -125,7 +153,11 @@ func (p *printer) defaults() {
 		var values []string
 		for ; i < len(p.doc.Defaults) && p.doc.Defaults[i].Kind == p.doc.Defaults[first].Kind; i++ {
 			d := p.doc.Defaults[i]
-			values = append(values, fmt.Sprintf("%s: %s (%s)", d.Label, d.Default, strings.Join(d.Items, ", ")))
+			who := strings.Join(d.Items, ", ")
+			if all := len(p.study.Items(study.Kind(d.Kind))); all > 1 && len(d.Items) == all {
+				who = "all"
+			}
+			values = append(values, fmt.Sprintf("%s: %s (%s)", d.Label, d.Default, who))
 		}
 		p.paragraph(span{p.small.bold(), study.InfoOf(study.Kind(p.doc.Defaults[first].Kind)).Plural + "  "}, span{p.small, strings.Join(values, "; ")})
 		p.y -= 1.5

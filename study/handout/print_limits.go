@@ -34,10 +34,10 @@ func (p *printer) againstLimits() {
 		p.pointTable(i)
 	}
 	if f := p.figures.margins; f != nil {
-		h := f.Size.Y + 24
-		p.need(h + 12)
-		p.skip(12)
-		p.placeIn(*f, marginLeft, p.width(), h)
+		const gap, caption = vg.Length(12), vg.Length(26)
+		p.need(gap + caption + 0.7*f.Size.Y)
+		p.skip(gap)
+		p.placeIn(*f, marginLeft, p.width(), min(f.Size.Y+caption, p.room()))
 	}
 }
 
@@ -114,8 +114,10 @@ func (p *printer) pointTable(i int) {
 		t.dropColumn(3)
 	}
 	if len(t.rows) > 0 {
+		notes, height := p.ruleLines(rules)
+		t.tail = min(height+8, 120)
 		p.table(t, 0)
-		p.rules(rules)
+		p.rules(notes)
 	}
 	if hidden > 0 {
 		p.note(fmt.Sprintf("%s at or below %.0f %% of the limit: see tables.xlsx or results.json.", counted(hidden, "further row is", "further rows are"), 100*worthPrinting))
@@ -201,7 +203,7 @@ type ruleNotes struct {
 }
 
 func (n *ruleNotes) letter(r limits.Row) string {
-	text := r.Rule + markWords(r.Mark)
+	text := signs.Replace(r.Rule) + markWords(r.Mark)
 	i := slices.Index(n.texts, text)
 	if i < 0 {
 		i = len(n.texts)
@@ -209,6 +211,9 @@ func (n *ruleNotes) letter(r limits.Row) string {
 	}
 	return letter(i)
 }
+
+// signs puts mathematical signs for what rules write with ASCII letters.
+var signs = strings.NewReplacer("<=", "≤", ">=", "≥")
 
 // letter returns a, b, ... z, aa, ab, ...
 func letter(i int) string {
@@ -231,10 +236,20 @@ func markWords(m limits.Mark) string {
 	return " (value found in public material)"
 }
 
-func (p *printer) rules(n ruleNotes) {
-	p.skip(2)
-	for i, text := range n.texts {
+// ruleLines wraps the notes and returns how high they stand.
+func (p *printer) ruleLines(n ruleNotes) (notes [][]line, height vg.Length) {
+	for _, text := range n.texts {
 		lines := p.wrap(p.width()-14, []span{{p.muted, text}})
+		notes = append(notes, lines)
+		height += p.muted.line() * vg.Length(len(lines))
+	}
+	return notes, height
+}
+
+// rules writes the notes below their table.
+func (p *printer) rules(notes [][]line) {
+	p.skip(2)
+	for i, lines := range notes {
 		for k, l := range lines {
 			p.need(l.height)
 			p.y -= l.height
@@ -264,8 +279,13 @@ func (p *printer) busTable() {
 	if p.before == nil {
 		t.columns[6].head = "THD"
 	}
+	partly := ""
 	for i := range p.after.Buses {
-		t.add(p.busCells(&p.after.Buses[i])...)
+		r := &p.after.Buses[i]
+		t.add(p.busCells(r)...)
+		if singlePhase(r) {
+			partly = " Where a phase is not fed: √3 times the highest phase voltage."
+		}
 	}
 	if p.before == nil {
 		t.dropColumn(5)
@@ -273,7 +293,7 @@ func (p *printer) busTable() {
 	}
 	p.table(t, 0)
 	p.note("Line-to-line voltage of the positive sequence at order 1. THD over orders 2 to " + short(float64(p.study.Order())) +
-		" and the largest harmonic, of each bus's own fundamental, the worst phase.")
+		" and the largest harmonic, of each bus's own fundamental, the worst phase." + partly)
 }
 
 func (p *printer) busCells(r *study.BusResult) []cell {
@@ -297,9 +317,28 @@ func (p *printer) busCells(r *study.BusResult) []cell {
 
 func figures4(v float64) string { return significant(v, 4) }
 
-// lineVolts returns the positive-sequence line-to-line voltage at order 1.
+// lineVolts returns the positive-sequence line-to-line voltage at order 1; of a
+// bus that one or two phases feed, the square root of three times its phase
+// voltage.
 func lineVolts(r *study.BusResult) float64 {
-	return math.Sqrt(3) * cmplx.Abs(r.Seq[phasor.Positive].At(1))
+	if !singlePhase(r) {
+		return math.Sqrt(3) * cmplx.Abs(r.Seq[phasor.Positive].At(1))
+	}
+	highest := 0.0
+	for _, x := range r.Phase {
+		highest = math.Max(highest, cmplx.Abs(x.At(1)))
+	}
+	return math.Sqrt(3) * highest
+}
+
+// singlePhase reports whether a live bus has a phase without voltage.
+func singlePhase(r *study.BusResult) bool {
+	for _, x := range r.Phase {
+		if x.At(1) == 0 {
+			return r.Live
+		}
+	}
+	return false
 }
 
 // worstTHD returns the highest THD of the three phases in per cent.

@@ -130,26 +130,23 @@ func (p *printer) dataSheet(r *study.MeasureResult) {
 	}
 	const gap = vg.Length(22)
 	parts, duty, response := p.partsTable(r), p.dutyTable(r), responseTable(r)
-	if duty == nil {
-		duty, response = response, nil
-	}
-	half := (p.width() - gap) / 2
-	p.subsection(title, max(p.tableHeight(parts, half), p.tableHeight(duty, half)))
+	left := p.width() * 0.62
+	p.subsection(title, p.tableHeight(parts, p.width())+max(p.tableHeight(duty, left), p.tableHeight(response, p.width()-left-gap))+8)
 	if r.Saturated {
 		p.paragraph(span{p.body.bold().in(p.palette.Over), "Saturated: "}, span{p.body, "the loads ask for more than its rating, so that all it injects is scaled down to it."})
 		p.skip(2)
 	}
-	switch {
-	case parts != nil && duty != nil:
-		p.beside(parts, duty, half, gap)
-	case parts != nil:
-		p.table(parts, half)
-	case duty != nil:
-		p.table(duty, half)
-	}
-	if response != nil {
+	if parts != nil {
+		p.table(parts, 0)
 		p.skip(4)
-		p.table(response, half)
+	}
+	switch {
+	case duty != nil && response != nil:
+		p.beside(duty, response, left, gap)
+	case duty != nil:
+		p.table(duty, left)
+	case response != nil:
+		p.table(response, p.width()-left-gap)
 	}
 	if len(r.Response) > 0 {
 		p.note("Gain: outlet voltage over bus voltage, with the load behind the filter as the study describes it. Every order is in tables.xlsx.")
@@ -160,15 +157,16 @@ func (p *printer) dataSheet(r *study.MeasureResult) {
 	}
 }
 
-// beside sets two short tables next to each other on one page.
-func (p *printer) beside(a, b *table, half, gap vg.Length) {
-	ha, hb := p.tableHeight(a, half), p.tableHeight(b, half)
-	p.need(max(ha, hb))
+// beside sets two short tables next to each other on one page, the first one
+// in width w.
+func (p *printer) beside(a, b *table, w, gap vg.Length) {
+	rest := p.width() - w - gap
+	p.need(max(p.tableHeight(a, w), p.tableHeight(b, rest)))
 	top := p.y
-	p.tableIn(a, marginLeft, half)
+	p.tableIn(a, marginLeft, w)
 	low := p.y
 	p.y = top
-	p.tableIn(b, marginLeft+half+gap, half)
+	p.tableIn(b, marginLeft+w+gap, rest)
 	p.y = min(p.y, low)
 }
 
@@ -177,7 +175,7 @@ func (p *printer) partsTable(r *study.MeasureResult) *table {
 		return nil
 	}
 	t := &table{columns: []column{
-		{head: "Component, per phase", min: 70}, {head: ""}, {head: "Value", align: right}, {head: ""}, {head: "", flex: 1, min: 30},
+		{head: "Component, per phase", min: 70}, {head: ""}, {head: "Value", align: right}, {head: ""}, {head: "", flex: 1, min: 60},
 	}}
 	for _, c := range r.Components {
 		value, unit := partValue(c)
@@ -207,7 +205,7 @@ func (p *printer) dutyTable(r *study.MeasureResult) *table {
 		return nil
 	}
 	t := &table{columns: []column{
-		{head: "Duty, worst phase", flex: 1, min: 80}, {head: ""}, {head: "Order 1", align: point}, {head: "All orders", align: point}, {head: "Rating", align: point}, {head: "Of it", unit: "%", align: point},
+		{head: "Duty, worst phase", flex: 1, min: 80}, {head: ""}, {head: "Order 1", align: point}, {head: "All orders", align: point}, {head: "Rating", align: point}, {head: "Of rating", unit: "%", align: point},
 	}}
 	add := func(name, unit string, first, all, rating, bearable float64) {
 		if all == 0 {

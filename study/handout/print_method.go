@@ -2,10 +2,12 @@ package handout
 
 import (
 	"fmt"
+	"strings"
 
 	"gonum.org/v1/plot/vg"
 
 	"quietbus/study"
+	"quietbus/study/converter"
 )
 
 // methodParts is the method in the order in which a study is computed. Each
@@ -44,7 +46,39 @@ func (p *printer) method() {
 	add(p.stated(), p.after.Check)
 	p.table(t, 0)
 	p.note("Residual: worst |YV − I| over all orders and sequences, relative. Power balance: worst complex power imbalance by order, relative.")
+	p.spectra()
 	p.sets()
+}
+
+// spectra lists the typical spectra that stand for loads, with their sources.
+func (p *printer) spectra() {
+	var order []string
+	loads := map[string][]string{}
+	for i := range p.study.NonlinearLoads {
+		l := &p.study.NonlinearLoads[i]
+		if l.Spectrum == study.Typed {
+			continue
+		}
+		if loads[l.Spectrum] == nil {
+			order = append(order, l.Spectrum)
+		}
+		loads[l.Spectrum] = append(loads[l.Spectrum], l.Name)
+	}
+	if len(order) == 0 {
+		return
+	}
+	p.subsection("Typical spectra used", 24)
+	for _, name := range order {
+		text := name
+		if m, ok := converter.Lookup(name); ok {
+			text = fmt.Sprintf("%s (%s). Source: %s", m.Title, name, m.Source)
+			if m.Mark != "" && !strings.Contains(m.Source, m.Mark) {
+				text += "; mark of the magnitudes: " + m.Mark
+			}
+		}
+		p.item(p.small, strings.Join(loads[name], ", ")+": "+text+".")
+	}
+	p.note("A typical spectrum stands for a measured one only in a first study.")
 }
 
 // sets lists the documents that the limits come from.

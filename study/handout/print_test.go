@@ -3,6 +3,7 @@ package handout
 import (
 	"bytes"
 	"context"
+	"encoding/xml"
 	"fmt"
 	"image/png"
 	"os"
@@ -154,6 +155,34 @@ func TestStates(t *testing.T) {
 	}
 }
 
+// TestHostileTexts prints names that are too long, in no language, or empty.
+func TestHostileTexts(t *testing.T) {
+	long := strings.Repeat("Wx", 160)
+	for _, text := range []string{"", long, strings.Repeat("many words ", 90), "line\nfeed\ttab\x00\x1b", "漢字 \U0001F600 \u202e right to left \xff\xfe", "(\\)%s%d <b>&amp;"} {
+		in := sample()
+		s := in.Study
+		s.Title = study.Title{Study: text, Client: text, Site: text, Author: text, Revision: text, Date: text, Remarks: text, Invented: true}
+		s.Measures[0].Name, s.Supplies[0].Name, s.Banks[0].Name = text, text, text
+		s.Supplies[0].Provenance["xOverR"] = study.Provenance{Origin: study.Assumed, Note: text}
+		for _, o := range []*study.Outcome{in.Before, in.After} {
+			o.Buses[0].Name, o.Points[0].Name, o.Points[0].Bus, o.Points[0].SetTitle = text, text, text, text
+			o.Points[0].Rows[0].Rule = text
+			o.Elements[0].Name = text
+			o.Warnings = []string{text}
+		}
+		in.After.Measures[0].Name, in.After.Measures[0].Components[0].Note, in.After.Measures[0].Notes = text, text, []string{text}
+		got, raw := summary(t, in, A4)
+		if !strings.Contains(got, "page 1 of") || !bytes.HasPrefix(raw, []byte("%PDF")) {
+			t.Errorf("%.20q: no readable summary", text)
+		}
+		if dir := os.Getenv("HANDOUT_LOOK"); dir != "" && text == long {
+			if err := os.WriteFile(filepath.Join(dir, "long.pdf"), raw, 0o644); err != nil {
+				t.Error(err)
+			}
+		}
+	}
+}
+
 // TestTables opens the workbook and compares cells with the document.
 func TestTables(t *testing.T) {
 	in := sample()
@@ -216,6 +245,9 @@ func TestFigures(t *testing.T) {
 			if len(out[stem+".svg"]) == 0 || !bytes.HasPrefix(out[stem+".pdf"], []byte("%PDF")) {
 				t.Errorf("%s has no SVG or PDF beside it", name)
 			}
+			if err := xml.Unmarshal(out[stem+".svg"], new(struct{})); err != nil || bytes.Contains(out[stem+".svg"], []byte("NaN")) {
+				t.Errorf("%s.svg cannot be read: %v", stem, err)
+			}
 			if !strings.Contains(string(out["figures/captions.txt"]), filepath.Base(stem)+"\n") {
 				t.Errorf("%s has no caption", name)
 			}
@@ -234,7 +266,7 @@ func TestWrite(t *testing.T) {
 		dir = t.TempDir()
 	}
 	for _, paper := range []Paper{A4, Letter} {
-		r, err := Write(context.Background(), filepath.Join(dir, paper.String()), sample(), Options{Paper: paper, Date: testDate})
+		r, err := Write(context.Background(), filepath.Join(dir, paper.String()), demo(t, "Filter 5", "Reactor K1", "Recorder filter"), Options{Paper: paper, Date: testDate})
 		if err != nil {
 			t.Fatal(err)
 		}
@@ -249,9 +281,11 @@ func TestWrite(t *testing.T) {
 	}
 }
 
+// BenchmarkWrite writes the whole handout of the demonstration; it is to take
+// less than a second.
 func BenchmarkWrite(b *testing.B) {
 	dir := b.TempDir()
-	in := sample()
+	in := demo(b, "Filter 5", "Reactor K1", "Recorder filter")
 	b.ReportAllocs()
 	for b.Loop() {
 		if _, err := Write(context.Background(), dir, in, Options{Date: testDate}); err != nil {

@@ -11,6 +11,7 @@ import (
 
 	"quietbus/study"
 	"quietbus/study/phasor"
+	"quietbus/testdata"
 )
 
 // solved returns a small invented study, evaluated without and with its
@@ -121,4 +122,21 @@ func TestDigest(t *testing.T) {
 	if with, _ := in.digest(); with != without {
 		t.Error("a study that was saved has another digest than its file")
 	}
+}
+
+// demo returns the program's demonstration, evaluated with measures on.
+func demo(t testing.TB, on ...string) Input {
+	t.Helper()
+	s, err := study.Read(bytes.NewReader(testdata.Demo))
+	if err != nil {
+		t.Fatal(err)
+	}
+	in := Input{Study: s, File: testdata.Demo, Version: "test"}
+	if in.Before, err = study.Evaluate(context.Background(), s, nil); err != nil {
+		t.Fatal(err)
+	}
+	if in.After, err = study.Evaluate(context.Background(), s, on); err != nil {
+		t.Fatal(err)
+	}
+	return in
 }

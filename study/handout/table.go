@@ -44,6 +44,7 @@ type table struct {
 	columns []column
 	rows    []row
 	style   style
+	tail    vg.Length // height of what must follow the last row on its page
 }
 
 const (
@@ -100,8 +101,12 @@ func (b *book) tableIn(t *table, x, w vg.Length) {
 		if r.group != "" && i+1 < len(t.rows) {
 			keep += b.rowHeight(t, g, &t.rows[i+1])
 		}
+		if i == len(t.rows)-1 {
+			keep += t.tail
+		}
 		if b.room() < keep {
 			b.open(b.lying())
+			b.need(head + keep)
 			b.tableHead(t, g, head)
 		}
 		b.tableRow(t, g, r, h)
@@ -117,6 +122,10 @@ func (b *book) measure(t *table, x, w vg.Length) geometry {
 	var flex float64
 	for j := range t.columns {
 		g.w[j], g.whole[j] = b.columnWidth(t, j)
+		if t.columns[j].align != left {
+			g.w[j] = min(g.w[j], w/3) // what is longer is shortened
+			g.whole[j] = min(g.whole[j], g.w[j])
+		}
 		if t.columns[j].flex > 0 {
 			g.w[j] = t.columns[j].min
 			flex += t.columns[j].flex
@@ -124,6 +133,9 @@ func (b *book) measure(t *table, x, w vg.Length) geometry {
 		used += g.w[j]
 	}
 	spare := w - used - tableGap*vg.Length(n-1)
+	if spare < 0 {
+		narrow(t, g.w, -spare)
+	}
 	for j := range t.columns {
 		if f := t.columns[j].flex; f > 0 && spare > 0 {
 			g.w[j] += spare * vg.Length(f/flex)
@@ -132,6 +144,29 @@ func (b *book) measure(t *table, x, w vg.Length) geometry {
 		x += g.w[j] + tableGap
 	}
 	return g
+}
+
+// narrow takes over from the widest columns of text, which then wrap.
+func narrow(t *table, w []vg.Length, over vg.Length) {
+	for over > 0.01 {
+		widest, next := -1, vg.Length(0)
+		for j := range w {
+			if t.columns[j].align == left && (widest < 0 || w[j] > w[widest]) {
+				widest = j
+			}
+		}
+		if widest < 0 || w[widest] <= 30 {
+			return
+		}
+		for j := range w {
+			if t.columns[j].align == left && j != widest {
+				next = max(next, w[j])
+			}
+		}
+		cut := min(over, max(w[widest]-max(next, 30), 1))
+		w[widest] -= cut
+		over -= cut
+	}
 }
 
 // columnWidth returns the natural width of column j and the part of it that
@@ -240,7 +275,7 @@ func (b *book) rowHeight(t *table, g geometry, r *row) vg.Length {
 	h := t.style.line()
 	for j := range r.cells {
 		c := &r.cells[j]
-		if t.columns[j].align == point || c.text == "" {
+		if t.columns[j].align != left || c.text == "" {
 			continue
 		}
 		n := len(b.wrap(g.w[j]+0.5, []span{{cellStyle(t, c), c.text}}))
@@ -254,7 +289,7 @@ func (b *book) tableRow(t *table, g geometry, r *row, h vg.Length) {
 	b.y = bottom
 	last := len(t.columns) - 1
 	if r.group != "" {
-		b.text(t.style.bold(), g.x[0], bottom+tablePad+t.style.line()*0.27, r.group)
+		b.text(t.style.bold(), g.x[0], bottom+tablePad+t.style.line()*0.27, b.fit(t.style.bold(), r.group, g.x[last]+g.w[last]-g.x[0]))
 		b.rule(g.x[0], g.x[last]+g.w[last], bottom, 0.4, b.palette.Grid)
 		return
 	}
@@ -269,9 +304,13 @@ func (b *book) tableRow(t *table, g geometry, r *row, h vg.Length) {
 		case c.text == "":
 		case t.columns[j].align == point:
 			whole, _ := splitPoint(c.text)
-			b.text(s, x+g.whole[j]-b.fonts.width(s, whole), y, c.text)
+			if b.fonts.width(s, c.text) > w+0.5 {
+				b.text(s, x, y, b.fit(s, c.text, w))
+				break
+			}
+			b.text(s, max(x, x+g.whole[j]-b.fonts.width(s, whole)), y, c.text)
 		case t.columns[j].align == right:
-			b.textRight(s, x+w, y, c.text)
+			b.textRight(s, x+w, y, b.fit(s, c.text, w+0.5))
 		default:
 			for _, l := range b.wrap(w+0.5, []span{{s, c.text}}) {
 				b.set(l, x, y)

@@ -110,6 +110,21 @@ func (f *fonts) width(s style, text string) vg.Length {
 
 func fixedEm(em sfnt.Units) fixed.Int26_6 { return fixed.Int26_6(em) }
 
+// basic returns text without what the PDF library cannot encode: controls
+// become spaces, broken bytes and letters beyond the basic plane question
+// marks.
+func basic(text string) string {
+	return strings.Map(func(r rune) rune {
+		switch {
+		case unicode.IsControl(r):
+			return ' '
+		case r == unicode.ReplacementChar || r > 0xffff:
+			return '?'
+		}
+		return r
+	}, text)
+}
+
 // legible returns text with what the font cannot show replaced: letters by a
 // question mark, controls and line ends by a space.
 func legible(f font.Face, text string) string {
@@ -125,15 +140,9 @@ func legible(f font.Face, text string) string {
 		return text
 	}
 	return strings.Map(func(r rune) rune {
-		switch {
-		case unicode.IsControl(r):
-			return ' '
-		case r == unicode.ReplacementChar || r > 0xffff:
-			return '?'
-		}
 		if g, err := f.Face.GlyphIndex(&buf, r); err != nil || g == 0 {
 			return '?'
 		}
 		return r
-	}, text)
+	}, basic(text))
 }

@@ -1,6 +1,7 @@
 package handout
 
 import (
+	"sort"
 	"strings"
 	"unicode"
 	"unicode/utf8"
@@ -72,11 +73,8 @@ func (b *book) place(now *line, w vg.Length, s style, word string, end func(styl
 		word = bare
 	}
 	for b.fonts.width(s, word) > w { // a word wider than the line
-		n := 1
 		runes := []rune(word)
-		for n < len(runes) && b.fonts.width(s, string(runes[:n+1])) <= w {
-			n++
-		}
+		n := max(1, sort.Search(len(runes), func(n int) bool { return b.fonts.width(s, string(runes[:n+1])) > w }))
 		if n == len(runes) {
 			break
 		}
