@@ -66,7 +66,11 @@ func NewListPane() *ListPane {
 // SetGroups shows groups; the selection stays with its item.
 func (p *ListPane) SetGroups(groups []ListGroup) {
 	id := p.Selected()
-	p.groups = groups
+	p.groups = make([]ListGroup, len(groups))
+	copy(p.groups, groups)
+	for i := range p.groups {
+		p.groups[i].Items = append([]ListItem(nil), groups[i].Items...) // the caller may change its own
+	}
 	p.lines = p.lines[:0]
 	for g := range groups {
 		p.lines = append(p.lines, listLine{g, -1})

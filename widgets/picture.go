@@ -617,21 +617,21 @@ func (r *pictureRenderer) overlay() {
 	palette := paletteOf(p)
 	r.fault.set(p.fault)
 
-	frame := func(o *canvas.Rectangle, h Hot, ok bool) {
+	frame := func(o *canvas.Rectangle, h Hot, ok bool, width float32) {
 		if !ok {
 			o.Hide()
 			return
 		}
 		pos, size := p.Place(h)
 		const room = 3
-		o.StrokeColor, o.StrokeWidth, o.CornerRadius = palette.Accent, 2, 2
+		o.StrokeColor, o.StrokeWidth, o.CornerRadius = palette.Accent, width, 2
 		o.Move(pos.SubtractXY(room, room))
 		o.Resize(size.AddWidthHeight(2*room, 2*room))
 		o.Show()
 		o.Refresh()
 	}
 	shown := p.shown()
-	frame(r.outline, shown, !shown.Zero())
+	frame(r.outline, shown, !shown.Zero(), 1.5)
 	var selected Hot
 	if p.Selected != "" {
 		for _, h := range p.hots {
@@ -641,7 +641,7 @@ func (r *pictureRenderer) overlay() {
 			}
 		}
 	}
-	frame(r.selected, selected, !selected.Zero() && !selected.same(shown))
+	frame(r.selected, selected, !selected.Zero(), 3)
 
 	if p.focused {
 		r.focus.StrokeColor, r.focus.StrokeWidth = palette.Accent, 2
