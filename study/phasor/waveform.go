@@ -84,25 +84,35 @@ func Value(s Spectrum, theta float64) float64 {
 }
 
 // Peak returns the crest value of the waveform: the largest magnitude it
-// reaches in a period. The extrema are found on samples, eight or more to a
-// period of the highest order, and then refined by Newton's method, so that
-// the result does not depend on the sampling.
+// reaches in a period. The extrema are found on samples, as close as the
+// waveform's bend asks for and at most eight to a period of the highest order,
+// and then refined by Newton's method, so that the result does not depend on
+// the sampling.
 func Peak(s Spectrum) float64 {
 	s = trimmed(s)
 	if len(s) <= 1 {
 		return math.Abs(real(s.At(0)))
 	}
-	var room [1024]float64
-	n := max(64, 8*(len(s)-1))
+	// The second derivative is at most bend, so that between two samples a
+	// step apart the waveform rises above the nearer by at most bend step^2/8.
+	bend := 0.0
+	for h := 1; h < len(s); h++ {
+		bend += math.Sqrt2 * float64(h*h) * math.Sqrt(square(s[h]))
+	}
+	n := 8 * (len(s) - 1)
+	if enough := 32 * math.Sqrt(bend/RMS(s)); enough < float64(n) { // the rise is then below half a per cent
+		n = int(enough)
+	}
+	n = max(64, n)
 	n += (4 - n%4) % 4
+	var room [1024]float64
 	x := Synthesize(s, n, room[:0])
 	best := 0.0
 	for _, v := range x {
 		best = max(best, math.Abs(v))
 	}
-	// Between samples the waveform can rise above its best sample by little
-	// more than a twentieth; lower extrema cannot become the crest.
-	floor := 0.9 * best
+	step := 2 * math.Pi / float64(n)
+	floor := best - bend*step*step/8
 	for i, v := range x {
 		v = math.Abs(v)
 		if v < floor {
@@ -116,10 +126,10 @@ func Peak(s Spectrum) float64 {
 			continue
 		}
 		offset := 0.0
-		if bend := left - 2*v + right; bend < 0 {
-			offset = (left - right) / (2 * bend)
+		if curve := left - 2*v + right; curve < 0 {
+			offset = (left - right) / (2 * curve)
 		}
-		best = max(best, refine(s, 2*math.Pi*(float64(i)+offset)/float64(n), 2*math.Pi/float64(n)))
+		best = max(best, refine(s, step*(float64(i)+offset), step))
 	}
 	return best
 }

@@ -124,6 +124,12 @@ func TestAnalyzeRefuses(t *testing.T) {
 func TestPeakAgainstFineSampling(t *testing.T) {
 	rapid.Check(t, func(t *rapid.T) {
 		s := anySpectrum(t, rapid.IntRange(1, 50).Draw(t, "order"))
+		if rapid.Bool().Draw(t, "mostly order 1") { // like a voltage: sampled more coarsely
+			for h := 2; h < len(s); h++ {
+				s[h] *= complex(0.2/float64(h), 0)
+			}
+			s[1] += 1
+		}
 		const n = 20000
 		var want float64
 		for _, v := range Synthesize(s, n, nil) {
@@ -227,6 +233,16 @@ func BenchmarkSynthesize512(b *testing.B) {
 
 func BenchmarkPeak50(b *testing.B) {
 	s := full(50)
+	for b.Loop() {
+		Peak(s)
+	}
+}
+
+func BenchmarkPeakOfVoltage(b *testing.B) {
+	s := full(50)
+	for h := 2; h <= 50; h++ {
+		s[h] *= complex(0.2/float64(h), 0)
+	}
 	for b.Loop() {
 		Peak(s)
 	}
