@@ -6,9 +6,10 @@ import (
 )
 
 // LowPass is a series element, R or L, with a capacitor across the outlet
-// behind it, per phase to neutral, and the load that stands there.
+// behind it, per phase to neutral, and the load that stands there. An L-C
+// low-pass amplifies near its own resonance unless R or the load damps it.
 type LowPass struct {
-	R, Xl float64                    // series part: ohm, and ohm at order 1
+	R, Xl float64                    // series part: ohm, and ohm at order 1; R with Xl is the choke's resistance
 	Xc    float64                    // outlet capacitor, ohm at order 1
 	Load  func(h float64) complex128 // admittance of the load behind it, siemens; nil for none
 }
@@ -33,6 +34,9 @@ func outlet(p *LowPass, c, f1 float64) (*LowPass, error) {
 	if err := need("shunt capacitance", c); err != nil {
 		return nil, err
 	}
+	if err := need("frequency", f1); err != nil {
+		return nil, err
+	}
 	p.Xc = 1 / (2 * math.Pi * f1 * c)
 	return p, nil
 }
@@ -47,8 +51,12 @@ func (p *LowPass) shunt(h float64) complex128 {
 
 // Admittance returns what the bus sees at order h, siemens.
 func (p *LowPass) Admittance(h float64) complex128 {
-	return 1 / (complex(p.R, h*p.Xl) + 1/p.shunt(h))
+	y := p.shunt(h)
+	return y / (1 + complex(p.R, h*p.Xl)*y)
 }
+
+// Impedance returns 1/Admittance, ohm.
+func (p *LowPass) Impedance(h float64) complex128 { return 1 / p.Admittance(h) }
 
 // Ratio returns outlet voltage over bus voltage at order h: its magnitude is
 // the gain and minus its angle the phase lag.
@@ -58,3 +66,12 @@ func (p *LowPass) Ratio(h float64) complex128 {
 
 // Lag returns the phase lag at order h in degrees.
 func (p *LowPass) Lag(h float64) float64 { return -cmplx.Phase(p.Ratio(h)) * 180 / math.Pi }
+
+// Corner returns the order of the low-pass without its load: where an R-C one
+// has 1/sqrt(2) of the bus voltage, or where an L-C one resonates.
+func (p *LowPass) Corner() float64 {
+	if p.Xl > 0 {
+		return math.Sqrt(p.Xc / p.Xl)
+	}
+	return p.Xc / p.R
+}
