@@ -230,3 +230,11 @@ func (f *Field) Applies(word string) bool {
 	}
 	return false
 }
+
+// a puts the article before a word.
+func a(word string) string {
+	if word != "" && strings.ContainsRune("aeiou", rune(word[0])) {
+		return "an " + word
+	}
+	return "a " + word
+}

@@ -79,7 +79,7 @@ func KindOf(item any) Kind {
 func (s *Study) Add(item any) error {
 	name := NameOf(item)
 	if kind, old := s.Find(name); old != nil {
-		return &FieldError{Item: name, Field: "name", Problem: fmt.Sprintf("there is a %s of this name already", InfoOf(kind).Singular), Remedy: "choose another name"}
+		return &FieldError{Item: name, Field: "name", Problem: fmt.Sprintf("there is %s of this name already", a(InfoOf(kind).Singular)), Remedy: "choose another name"}
 	}
 	list := s.list(KindOf(item))
 	list.Set(reflect.Append(list, reflect.ValueOf(item).Elem()))
@@ -163,7 +163,7 @@ func (s *Study) Rename(old, next string) error {
 		return &FieldError{Item: old, Field: "name", Problem: "is empty", Remedy: "give it a name"}
 	}
 	if kind, item := s.Find(next); item != nil {
-		return &FieldError{Item: old, Field: "name", Problem: fmt.Sprintf("%q is the name of a %s already", next, InfoOf(kind).Singular), Remedy: "choose another name"}
+		return &FieldError{Item: old, Field: "name", Problem: fmt.Sprintf("%q is the name of %s already", next, a(InfoOf(kind).Singular)), Remedy: "choose another name"}
 	}
 	_, item := s.Find(old)
 	if item == nil {

@@ -74,7 +74,7 @@ func (c *checker) names() {
 				continue
 			}
 			if other, twice := c.kind[name]; twice {
-				c.add(name, "name", fmt.Sprintf("a %s and a %s have this name", InfoOf(other).Singular, k.Singular), "rename one of them")
+				c.add(name, "name", fmt.Sprintf("%s and %s have this name", a(InfoOf(other).Singular), a(k.Singular)), "rename one of them")
 			}
 			c.kind[name] = k.Kind
 		}
@@ -161,7 +161,7 @@ func (c *checker) fields(k KindInfo, i int, item any) {
 	}
 	for key, p := range ProvenanceOf(item) {
 		if FieldOf(k.Kind, key) == nil {
-			c.add(name, "provenance", fmt.Sprintf("%q is no field of a %s", key, k.Singular), "use the key of the value")
+			c.add(name, "provenance", fmt.Sprintf("%q is no field of %s", key, a(k.Singular)), "use the key of the value")
 		}
 		if p.Origin != Given && p.Origin != Measured && p.Origin != Assumed {
 			c.add(name, "provenance", fmt.Sprintf("the origin of %q is %q", key, p.Origin), "use given, measured or assumed")
@@ -187,9 +187,9 @@ func (c *checker) refers(name string, f *Field, at reflect.Value) {
 		kind, ok := c.kind[other]
 		switch {
 		case !ok:
-			c.add(name, f.Key, fmt.Sprintf("there is no item %q", other), "name a "+strings.Join(words, " or ")+" of this study")
+			c.add(name, f.Key, fmt.Sprintf("there is no item %q", other), "name "+a(strings.Join(words, " or "))+" of this study")
 		case !slices.Contains(f.Ref, kind):
-			c.add(name, f.Key, fmt.Sprintf("%q is a %s", other, InfoOf(kind).Singular), "name a "+strings.Join(words, " or "))
+			c.add(name, f.Key, fmt.Sprintf("%q is %s", other, a(InfoOf(kind).Singular)), "name "+a(strings.Join(words, " or ")))
 		case other == name:
 			c.add(name, f.Key, "refers to itself", "name another item")
 		}
@@ -349,7 +349,7 @@ func (c *checker) measures() {
 			c.add(m.Name, "bus", "is missing", "name the bus where it stands")
 		}
 		if target != nil && !slices.Contains(target, c.kind[m.Target]) {
-			c.add(m.Name, "target", fmt.Sprintf("%q is not a %s", m.Target, InfoOf(target[0]).Singular), "name the "+InfoOf(target[0]).Singular+" that it changes")
+			c.add(m.Name, "target", fmt.Sprintf("%q is not %s", m.Target, a(InfoOf(target[0]).Singular)), "name the "+InfoOf(target[0]).Singular+" that it changes")
 		}
 	}
 	if len(c.found) > 0 {
