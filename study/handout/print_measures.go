@@ -241,6 +241,10 @@ func (p *printer) dutyTable(r *study.MeasureResult) *table {
 	if len(t.rows) == 0 {
 		return nil
 	}
+	if d.RatedA == 0 && d.RatedV == 0 && d.KvarRated == 0 {
+		t.dropColumn(5)
+		t.dropColumn(4)
+	}
 	return t
 }
 
