@@ -131,9 +131,18 @@ func (r *fieldRow) enter(text string) {
 // enterRaw follows typing into an entry.
 func (r *fieldRow) enterRaw(text string) {
 	if r.field.Kind == FieldNumber {
-		text = PointNumber(text)
+		text = PointNumber(withoutUnit(text, r.field.Unit))
 	}
 	r.used(text)
+}
+
+// withoutUnit takes the field's own unit off the end of a number.
+func withoutUnit(text, unit string) string {
+	t := strings.TrimSpace(text)
+	if n := len(t) - len(unit); unit != "" && n > 0 && strings.EqualFold(t[n:], unit) {
+		return t[:n]
+	}
+	return text
 }
 
 // used follows the control: it checks and tells.

@@ -8,6 +8,7 @@ import (
 	"math"
 	"os"
 	"path/filepath"
+	"strings"
 	"testing"
 
 	"fyne.io/fyne/v2"
@@ -46,6 +47,47 @@ func settle(w fyne.Window) {
 	w.Resize(size)
 }
 
+// golden compares a picture with the one in testdata, which a person has looked
+// at. QUIETBUS_GOLDEN=write writes it anew: look at it before it is committed.
+func golden(t testing.TB, name string, img image.Image) {
+	t.Helper()
+	keep(t, name, img)
+	if img.Bounds().Dx() > 1280 || strings.HasSuffix(name, "-2x") || strings.HasSuffix(name, "-200") {
+		return // large, and little to tell from the others
+	}
+	path := filepath.Join("testdata", name+".png")
+	if os.Getenv("QUIETBUS_GOLDEN") == "write" {
+		save(t, path, img)
+		return
+	}
+	f, err := os.Open(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	want, err := png.Decode(f)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if _, _, far := difference(t, img, want); far > 0.002 {
+		t.Errorf("%s: %.2f %% of the pixels differ from the golden picture", name, 100*far)
+		save(t, filepath.Join(os.TempDir(), "quietbus-"+name+".png"), img)
+	}
+}
+
+func save(t testing.TB, path string, img image.Image) {
+	t.Helper()
+	f, err := os.Create(path)
+	if err != nil {
+		t.Fatal(err)
+	}
+	defer f.Close()
+	e := png.Encoder{CompressionLevel: png.BestCompression}
+	if err := e.Encode(f, img); err != nil {
+		t.Fatal(err)
+	}
+}
+
 // keep saves a picture for the eye when QUIETBUS_PICTURES names a folder.
 func keep(t testing.TB, name string, img image.Image) {
 	t.Helper()
@@ -53,14 +95,7 @@ func keep(t testing.TB, name string, img image.Image) {
 	if dir == "" {
 		return
 	}
-	f, err := os.Create(filepath.Join(dir, name+".png"))
-	if err != nil {
-		t.Fatal(err)
-	}
-	defer f.Close()
-	if err := png.Encode(f, img); err != nil {
-		t.Fatal(err)
-	}
+	save(t, filepath.Join(dir, name+".png"), img)
 }
 
 // looks are the ways every widget is looked at.

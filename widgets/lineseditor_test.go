@@ -43,7 +43,7 @@ func TestLinesEditorLooks(t *testing.T) {
 		e.SetRows([][]string{{"5", "20.1", "180"}, {"7", "14", ""}, {"5", "3", "0"}, {"11", "", ""}, {"x", "3", ""}})
 		settle(w)
 		assertFits(t, l.name, w)
-		keep(t, "lines-"+l.name, w.Canvas().Capture())
+		golden(t, "lines-"+l.name, w.Canvas().Capture())
 		e, w, _ = showLines(t, l, fyne.NewSize(330*l.size, 380*l.size))
 		e.SetRows([][]string{{"5", "20.1", "180"}, {"7", "14", ""}, {"5", "3", "0"}})
 		settle(w)

@@ -39,7 +39,7 @@ func TestListPaneLooks(t *testing.T) {
 		p.Select("LV1")
 		test.FocusNext(w.Canvas())
 		assertFits(t, l.name, w)
-		keep(t, "list-"+l.name, w.Canvas().Capture())
+		golden(t, "list-"+l.name, w.Canvas().Capture())
 	}
 }
 

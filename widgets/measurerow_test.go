@@ -28,7 +28,7 @@ func TestMeasureRowLooks(t *testing.T) {
 			return m
 		})
 		assertFits(t, look.name, w)
-		keep(t, "measures-"+look.name, w.Canvas().Capture())
+		golden(t, "measures-"+look.name, w.Canvas().Capture())
 		w = stage(t, look, fyne.NewSize(900, 160*look.size), func() fyne.CanvasObject { return NewMeasureRow() })
 		assertFits(t, look.name+" empty", w)
 		keep(t, "measures-empty-"+look.name, w.Canvas().Capture())

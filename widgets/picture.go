@@ -40,7 +40,10 @@ type Picture struct {
 	OnDragEnd      func(h Hot)
 	OnHover        func(h Hot) // zero when the pointer leaves a place
 	OnCopy         func()      // copy shortcut while focused; see Capture
-	OnFault        func(err error)
+	// OnKey is told keys that the picture has no use for, with the place that is
+	// reached or was tapped last; for delete, insert, rename and the like.
+	OnKey   func(h Hot, e *fyne.KeyEvent)
+	OnFault func(err error)
 
 	// Zoomable lets wheel and drag zoom and pan.
 	Zoomable bool
@@ -496,6 +499,10 @@ func (p *Picture) TypedKey(e *fyne.KeyEvent) {
 		p.current = Hot{}
 		p.walk(direction{1, 0})
 	case fyne.KeyEscape:
+		if p.current.Zero() {
+			p.key(e)
+			return
+		}
 		p.current = Hot{}
 		p.setHover(Hot{})
 	case fyne.KeySpace, fyne.KeyReturn, fyne.KeyEnter:
@@ -508,6 +515,14 @@ func (p *Picture) TypedKey(e *fyne.KeyEvent) {
 			at := fyne.CurrentApp().Driver().AbsolutePositionForObject(p)
 			p.OnSecondary(p.current, at.Add(pos).AddXY(size.Width/2, size.Height/2))
 		}
+	default:
+		p.key(e)
+	}
+}
+
+func (p *Picture) key(e *fyne.KeyEvent) {
+	if p.OnKey != nil {
+		p.OnKey(p.current, e)
 	}
 }
 

@@ -76,7 +76,7 @@ func TestPictureLooks(t *testing.T) {
 		_, w = showBoard(t, l, func(p *Picture) { p.Selected = "C" })
 		test.FocusNext(w.Canvas())
 		w.Canvas().Focused().TypedKey(&fyne.KeyEvent{Name: fyne.KeyRight})
-		keep(t, "board-"+l.name, w.Canvas().Capture())
+		golden(t, "board-"+l.name, w.Canvas().Capture())
 	}
 }
 
@@ -216,7 +216,9 @@ func TestPictureKeyboard(t *testing.T) {
 	}
 	key(fyne.KeyLeft, desktop.KeyMenu, fyne.KeyHome, fyne.KeySpace, fyne.KeyEscape, fyne.KeySpace)
 	p.TypedShortcut(&fyne.ShortcutCopy{})
-	if got := strings.Join(told, " "); got != "A B C C menu B A copy" {
+	p.OnKey = func(h Hot, e *fyne.KeyEvent) { told = append(told, string(e.Name)+h.ID) }
+	key(fyne.KeyEscape, fyne.KeyRight, fyne.KeyDelete)
+	if got := strings.Join(told, " "); got != "A B C C menu B A copy Escape DeleteA" {
 		t.Errorf("told %q", got)
 	}
 }

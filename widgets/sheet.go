@@ -41,6 +41,7 @@ type Sheet struct {
 	heading               *paragraph
 	body                  *fyne.Container
 	scroll                *container.Scroll
+	wheel                 *wheelPad
 	apply, cancel, remove *widget.Button
 }
 
@@ -66,6 +67,7 @@ func NewSheet(title string) *Sheet {
 	})
 	s.body = container.New(column{gap: Step, right: 2 * Step})
 	s.scroll = container.NewVScroll(s.body)
+	s.wheel = newWheelPad(s.scroll)
 	s.ExtendBaseWidget(s)
 	return s
 }
@@ -286,6 +288,8 @@ func (r *sheetRenderer) Layout(size fyne.Size) {
 	}
 	s.scroll.Move(fyne.NewPos(2*Step, y))
 	s.scroll.Resize(fyne.NewSize(inner+2*Step, max(bottom-y, 0)))
+	s.wheel.Move(s.scroll.Position())
+	s.wheel.Resize(s.scroll.Size())
 	s.relayout()
 }
 
@@ -318,7 +322,7 @@ func (r *sheetRenderer) Objects() []fyne.CanvasObject {
 	if s.live != nil {
 		objects = append(objects, s.live)
 	}
-	return append(objects, s.scroll, s.notice, s.remove, s.cancel, s.apply)
+	return append(objects, s.scroll, s.wheel, s.notice, s.remove, s.cancel, s.apply)
 }
 
 func (r *sheetRenderer) Destroy() {}

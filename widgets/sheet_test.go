@@ -56,7 +56,7 @@ func TestSheetLooks(t *testing.T) {
 		s.FocusField("impedancePercent")
 		settle(w)
 		assertFits(t, l.name+" in use", w)
-		keep(t, "sheet-"+l.name, w.Canvas().Capture())
+		golden(t, "sheet-"+l.name, w.Canvas().Capture())
 		s.SetText("spectrum", "5\t20\t180\n7\tx\t0\n5\t3\t")
 		s.scroll.ScrollToBottom()
 		assertFits(t, l.name+" low", w)
@@ -107,6 +107,12 @@ func TestSheetChecksAsOneTypes(t *testing.T) {
 	test.Type(entry, "12,5")
 	if got := changes[len(changes)-1]; got != (change{"ratedKVA", "12.5", ""}) || entry.Text != "12,5" {
 		t.Errorf("told %v, the field says %q", got, entry.Text)
+	}
+	// So does the field's own unit.
+	entry.SetText("")
+	test.Type(entry, "800 kva")
+	if got := changes[len(changes)-1]; got != (change{"ratedKVA", "800", ""}) {
+		t.Errorf("told %v", got)
 	}
 	entry.SetText("")
 	if s.Problem("ratedKVA") == "" {
@@ -258,7 +264,7 @@ func TestSheetControls(t *testing.T) {
 
 // Typing into a field far down keeps it in view.
 func TestSheetScrollsToFocus(t *testing.T) {
-	s, _ := openSheet(t, plain, fyne.NewSize(500, 300), nil)
+	s, w := openSheet(t, plain, fyne.NewSize(500, 300), nil)
 	s.FocusField("spectrum")
 	row := s.row("spectrum")
 	if top := row.Position().Y - s.scroll.Offset.Y; top < 0 || top > s.scroll.Size().Height/2 {
@@ -267,6 +273,12 @@ func TestSheetScrollsToFocus(t *testing.T) {
 	s.FocusField("name")
 	if s.scroll.Offset.Y != 0 {
 		t.Errorf("scrolled to %g", s.scroll.Offset.Y)
+	}
+	// The wheel scrolls the form over an entry too.
+	at := fyne.CurrentApp().Driver().AbsolutePositionForObject(s.row("name").input)
+	test.Scroll(w.Canvas(), at.AddXY(20, 10), 0, -40)
+	if s.scroll.Offset.Y != 40 {
+		t.Errorf("the wheel over an entry scrolled to %g", s.scroll.Offset.Y)
 	}
 }
 

@@ -32,7 +32,7 @@ func TestToolRowLooks(t *testing.T) {
 			})
 			assertFits(t, l.name, w)
 			if width == 600 {
-				keep(t, "tools-"+l.name, w.Canvas().Capture())
+				golden(t, "tools-"+l.name, w.Canvas().Capture())
 			}
 		}
 	}
