@@ -1,0 +1,222 @@
+package piecewise
+
+import (
+	"context"
+	"math"
+	"math/cmplx"
+	"sync"
+
+	"gonum.org/v1/gonum/mat"
+
+	"quietbus/study/phasor"
+)
+
+// A Solver finds periodic states of one circuit under changing supplies. It
+// keeps the modes met and the last state, so that a supply near the last one
+// takes little. Its methods may be called from several goroutines; they wait
+// for each other.
+type Solver struct {
+	mu sync.Mutex
+	e  *engine
+	at start
+	ok bool // at is a periodic state
+}
+
+// An Orbit is one periodic state.
+type Orbit struct {
+	Lines      [3]phasor.Spectrum // line currents, orders 1..order; order 0 from the moments
+	Moments    [][]float64        // mean of s_i s_j, see Circuit; the first constant is 1
+	State      []float64          // full state at the start
+	Correction float64            // last Newton correction over the scales
+	Passes     int                // periods stepped
+	Multiplier complex128         // largest by modulus: how a disturbance grows in one period
+	Changes    int                // changes of the conducting valves in one period
+	Yield      []float64          // by control: derivative of its average (power) by its parameter alone
+
+	solver *Solver
+	segs   []segment
+	links  []link
+	watts  []control
+	first  [3]complex128
+	walked []float64 // Samples x states
+}
+
+// control is a Control with the averages of the orbit.
+type control struct {
+	Control
+	p, mean float64
+}
+
+// NewSolver takes the circuit over; it must not be changed afterwards.
+func NewSolver(c *Circuit) *Solver {
+	return &Solver{e: newEngine(c)}
+}
+
+// Start sets the state that the next solution starts from: all valves block,
+// full is the full state (branch currents, capacitor voltages, 1, parameters).
+func (s *Solver) Start(full []float64) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	m := s.e.mode(0)
+	x := make([]float64, m.d)
+	m.reduce(full, x)
+	s.at, s.ok = start{key: 0, x: x}, false
+}
+
+// Warm reports whether the solver holds a periodic state to start from.
+func (s *Solver) Warm() bool {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	return s.ok
+}
+
+// Solve returns the periodic state under the phase voltages v (orders 1 and
+// up), with line currents to the given order.
+func (s *Solver) Solve(ctx context.Context, v [3]phasor.Spectrum, order int) (*Orbit, error) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	e := s.e
+	e.s.set(v)
+	e.schedule()
+	e.passes = 0
+	was := s.at
+	was.x = append([]float64(nil), was.x...)
+	left, err := e.shoot(ctx, &s.at, s.ok)
+	if err != nil {
+		s.at, s.ok = was, false
+		return nil, err
+	}
+	s.ok = true
+	s.at.x = append(s.at.x[:0], e.segs[0].xa...)
+	s.at.key = e.segs[0].m.key
+
+	o := &Orbit{solver: s, Correction: left, Passes: e.passes, Changes: len(e.segs) - 1, first: e.s.first}
+	o.Moments = e.moments()
+	o.Lines = e.lines(order)
+	nb, nv := e.c.nb(), e.c.nv()
+	for q := range o.Lines {
+		for b := 0; b < nb; b++ {
+			o.Lines[q][0] += complex(e.c.K[b][q]*o.Moments[b][nb+nv], 0)
+		}
+	}
+	o.State = make([]float64, e.wide)
+	e.segs[0].m.expand(e.segs[0].xa, o.State)
+	for i, c := range e.c.Controls {
+		o.watts = append(o.watts, control{c, o.State[nb+nv+1+i], e.mean[i]})
+	}
+	o.keep(e)
+	o.Multiplier = o.multiplier(e)
+	o.Yield = o.yield(e)
+	return o, nil
+}
+
+// keep copies what the linearisation and the waveforms need.
+func (o *Orbit) keep(e *engine) {
+	o.segs, o.links = make([]segment, len(e.segs)), make([]link, len(e.segs))
+	clone := func(v []float64) []float64 { return append([]float64(nil), v...) }
+	for i, s := range e.segs {
+		s.xa, s.xb = clone(s.xa), clone(s.xb)
+		o.segs[i] = s
+		l := e.links[i]
+		o.links[i] = link{D: clone(l.D), W: clone(l.W), jump: clone(l.jump), rate: l.rate}
+		if l.S != nil {
+			o.links[i].S = clone(l.S)
+		}
+	}
+	o.walked = make([]float64, Samples*e.wide)
+	for k, m := range e.atM {
+		m.expand(e.atX[k*e.wide:k*e.wide+m.d], o.walked[k*e.wide:(k+1)*e.wide])
+	}
+}
+
+// multiplier returns the largest eigenvalue of the derivative over one period.
+func (o *Orbit) multiplier(e *engine) complex128 {
+	flow, _ := e.derivative()
+	m := e.segs[0].m
+	if m.n == 0 {
+		return 0
+	}
+	if m.n == 1 {
+		return complex(flow[0], 0)
+	}
+	a := mat.NewDense(m.n, m.n, nil)
+	for i := 0; i < m.n; i++ {
+		a.SetRow(i, flow[i*m.d:i*m.d+m.n])
+	}
+	var eig mat.Eigen
+	if !eig.Factorize(a, mat.EigenNone) {
+		return cmplx.Inf()
+	}
+	var big complex128
+	for _, v := range eig.Values(nil) {
+		if cmplx.Abs(v) > cmplx.Abs(big) {
+			big = v
+		}
+	}
+	return big
+}
+
+// yield lets each parameter move alone and returns how its controlled average
+// follows, in A, V or W per unit of the parameter.
+func (o *Orbit) yield(e *engine) []float64 {
+	np := len(e.c.Controls)
+	if np == 0 {
+		return nil
+	}
+	flow, means := e.derivative()
+	m := e.segs[0].m
+	out := make([]float64, np)
+	for c, w := range o.watts {
+		a, dx := make([]float64, m.n*m.n), make([]float64, m.n)
+		for i := 0; i < m.n; i++ {
+			for j := 0; j < m.n; j++ {
+				a[i*m.n+j] = -flow[i*m.d+j]
+			}
+			a[i*m.n+i]++
+			dx[i] = flow[i*m.d+m.n+1+c]
+		}
+		if !solve(a, m.n, dx, 1) {
+			continue
+		}
+		mean := means[c*m.d+m.n+1+c]
+		for j, d := range dx {
+			mean += means[c*m.d+j] * d
+		}
+		mean /= 2 * math.Pi
+		out[c] = w.gain() * mean
+		if w.Power {
+			out[c] += w.mean
+		}
+	}
+	return out
+}
+
+// Walk returns the full state at the samples of the period, state by state:
+// Walk()[i] has Samples values.
+func (o *Orbit) Walk() [][]float64 {
+	ns := len(o.State)
+	out := rows(ns, Samples)
+	for k := 0; k < Samples; k++ {
+		for i := 0; i < ns; i++ {
+			out[i][k] = o.walked[k*ns+i]
+		}
+	}
+	return out
+}
+
+// Share returns the share of the period in which a unit's state satisfies f.
+func (o *Orbit) Share(unit int, f func(state uint64) bool) float64 {
+	var shift uint
+	units := o.solver.e.c.Units
+	for _, u := range units[:unit] {
+		shift += u.bits()
+	}
+	var sum, all float64
+	for _, s := range o.segs {
+		all += s.b - s.a
+		if f(s.m.key >> shift & (1<<units[unit].bits() - 1)) {
+			sum += s.b - s.a
+		}
+	}
+	return sum / all
+}
