@@ -2,7 +2,6 @@ package widgets
 
 import (
 	"fmt"
-	"strconv"
 	"strings"
 
 	"fyne.io/fyne/v2"
@@ -20,6 +19,7 @@ type fieldRow struct {
 	text    string
 	problem string
 	remedy  string
+	pending bool // the text was typed and does not pass
 	active  bool
 	setting bool // a control is being set, not used
 
@@ -57,9 +57,12 @@ func newFieldRow(s *Sheet, f SheetField) *fieldRow {
 // take shows a field as it is now. A text that was typed and does not pass
 // stays.
 func (r *fieldRow) take(f SheetField) {
-	typed := r.problem != "" && f.Error == "" && r.text != f.Text
+	kept := r.pending && r.text != f.Text
 	r.field = f
-	if !typed {
+	if kept {
+		r.field.Error, r.field.Remedy = "", ""
+	} else {
+		r.pending = false
 		r.text = f.Text
 		r.problem, r.remedy = f.Error, f.Remedy
 		r.put()
@@ -151,8 +154,9 @@ func (r *fieldRow) used(text string) {
 		return
 	}
 	r.text = text
-	r.field.Error = ""
+	r.field.Error, r.field.Remedy = "", ""
 	r.check()
+	r.pending = r.problem != ""
 	r.Refresh()
 	r.sheet.changed(r)
 }
@@ -171,10 +175,8 @@ func (r *fieldRow) check() {
 		if r.field.Typical != "" {
 			r.remedy = "typical is " + r.field.Typical + " " + r.field.Unit
 		}
-	case text != "" && r.field.Kind == FieldNumber:
-		if _, err := strconv.ParseFloat(text, 64); err != nil {
-			r.problem, r.remedy = fmt.Sprintf("%q is not a number", text), "type a number such as 12.5"
-		}
+	case text != "" && r.field.Kind == FieldNumber && !isNumber(text):
+		r.problem, r.remedy = fmt.Sprintf("%q is not a number", text), "type a number such as 12.5"
 	}
 	if lines, ok := r.input.(*LinesEditor); ok && r.problem == "" {
 		r.problem, r.remedy = lines.problem()

@@ -88,6 +88,15 @@ func save(t testing.TB, path string, img image.Image) {
 	}
 }
 
+// top is the upper part of a picture.
+func top(img image.Image, height int) image.Image {
+	b := img.Bounds()
+	b.Max.Y = min(b.Max.Y, b.Min.Y+height)
+	return img.(interface {
+		SubImage(image.Rectangle) image.Image
+	}).SubImage(b)
+}
+
 // keep saves a picture for the eye when QUIETBUS_PICTURES names a folder.
 func keep(t testing.TB, name string, img image.Image) {
 	t.Helper()

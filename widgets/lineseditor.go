@@ -2,7 +2,6 @@ package widgets
 
 import (
 	"fmt"
-	"strconv"
 	"strings"
 
 	"fyne.io/fyne/v2"
@@ -179,7 +178,7 @@ func (e *LinesEditor) check() {
 				}
 				continue
 			}
-			if _, err := strconv.ParseFloat(text, 64); err != nil && !c.Text {
+			if !c.Text && !isNumber(text) {
 				problems[i] = sentence(fmt.Sprintf("%s: %q is not a number", c.Label, text), "")
 				break
 			}

@@ -2,6 +2,7 @@ package widgets
 
 import (
 	"image/color"
+	"time"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/canvas"
@@ -27,7 +28,7 @@ type ListGroup struct {
 }
 
 // A ListPane lists items by kind, with a button on each kind to add one. With
-// the focus, up and down select, enter opens, delete removes, insert adds one
+// the focus, up and down select, enter or a double tap opens, delete removes, insert adds one
 // of the kind that is selected.
 type ListPane struct {
 	widget.BaseWidget
@@ -41,6 +42,8 @@ type ListPane struct {
 	lines    []listLine
 	selected int // line, -1 for none
 	focused  bool
+	lastTap  time.Time
+	lastLine int
 	list     *mutedList
 }
 
@@ -299,10 +302,13 @@ func (w *listRow) Tapped(*fyne.PointEvent) {
 	if c := fyne.CurrentApp().Driver().CanvasForObject(w.pane); c != nil {
 		c.Focus(w.pane)
 	}
-	if w.pane.selected == w.n && w.pane.OnOpened != nil { // a second tap opens
-		if item := w.pane.at(w.n); item != nil {
-			w.pane.OnOpened(item.ID)
-		}
+	// A second tap soon after opens, without holding the first one back.
+	now := time.Now()
+	again := w.n == w.pane.lastLine && now.Sub(w.pane.lastTap) < DoubleTapTime
+	w.pane.lastTap, w.pane.lastLine = now, w.n
+	if item := w.pane.at(w.n); again && item != nil && w.pane.OnOpened != nil {
+		w.pane.lastTap = time.Time{}
+		w.pane.OnOpened(item.ID)
 		return
 	}
 	w.pane.choose(w.n)

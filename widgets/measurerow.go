@@ -97,12 +97,26 @@ func (m *MeasureRow) card(v Measure) *MeasureCard {
 			m.OnTapped(id)
 		}
 	}
+	c.sw.onFocus = func() { m.reveal(c) }
+	c.edit.onFocus = c.sw.onFocus
 	c.OnHover = func(inside bool) {
 		if m.OnHover != nil {
 			m.OnHover(id, inside)
 		}
 	}
 	return c
+}
+
+// reveal scrolls so that a card is in view.
+func (m *MeasureRow) reveal(c *MeasureCard) {
+	left, right := c.Position().X, c.Position().X+c.Size().Width
+	x, view := m.scroll.Offset.X, m.scroll.Size().Width
+	if right+Step > x+view {
+		x = right + Step - view
+	}
+	if x = max(min(x, left-Step), 0); x != m.scroll.Offset.X {
+		m.scroll.ScrollToOffset(fyne.NewPos(x, 0))
+	}
 }
 
 func (m *MeasureRow) fill() {
@@ -156,12 +170,13 @@ func (r *measureRowRenderer) Objects() []fyne.CanvasObject {
 
 func (r *measureRowRenderer) Destroy() {}
 
-// A shelf lays objects side by side at their least width, cards at full height,
+// A shelf lays objects side by side at their least width with a gap at both
+// ends, cards at full height,
 // others centred.
 type shelf struct{ gap float32 }
 
 func (s shelf) Layout(objects []fyne.CanvasObject, size fyne.Size) {
-	x := float32(0)
+	x := s.gap
 	for _, o := range objects {
 		m := o.MinSize()
 		height, y := m.Height, float32(0)
@@ -175,7 +190,7 @@ func (s shelf) Layout(objects []fyne.CanvasObject, size fyne.Size) {
 }
 
 func (s shelf) MinSize(objects []fyne.CanvasObject) fyne.Size {
-	var size fyne.Size
+	size := fyne.NewSize(s.gap, 0)
 	for _, o := range objects {
 		m := o.MinSize()
 		size.Width += m.Width + s.gap

@@ -102,6 +102,13 @@ func TestMeasureRowSwitches(t *testing.T) {
 	if len(tapped) != 1 || tapped[0] != "A" {
 		t.Errorf("tapped %v", tapped)
 	}
+	// A card reached by keyboard comes into view.
+	w.Resize(fyne.NewSize(500, 200))
+	w.Canvas().Focus(m.Card("R").Switch())
+	at := fyne.CurrentApp().Driver().AbsolutePositionForObject(m.Card("R"))
+	if at.X < 0 || at.X+m.Card("R").Size().Width > 500 {
+		t.Errorf("the card with the focus is at %v of a strip 500 wide", at)
+	}
 	m.SetMeasures(next[:1])
 	if m.Card("R") != nil || m.Card("F5") == nil {
 		t.Error("the wrong card went away")

@@ -195,8 +195,7 @@ func (r *Raster) Stroke(p vg.Path) {
 			return
 		}
 		for _, part := range r.parts {
-			part.pts = thin(part.pts, thinness)
-			r.cover.stroke(part, width)
+			r.cover.stroke(part.thinned(), width)
 		}
 	} else {
 		pattern := make([]float64, len(r.state.dashes))
@@ -204,11 +203,14 @@ func (r *Raster) Stroke(p vg.Path) {
 			pattern[i] = float64(d) * factor
 		}
 		for _, part := range r.parts {
-			dash(part, pattern, float64(r.state.offset)*factor, func(piece polyline) { r.cover.stroke(piece, width) })
+			dash(part.thinned(), pattern, float64(r.state.offset)*factor, func(piece polyline) { r.cover.stroke(piece, width) })
 		}
 	}
 	r.cover.blend(r.img, r.state.ink)
 }
+
+// thinned is the polyline without points no one would miss.
+func (l polyline) thinned() polyline { return polyline{pts: thin(l.pts, thinness), closed: l.closed} }
 
 // thinness is how far, in pixels, a thinned line may be from the true one.
 const thinness = 0.06

@@ -1,6 +1,7 @@
 package widgets
 
 import (
+	"math"
 	"strconv"
 	"strings"
 	"unicode"
@@ -65,10 +66,19 @@ func PointNumber(text string) string {
 	case comma >= 0 && strings.Count(plain, ",") == 1:
 		plain = strings.Replace(plain, ",", ".", 1)
 	}
-	if _, err := strconv.ParseFloat(plain, 64); err == nil {
+	if isNumber(plain) {
 		return plain
 	}
 	return t
+}
+
+// isNumber tells whether a text is a finite decimal number.
+func isNumber(text string) bool {
+	if strings.ContainsAny(text, "xXnNpP_") { // hexadecimal, NaN, infinity
+		return false
+	}
+	v, err := strconv.ParseFloat(text, 64)
+	return err == nil && !math.IsInf(v, 0)
 }
 
 // JoinRows is the text form of rows: cells parted by tabs, a row a line.

@@ -148,12 +148,13 @@ func TestSheetChecksAsOneTypes(t *testing.T) {
 // and does not pass stays.
 func TestSheetFieldsFollowAChoice(t *testing.T) {
 	kind, name := "single-tuned", "F1"
+	fault := "" // of the name, as the study sees it
 	var s *Sheet
 	stage(t, plain, fyne.NewSize(620, 720), func() fyne.CanvasObject {
 		s = NewSheet("Filter")
 		s.Fields = func() []SheetField {
 			f := []SheetField{
-				{Key: "name", Label: "Name", Kind: FieldText, Text: name, Need: true},
+				{Key: "name", Label: "Name", Kind: FieldText, Text: name, Need: true, Error: fault},
 				{Key: "kind", Label: "Kind", Kind: FieldChoice, Text: kind, Choices: []string{"single-tuned", "active"}, Need: true},
 			}
 			if kind == "active" {
@@ -179,6 +180,7 @@ func TestSheetFieldsFollowAChoice(t *testing.T) {
 		s.Reload()
 		return s
 	})
+	fault = "is too short"
 	s.SetText("name", "taken")
 	s.row("kind").input.(*fieldSelect).SetSelected("active")
 	if _, ok := s.Text("ratedA"); !ok {
@@ -187,8 +189,13 @@ func TestSheetFieldsFollowAChoice(t *testing.T) {
 	if _, ok := s.Text("order"); ok {
 		t.Fatal("the order stayed")
 	}
-	if text, _ := s.Text("name"); text != "taken" || s.Problem("name") == "" {
+	if text, _ := s.Text("name"); text != "taken" || s.Problem("name") != "is taken" {
 		t.Errorf("the name that does not pass became %q, problem %q", text, s.Problem("name"))
+	}
+	s.SetText("name", "F22")
+	s.Reload()
+	if text, _ := s.Text("name"); text != "F22" || s.Problem("name") != "is too short" {
+		t.Errorf("after a good text the field shows %q, problem %q", text, s.Problem("name"))
 	}
 }
 

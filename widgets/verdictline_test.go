@@ -25,7 +25,7 @@ func TestVerdictLineLooks(t *testing.T) {
 			})
 			assertFits(t, look.name, w)
 			if width == 1280 {
-				golden(t, "verdict-"+look.name, w.Canvas().Capture())
+				golden(t, "verdict-"+look.name, top(w.Canvas().Capture(), int(180*look.size*look.pixels)))
 			}
 		}
 	}
