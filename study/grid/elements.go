@@ -134,8 +134,8 @@ func power(h, exponent float64) float64 {
 type Cable struct {
 	Name       string
 	From, To   BusID
-	R, X, C    float64 // total, ohm and farad
-	R0, X0, C0 float64
+	R, X, C    float64                 // total, ohm and farad
+	R0, X0, C0 float64                 // zero sequence; R0 and X0 both zero: no way through
 	Skin       func(h float64) float64 // R(h)/R(1), nil for none
 }
 
@@ -154,9 +154,12 @@ func (e *Cable) admit(f1, h float64, q phasor.Sequence) primitive {
 	if e.Skin != nil {
 		k = e.Skin(h)
 	}
+	half := complex(0, math.Pi*f1*h*c)
+	if r == 0 && x == 0 { // no zero-sequence way through is stated
+		return primitive{y00: half, y11: half}
+	}
 	y := 1 / complex(r*k, x*h)
-	ends := y + complex(0, math.Pi*f1*h*c)
-	return primitive{ends, -y, ends}
+	return primitive{y + half, -y, y + half}
 }
 
 // Shunt is a balanced three-phase shunt branch in star equivalent.

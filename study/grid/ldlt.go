@@ -118,20 +118,25 @@ func (p *pattern) fill(order []int, lists [][]int) *pattern {
 type factors struct {
 	diag []complex128
 	low  []complex128
-	was  []complex128 // diagonal before elimination
+	size []float64 // sum of the magnitudes on each diagonal place
 }
 
 func (p *pattern) newFactors() *factors {
-	return &factors{make([]complex128, p.n), make([]complex128, len(p.row)), make([]complex128, p.n)}
+	return &factors{make([]complex128, p.n), make([]complex128, len(p.row)), make([]float64, p.n)}
+}
+
+// add adds to a place on the diagonal.
+func (f *factors) add(k int32, v complex128) {
+	f.diag[k] += v
+	f.size[k] += cmplxAbs1(v)
 }
 
 // factor turns the assembled matrix into L D L^T in place. It reports false
 // at a pivot that is nearly zero against what was there before elimination.
 func (p *pattern) factor(f *factors) bool {
-	copy(f.was, f.diag)
 	for k := 0; k < p.n; k++ {
 		d := f.diag[k]
-		if !(cmplxAbs1(d) > 1e-11*cmplxAbs1(f.was[k])) {
+		if !(cmplxAbs1(d) > 1e-11*f.size[k]) {
 			return false
 		}
 		inv := 1 / d

@@ -54,37 +54,35 @@ func (s *System) admit(dst []primitive, h float64, q phasor.Sequence) {
 
 // factor assembles and factors one sequence from its elements' admittances, in
 // per unit of each node's nominal voltage so that pivots are comparable. Nodes
-// without supply, and nodes that nothing holds in this sequence, get a unit
-// pivot. It reports false when a pivot is poor.
+// that take no part are pinned to a unit pivot. It reports false when a pivot is poor.
 func (s *System) factor(f *factors, prim []primitive, q phasor.Sequence) bool {
 	clear(f.diag)
 	clear(f.low)
-	floating := s.floating[q]
+	clear(f.size)
 	for i := range prim {
 		p := &s.place[i]
 		if !p.live {
 			continue
 		}
 		y := &prim[i]
-		if floating == nil || !floating[p.n0] {
-			f.diag[p.d0] += y.y00 * complex(p.s00, 0)
-		}
-		if p.low < 0 {
-			continue
-		}
-		if floating == nil || !floating[p.n1] {
-			f.diag[p.d1] += y.y11 * complex(p.s11, 0)
-		}
-		if floating == nil || !floating[p.n0] && !floating[p.n1] {
+		f.add(p.d0, y.y00*complex(p.s00, 0))
+		if p.low >= 0 {
+			f.add(p.d1, y.y11*complex(p.s11, 0))
 			f.low[p.low] += y.y01 * complex(p.s01, 0)
 		}
 	}
-	for k := range f.diag {
-		if f.diag[k] == 0 {
-			f.diag[k] = 1
+	for k := range s.nodes {
+		if s.pinned(k, q) {
+			f.add(int32(s.pat.rank[k]), 1)
 		}
 	}
 	return s.pat.factor(f)
+}
+
+// pinned reports whether a node takes no part in a sequence: it has no supply,
+// or nothing ties it to earth.
+func (s *System) pinned(k int, q phasor.Sequence) bool {
+	return !s.live[k] || s.floating[q] != nil && s.floating[q][k]
 }
 
 // back solves Y V = I for node currents (A) into v (V), with b for the work.
@@ -108,15 +106,13 @@ func (s *System) dense(prim []primitive, q phasor.Sequence, current, v []complex
 	for k := range a {
 		a[k] = make([]complex128, s.nodes)
 	}
-	floating := s.floating[q]
-	loose := func(k int32) bool { return floating != nil && floating[k] }
 	for i := range prim {
 		p := &s.place[i]
-		if !p.live || loose(p.n0) {
+		if !p.live {
 			continue
 		}
 		a[p.n0][p.n0] += prim[i].y00 * complex(p.s00, 0)
-		if p.low < 0 || loose(p.n1) {
+		if p.low < 0 {
 			continue
 		}
 		a[p.n1][p.n1] += prim[i].y11 * complex(p.s11, 0)
@@ -125,8 +121,8 @@ func (s *System) dense(prim []primitive, q phasor.Sequence, current, v []complex
 	}
 	b := make([]complex128, s.nodes)
 	for k := range a {
-		if a[k][k] == 0 {
-			a[k][k] = 1
+		if s.pinned(k, q) {
+			a[k][k]++
 		}
 		b[k] = current[k] * complex(s.scale[k], 0)
 	}
@@ -254,6 +250,9 @@ func (s *System) Fundamental(ctx context.Context) (*Fundamental, error) {
 			i := d.draw(s.phaseAt(&f.seq, k))
 			f.drawn[ElementID(id)] = i
 			for q, v := range phasor.ToSequence(i) {
+				if s.floating[q] != nil && s.floating[q][k] {
+					continue // only rounding is left of it there: see float
+				}
 				w.current[q][k] -= s.turned(k, mirror(phasor.Sequence(q)), v)
 			}
 		}
