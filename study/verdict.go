@@ -115,6 +115,9 @@ func overs(p *PointResult) string {
 		}
 	}
 	text := fmt.Sprintf("%s at %.2f x its limit (%.3g %% against %.3g %%)", RowName(*worst), worst.Share, worst.Value, worst.Limit)
+	if worst.Limit == 0 {
+		text = fmt.Sprintf("%s of %.3g %%, which is not allowed", RowName(*worst), worst.Value)
+	}
 	switch {
 	case n == 2:
 		text += " and one more over"
@@ -130,6 +133,9 @@ func phraseBefore(p *PointResult) string {
 	case NotAssessed:
 		return "not assessed"
 	case Fails:
+		if worst.Limit == 0 {
+			return RowName(*worst) + ", which is not allowed"
+		}
 		return fmt.Sprintf("%s at %.2f x its limit", RowName(*worst), worst.Share)
 	}
 	return fmt.Sprintf("closest %s at %s of its limit", RowName(*worst), percent(worst.Share))

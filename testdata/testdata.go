@@ -1,5 +1,4 @@
-// Package testdata holds the demonstration study, whose site and numbers are
-// invented.
+// Package testdata holds studies whose sites and numbers are invented.
 package testdata
 
 import _ "embed"
@@ -8,3 +7,8 @@ import _ "embed"
 //
 //go:embed demo.study.json
 var Demo []byte
+
+// Thirty is a study of 30 buses for benchmarks.
+//
+//go:embed thirty.study.json
+var Thirty []byte

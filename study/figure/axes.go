@@ -3,6 +3,7 @@ package figure
 import (
 	"math"
 	"strconv"
+	"strings"
 
 	"gonum.org/v1/plot/vg"
 )
@@ -119,6 +120,12 @@ func (a *axes) key(before, after bool, words [2]string) {
 	s := a.st
 	y := a.area.Max.Y + 1.1*s.Small
 	x := a.area.Max.X
+	if after && !before { // one outcome alone is neither before nor after
+		words[1] = strings.TrimPrefix(strings.TrimPrefix(words[1], "after"), ", ")
+		if words[1] == "" {
+			return
+		}
+	}
 	if after {
 		a.writeBold(x, y, right, s.Small, s.After, words[1])
 		x -= a.width(s.Small, words[1]) + 2.6*s.Small

@@ -2,6 +2,7 @@ package figure
 
 import (
 	"fmt"
+	"image/color"
 	"math"
 	"math/cmplx"
 	"sort"
@@ -99,13 +100,12 @@ func drawImpedance(p *pen, b, a *study.ScanResult, sources []int) []Hot {
 	x.orderLabels(shown)
 	x.curve(b, x.st.Before, x.st.Line)
 	x.curve(a, x.st.After, x.st.Bold)
-	x.peaks(b, x.st.Muted, a)
-	x.peaks(a, x.st.After, nil)
+	x.peaks(b, a)
 	x.readouts(b, a)
 	return p.hots
 }
 
-func (x *axes) curve(r *study.ScanResult, ink interface{ RGBA() (r, g, b, a uint32) }, width vg.Length) {
+func (x *axes) curve(r *study.ScanResult, ink color.Color, width vg.Length) {
 	if r == nil {
 		return
 	}
@@ -133,37 +133,87 @@ func abs(v vg.Length) vg.Length {
 	return v
 }
 
-// peaks names the highest resonances; one that stands where the other scan has
-// one too is named once.
-func (x *axes) peaks(r *study.ScanResult, ink interface{ RGBA() (r, g, b, a uint32) }, other *study.ScanResult) {
-	if r == nil {
-		return
-	}
-	list := append([]study.Peak(nil), r.Peaks...)
-	sort.Slice(list, func(i, j int) bool { return list[i].Ohm*list[i].Q > list[j].Ohm*list[j].Q })
-	named := 0
-	for _, k := range list {
-		if named == 2 || k.Q < 1.5 {
-			break
-		}
-		same := false
-		if other != nil {
-			for _, o := range other.Peaks {
-				same = same || math.Abs(o.Order-k.Order) < 0.15
-			}
-		}
-		if same {
+// peaks names the highest resonances of both scans, where there is room beside
+// the peak; one at which both have a peak is named once.
+func (x *axes) peaks(b, a *study.ScanResult) {
+	var taken []vg.Rectangle
+	for i, r := range []*study.ScanResult{a, b} {
+		if r == nil {
 			continue
 		}
-		words := fmt.Sprintf("%s at order %s", number(k.Ohm)+" Ω", strconv.FormatFloat(k.Order, 'f', 1, 64))
-		w := x.width(x.st.Small, words)
-		at := x.x(k.Order) + 0.5*x.st.Small
-		if at+w > x.area.Max.X {
-			at = x.x(k.Order) - w - 0.5*x.st.Small
+		ink := color.Color(x.st.After)
+		if i == 1 {
+			ink = x.st.Muted
 		}
-		x.write(at, min(x.y(k.Ohm)+0.2*x.st.Small, x.area.Max.Y-0.5*x.st.Small), left, x.st.Small, ink, words)
-		named++
+		list := append([]study.Peak(nil), r.Peaks...)
+		sort.Slice(list, func(i, j int) bool { return list[i].Ohm*list[i].Q > list[j].Ohm*list[j].Q })
+		named := 0
+		for _, k := range list {
+			if named == 2 || k.Q < 1.5 {
+				break
+			}
+			if i == 1 && a != nil && hasPeak(a, k.Order) {
+				continue
+			}
+			words := fmt.Sprintf("%s Ω at order %s", number(k.Ohm), strconv.FormatFloat(k.Order, 'f', 1, 64))
+			if place, ok := x.room(k, words, taken, b, a); ok {
+				taken = append(taken, place)
+				x.write(place.Min.X, (place.Min.Y+place.Max.Y)/2, left, x.st.Small, ink, words)
+				named++
+			}
+		}
 	}
+}
+
+func hasPeak(r *study.ScanResult, order float64) bool {
+	for _, p := range r.Peaks {
+		if math.Abs(p.Order-order) < 0.15 {
+			return true
+		}
+	}
+	return false
+}
+
+// room finds a place for a peak's words near its top that no curve and no other
+// words cross.
+func (x *axes) room(k study.Peak, words string, taken []vg.Rectangle, scans ...*study.ScanResult) (vg.Rectangle, bool) {
+	size := x.st.Small
+	w := x.width(size, words)
+	top := vg.Point{X: x.x(k.Order), Y: x.y(k.Ohm)}
+	for _, up := range []vg.Length{0.2, 0.9, 1.7, 2.6, -0.6} {
+		for _, from := range []vg.Length{top.X + 0.6*size, top.X - 0.6*size - w, top.X - w/2} {
+			place := rect(from, top.Y+(up-0.55)*size, from+w, top.Y+(up+0.55)*size)
+			if place.Min.X < x.area.Min.X || place.Max.X > x.area.Max.X || place.Max.Y > x.area.Max.Y+0.4*size {
+				continue
+			}
+			free := true
+			for _, t := range taken {
+				free = free && !meet(place, t)
+			}
+			for _, r := range scans {
+				free = free && (r == nil || !x.crosses(r, place))
+			}
+			if free {
+				return place, true
+			}
+		}
+	}
+	return vg.Rectangle{}, false
+}
+
+// crosses reports whether a curve runs through a place.
+func (x *axes) crosses(r *study.ScanResult, place vg.Rectangle) bool {
+	for i := 1; i < len(r.Orders); i++ {
+		x0, x1 := x.x(r.Orders[i-1]), x.x(r.Orders[i])
+		if x1 < place.Min.X || x0 > place.Max.X {
+			continue
+		}
+		y0, y1 := x.y(cmplx.Abs(r.Z[i-1])), x.y(cmplx.Abs(r.Z[i]))
+		if max(y0, y1) >= place.Min.Y && min(y0, y1) <= place.Max.Y {
+			return true
+		}
+	}
+	return false
 }
 
 func (x *axes) readouts(b, a *study.ScanResult) {

@@ -159,6 +159,7 @@ func rect(x0, y0, x1, y1 vg.Length) vg.Rectangle {
 // number formats v with three significant digits and no exponent where that
 // can be read.
 func number(v float64) string {
+	v, _ = strconv.ParseFloat(strconv.FormatFloat(v, 'g', 3, 64), 64)
 	switch a := math.Abs(v); {
 	case v == 0:
 		return "0"
