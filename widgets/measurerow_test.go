@@ -131,9 +131,12 @@ func TestSwitchTellsByShape(t *testing.T) {
 	}
 	s.Disable()
 	s.Tapped(&fyne.PointEvent{})
+	if !s.On {
+		t.Error("a disabled switch flipped when tapped")
+	}
 	s.TypedRune(' ')
 	if !s.On {
-		t.Error("a disabled switch flipped")
+		t.Error("a disabled switch flipped by keyboard")
 	}
 	if s.Cursor() != desktop.DefaultCursor {
 		t.Error("a disabled switch invites a tap")

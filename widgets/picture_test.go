@@ -82,7 +82,7 @@ func TestPictureLooks(t *testing.T) {
 
 // The raster is drawn at the pixels of the screen, once for each refresh.
 func TestPictureDrawsOncePerRefresh(t *testing.T) {
-	for _, pixels := range []float32{1, 2, 1.5} {
+	for _, pixels := range []float32{1, 2, 1.25} {
 		count := 0
 		var size vg.Point
 		var p *Picture

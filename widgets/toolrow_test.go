@@ -75,6 +75,11 @@ func TestToolRow(t *testing.T) {
 	if got := last[len(last)-1].text; got != "Handout" {
 		t.Errorf("the menu ends with %q", got)
 	}
+	// What is shown is the head of the row: a short tool does not jump a long one.
+	row.SetTools([]Tool{{Label: "A"}, {Label: strings.Repeat("long ", 10)}, {Label: "B"}})
+	if row.buttons[1].Visible() || row.buttons[2].Visible() || !row.buttons[0].Visible() {
+		t.Error("the tools shown are not the first ones")
+	}
 	next := someTools(&told)
 	next[1].Disabled = false
 	row.SetTools(next)

@@ -62,7 +62,7 @@ func TestVerdictLineTapsAndKeys(t *testing.T) {
 // A flip that shortens a sentence leaves what is below where it is.
 func TestVerdictLineDoesNotJump(t *testing.T) {
 	var v *VerdictLine
-	w := stage(t, plain, fyne.NewSize(500, 400), func() fyne.CanvasObject {
+	w := stage(t, plain, fyne.NewSize(500, 900), func() fyne.CanvasObject {
 		v = NewVerdictLine(nil)
 		v.SetVerdicts(someVerdicts)
 		return container.NewBorder(v, nil, nil, nil, widget.NewLabel("below"))
@@ -85,8 +85,8 @@ func TestVerdictLineDoesNotJump(t *testing.T) {
 	}
 	v.SetVerdicts(long)
 	settle(w)
-	if h := v.MinSize().Height; h > 0.31*400 {
-		t.Errorf("40 sentences take %g of 400", h)
+	if h := v.MinSize().Height; h > 0.31*900 {
+		t.Errorf("40 sentences take %g of 900", h)
 	}
 }
 
