@@ -3,7 +3,6 @@ package figure
 import (
 	"math"
 	"strconv"
-	"strings"
 
 	"gonum.org/v1/plot/vg"
 )
@@ -14,6 +13,7 @@ type axes struct {
 	area           vg.Rectangle
 	x0, x1, y0, y1 float64
 	logY           bool
+	yTitle         vg.Length // right end of the title of the y axis
 }
 
 // open lays the area out under a heading and returns it; room at the left is
@@ -31,7 +31,7 @@ func (p *pen) open(heading, yTitle, xTitle string) *axes {
 	bottom := r.Min.Y + pad*0.6
 	p.write(r.Max.X-pad, bottom+s.Small*0.5, right, s.Small, s.Muted, xTitle)
 	bottom += 1.5*s.Small + 1.7*s.Small
-	return &axes{pen: p, area: rect(r.Min.X+pad+4.6*s.Small, bottom, r.Max.X-pad, top)}
+	return &axes{pen: p, yTitle: r.Min.X + pad + p.width(s.Small, yTitle), area: rect(r.Min.X+pad+4.6*s.Small, bottom, r.Max.X-pad, top)}
 }
 
 func (a *axes) x(v float64) vg.Length {
@@ -115,26 +115,53 @@ func tick(v, step float64) string {
 }
 
 // key writes the words for before and after in their colours at the right of
-// the heading line below it.
-func (a *axes) key(before, after bool, words [2]string) {
+// the line of the y axis's title; detail follows each word where there is room
+// for it. One outcome alone is neither before nor after and has its detail only.
+func (a *axes) key(before, after bool, detail [2]string) {
+	words := [2]string{"before", "after"}
+	switch {
+	case before && after:
+		if long := [2]string{join("before", detail[0]), join("after", detail[1])}; a.keyWidth(long, true, true) < a.area.Max.X-a.yTitle-a.st.Small {
+			words = long
+		}
+	case before || after:
+		words = detail
+	}
 	s := a.st
 	y := a.area.Max.Y + 1.1*s.Small
 	x := a.area.Max.X
-	if after && !before { // one outcome alone is neither before nor after
-		words[1] = strings.TrimPrefix(strings.TrimPrefix(words[1], "after"), ", ")
-		if words[1] == "" {
-			return
-		}
+	if after && words[1] != "" {
+		a.writeBold(x, y, right, s.Small, s.After, words[1])
+		x -= a.keyWidth(words, false, true) - 1.6*s.Small
+		a.fill(rect(x-1.5*s.Small, y-0.35*s.Small, x-0.6*s.Small, y+0.35*s.Small), s.After)
+		x -= 2.4 * s.Small
+	}
+	if before && words[0] != "" {
+		a.write(x, y, right, s.Small, s.Muted, words[0])
+		x -= a.keyWidth(words, true, false) - 1.6*s.Small
+		a.box(rect(x-1.5*s.Small, y-0.35*s.Small, x-0.6*s.Small, y+0.35*s.Small), s.Line, s.Before, nil)
+	}
+}
+
+func join(word, detail string) string {
+	if detail == "" {
+		return word
+	}
+	return word + ", " + detail
+}
+
+// keyWidth returns the room that words and marks take.
+func (a *axes) keyWidth(words [2]string, before, after bool) vg.Length {
+	s := a.st
+	w := vg.Length(0)
+	if before {
+		w += a.width(s.Small, words[0]) + 1.6*s.Small
 	}
 	if after {
-		a.writeBold(x, y, right, s.Small, s.After, words[1])
-		x -= a.width(s.Small, words[1]) + 2.6*s.Small
-		a.fill(rect(x+0.6*s.Small, y-0.35*s.Small, x+1.5*s.Small, y+0.35*s.Small), s.After)
+		w += s.text(s.Small, s.After, true, false).Width(words[1]) + 1.6*s.Small
 	}
-	if before {
-		x -= 0.4 * s.Small
-		a.write(x, y, right, s.Small, s.Muted, words[0])
-		x -= a.width(s.Small, words[0]) + 2*s.Small
-		a.box(rect(x+0.6*s.Small, y-0.35*s.Small, x+1.5*s.Small, y+0.35*s.Small), s.Line, s.Before, nil)
+	if before && after {
+		w += 0.9 * s.Small
 	}
+	return w
 }

@@ -77,7 +77,7 @@ func drawImpedance(p *pen, b, a *study.ScanResult, sources []int) []Hot {
 	}
 	lo = math.Max(lo, hi*1e-5)
 	x := p.open("", "ohm", "harmonic order")
-	x.key(b != nil, a != nil, [2]string{"before", "after"})
+	x.key(b != nil, a != nil, [2]string{})
 	x.x0, x.x1 = any.Orders[0], any.Orders[len(any.Orders)-1]
 	x.scaleLog(lo, hi*1.3)
 	for _, h := range sources {

@@ -10,7 +10,7 @@ const Step = 12
 
 // Sizes of the single-line, in steps.
 const (
-	columnWidth  = 11.0
+	columnWidth  = 10.4
 	columnGap    = 1.2
 	busHead      = 3.0 // from the top of a bus's place to its bar: name and distortion
 	rowHeight    = 1.75

@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"sort"
+	"strings"
 
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
@@ -47,7 +48,7 @@ func shares(before, after *study.Outcome) (list []share, open []string) {
 			}
 		}
 		for _, r := range p.Rows {
-			s := share{name: p.Name + "  " + study.RowName(r), rule: r.Rule, before: math.NaN(), after: r.Share,
+			s := share{name: p.Name + "  " + strings.Replace(study.RowName(r), " harmonic ", " ", 1), rule: r.Rule, before: math.NaN(), after: r.Share,
 				detail: fmt.Sprintf("%s %% against %s %%", number(r.Value), number(r.Limit))}
 			if v, ok := old[study.RowName(r)]; ok {
 				s.before = v
@@ -80,7 +81,7 @@ func drawMargins(p *pen, list []share, both bool) []Hot {
 	for _, l := range list {
 		names = max(names, p.width(s.Small, l.name))
 	}
-	names = min(names, 0.45*(r.Max.X-r.Min.X))
+	names = min(names, 0.5*(r.Max.X-r.Min.X))
 	x0 := r.Min.X + pad + names + 0.8*s.Small
 	x1 := r.Max.X - pad - 5.2*s.Small
 	most := 1.25

@@ -116,7 +116,7 @@ func (d *diagram) bus(b *PlacedBus) {
 	}
 	d.fill(rect(x0, y-1.3, x1, y+1.3), ink)
 	text := d.wordsAt(b)
-	d.writeBold(text, y+24, left, d.st.Body, ink, d.fit(d.st.Body, x1-text-44, b.Name))
+	d.writeBold(text, y+24, left, d.st.Head, ink, d.fit(d.st.Head, x1-text-44, b.Name))
 	words := d.voltage(b.Name)
 	switch {
 	case dead:
@@ -282,9 +282,8 @@ func (d *diagram) row(b *PlacedBus, row Row, stem, y float64) {
 	d.symbol(row.Kind, q, 6, d.st.Line, ink)
 	x := q.X + 11
 	end := px(b.X + min(b.W, columnWidth))
-	name := d.fit(d.st.Small, end-x, row.Name)
-	d.write(x, q.Y+4, left, d.st.Small, ink, name)
-	d.write(x, q.Y-4.5, left, d.st.Small*0.92, d.st.Muted, d.fit(d.st.Small*0.92, end-x, d.rating(row)))
+	d.write(x, q.Y+4.6, left, d.st.Body, ink, d.fit(d.st.Body, end-x, row.Name))
+	d.write(x, q.Y-4.5, left, d.st.Small, d.st.Muted, d.fit(d.st.Small, end-x, d.rating(row)))
 	r := rect(px(stem), q.Y-9, end, q.Y+9)
 	d.frame(row.Name, r)
 	d.hot(r, "item", row.Name, row.Name+"\n"+study.InfoOf(row.Kind).Singular+"\n"+d.rating(row))
@@ -395,8 +394,8 @@ func (d *diagram) measure(b *PlacedBus, row Row, stem, y float64) {
 		d.toggle(rect(end-22, q.Y-6, end, q.Y+6), on)
 		d.hot(rect(end-24, q.Y-9, end+2, q.Y+9), "switch", m.Name, m.Name+"\n"+map[bool]string{true: "on: tap to switch off", false: "off: tap to switch on"}[on])
 	}
-	d.write(x, q.Y+4, left, d.st.Small, ink, d.fit(d.st.Small, room, m.Name))
-	d.write(x, q.Y-4.5, left, d.st.Small*0.92, d.st.Muted, d.fit(d.st.Small*0.92, room, MeasureWords(m)))
+	d.write(x, q.Y+4.6, left, d.st.Body, ink, d.fit(d.st.Body, room, m.Name))
+	d.write(x, q.Y-4.5, left, d.st.Small, d.st.Muted, d.fit(d.st.Small, room, MeasureWords(m)))
 	r := rect(px(stem), q.Y-9, end-24, q.Y+9)
 	d.frame(m.Name, r)
 	d.hot(r, "measure", m.Name, m.Name+"\n"+MeasureWords(m))

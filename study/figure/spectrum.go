@@ -202,7 +202,7 @@ func drawSpectrum(p *pen, sel Selection, b, a series, rows map[int]limits.Row, s
 	carried, top, last := carrying(b, a, rows)
 	x := p.open("", unit, "harmonic order")
 	thd := thdWords(b, a)
-	x.key(b.ok, a.ok, [2]string{"before" + thd[0], "after" + thd[1]})
+	x.key(b.ok, a.ok, thd)
 	x.x0, x.x1 = 1.2, float64(last)+0.8
 	x.scaleY(top*1.12, false)
 	slot := (x.area.Max.X - x.area.Min.X) / vg.Length(x.x1-x.x0)
@@ -221,10 +221,10 @@ func drawSpectrum(p *pen, sel Selection, b, a series, rows map[int]limits.Row, s
 
 func thdWords(b, a series) (out [2]string) {
 	if b.ok {
-		out[0] = ", THD " + number(b.thd) + " %"
+		out[0] = "THD " + number(b.thd) + " %"
 	}
 	if a.ok {
-		out[1] = ", THD " + number(a.thd) + " %"
+		out[1] = "THD " + number(a.thd) + " %"
 	}
 	return out
 }

@@ -67,7 +67,7 @@ func drawWaveform(p *pen, sel Selection, curves [2][]float64, unit string, perio
 		}
 	}
 	x := p.open("", unit, "ms")
-	x.key(curves[0] != nil, curves[1] != nil, [2]string{"before", "after"})
+	x.key(curves[0] != nil, curves[1] != nil, [2]string{})
 	x.x0, x.x1 = 0, period
 	x.scaleY(top, true)
 	x.base(0)
