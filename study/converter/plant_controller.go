@@ -70,5 +70,6 @@ func buildController(n Nameplate, t Terminal) *plant {
 			c.Units = append(c.Units, piecewise.Valve{Branch: b, Plus: 2 * b, Minus: 2*b + 1})
 		}
 	}
+	p.symmetries(nb == 3)
 	return p
 }

@@ -91,6 +91,9 @@ func buildRectifier(n Nameplate, t Terminal, at []float64) *plant {
 	for i := range p.links {
 		p.directSide(n, i, w, at)
 	}
+	if !half {
+		p.symmetries(n.Kind.threePhase())
+	}
 	return p
 }
 
@@ -173,6 +176,7 @@ func (p *plant) directSide(n Nameplate, i int, w float64, at []float64) {
 			c.S[d][v] = 1
 		}
 		c.Y[v] = w * n.CapacitorF
+		c.Rest[v] = 0.985 * (l.crest - p.drop[l.direct[0]])
 		volts := 0.9 * (l.crest - p.drop[l.direct[0]])
 		switch n.Load {
 		case ConstantPower:

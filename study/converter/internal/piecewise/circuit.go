@@ -14,8 +14,11 @@ type Circuit struct {
 	Y     []float64    // nv: susceptance, S
 	G     []float64    // nv: conductance across the capacitor, S
 	Draw  [][]float64  // nv x nc: constant currents into the capacitor, A
+	Rest  []float64    // nv: V, to which a capacitor that nothing charges is brought down during the search
 	Units []Unit
 	Gates []Gate // gate signals; a trigger's need mask refers to their bits
+
+	Symmetries []Symmetry // that the circuit has by itself
 
 	Controls []Control // one for each free parameter, in their order
 
@@ -58,7 +61,7 @@ func (c *Circuit) states() int { return c.nb() + c.nv() + c.nc() }
 func NewCircuit(nb, nv, np int) *Circuit {
 	c := &Circuit{
 		X: square(nb), R: square(nb), K: make([][3]float64, nb), S: rows(nb, nv), EMF: rows(nb, 1+np),
-		Y: make([]float64, nv), G: make([]float64, nv), Draw: rows(nv, 1+np), Controls: make([]Control, np),
+		Y: make([]float64, nv), G: make([]float64, nv), Draw: rows(nv, 1+np), Rest: make([]float64, nv), Controls: make([]Control, np),
 		Volt: 1, Amp: 1,
 	}
 	return c

@@ -56,12 +56,36 @@ func (e *engine) lines(order int) [3]phasor.Spectrum {
 		za, zb = zb, za
 	}
 	e.ka, e.kb, e.za, e.zb2, e.force = ka, kb, za, zb, f
+	e.allParts(out)
 	for q := range out {
 		for k := range out[q] {
 			out[q][k] *= complex(math.Sqrt2/(2*math.Pi), 0)
 		}
 	}
 	return out
+}
+
+// allParts adds to the integrals over one part of the period those over the
+// others: part r contributes (-1)^r e^-jkrT/m times those of the exchanged lines.
+func (e *engine) allParts(f [3]phasor.Spectrum) {
+	if e.sym == nil {
+		return
+	}
+	for k := range f[0] {
+		z := -turn(-float64(k) * e.span())
+		now, sum := [3]complex128{f[0][k], f[1][k], f[2][k]}, [3]complex128{}
+		for r := 0; r < e.parts; r++ {
+			var next [3]complex128
+			for q := range sum {
+				sum[q] += now[q]
+				next[q] = z * now[e.sym.Phase[q]]
+			}
+			now = next
+		}
+		for q := range f {
+			f[q][k] = sum[q]
+		}
+	}
 }
 
 // grown returns a slice of n entries, reusing v.

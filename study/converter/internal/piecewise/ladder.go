@@ -17,6 +17,7 @@ const doublings = 8
 // the relative accuracy of slow modes through the doublings.
 type ladder struct {
 	n, d, np int
+	norm     float64     // largest row sum of A
 	taus     []float64   // descending
 	D        [][]float64 // n x d each
 	W        [][]float64 // np x d each
@@ -54,6 +55,7 @@ func newLadder(m *mode, c *Circuit) *ladder {
 		}
 		norm = math.Max(norm, sum)
 	}
+	l.norm = norm
 	rungs := doublings + 1
 	tau := cell
 	for tau*norm > short && rungs < 60 {

@@ -2,7 +2,6 @@ package piecewise
 
 import (
 	"context"
-	"fmt"
 	"math"
 )
 
@@ -15,63 +14,77 @@ import (
 // Order of both; the free parameters follow as their controls demand and the
 // gates as the fundamentals turn.
 type Linearisation struct {
-	Order          int
-	direct, mirror []complex128 // 3 Order x 3 Order
+	Order    int
+	up, down []complex128 // (k, h, sequence of current, sequence of voltage)
 }
+
+// sequence holds the phases of the zero, positive and negative sequence.
+var sequence = func() (a [3][3]complex128) {
+	for s := range a {
+		for q := range a[s] {
+			a[s][q] = turn(-2 * math.Pi / 3 * float64(s*q))
+		}
+	}
+	return a
+}()
+
+func (l *Linearisation) index(k, h int) int { return ((k-1)*l.Order + h - 1) * 9 }
 
 // At returns Direct and Mirror of current order k and voltage order h.
 func (l *Linearisation) At(k, h int) (direct, mirror [3][3]complex128) {
-	n := 3 * l.Order
-	for p := 0; p < 3; p++ {
-		for q := 0; q < 3; q++ {
-			i := (3*(k-1)+p)*n + 3*(h-1) + q
-			direct[p][q], mirror[p][q] = l.direct[i], l.mirror[i]
+	i := l.index(k, h)
+	up, down := fromSequence(l.up[i:i+9]), fromSequence(l.down[i:i+9])
+	for p := range down {
+		for q := range down[p] {
+			down[p][q] = conj(down[p][q])
 		}
 	}
-	return direct, mirror
+	return up, down
+}
+
+// fromSequence turns a 3 x 3 matrix of sequences into one of phases.
+func fromSequence(m []complex128) (out [3][3]complex128) {
+	for s := 0; s < 3; s++ {
+		for t := 0; t < 3; t++ {
+			v := m[s*3+t] / 3
+			if v == 0 {
+				continue
+			}
+			for p := range out {
+				for q := range out[p] {
+					out[p][q] += sequence[s][p] * v * conj(sequence[t][q])
+				}
+			}
+		}
+	}
+	return out
 }
 
 // Linearise returns the linearisation of the orbit for orders 1..order.
 //
-// A complex voltage e^jht drives the periodically time-varying system of the
-// variations: in a segment dx = X_h e^jht plus a transient, over a change it
-// passes the saltation matrix. Its periodic solution has current orders of
-// both signs; those below zero are the conjugate couplings.
+// A complex voltage e^jht of one sequence drives the periodically time-varying
+// system of the variations: in a segment dx = X_h e^jht plus a transient, over
+// a change it passes the saltation matrix. Its periodic solution has current
+// orders of both signs; those below zero are the conjugate couplings. Under a
+// symmetry only one part is gone through: the variation repeats there up to a
+// factor, which leaves only the orders that agree with it.
 func (o *Orbit) Linearise(ctx context.Context, order int) (*Linearisation, error) {
 	o.solver.mu.Lock()
 	defer o.solver.mu.Unlock()
-	c := o.solver.e.c
-	var inputs [3]bool
-	for _, k := range c.K {
-		for q := range inputs {
-			inputs[q] = inputs[q] || k[q] != 0
-		}
-	}
-	v := newVariation(o, c, order)
-	if err := v.close(); err != nil {
-		return nil, err
-	}
-	n := 3 * order
-	l := &Linearisation{Order: order, direct: make([]complex128, n*n), mirror: make([]complex128, n*n)}
+	v := newVariation(o, order)
+	l := &Linearisation{Order: order, up: make([]complex128, order*order*9), down: make([]complex128, order*order*9)}
 	for h := 1; h <= order; h++ {
 		if err := ctx.Err(); err != nil {
 			return nil, err
 		}
-		for q := range inputs {
-			if !inputs[q] {
+		for s := 0; s < 3; s++ {
+			if s == 0 && !v.zero {
 				continue
 			}
-			if err := v.drive(h, q); err != nil {
-				return nil, err
+			if !v.drive(h, s) {
+				return nil, ErrNotPeriodic
 			}
-			for k := 1; k <= order; k++ {
-				up, down := v.coefficients(h, q, k)
-				for p := 0; p < 3; p++ {
-					i := (3*(k-1)+p)*n + 3*(h-1) + q
-					l.direct[i] = up[p]
-					l.mirror[i] = complex(real(down[p]), -imag(down[p]))
-				}
-			}
+			v.read(l, h, s)
 		}
 	}
 	return l, nil
@@ -79,79 +92,213 @@ func (o *Orbit) Linearise(ctx context.Context, order int) (*Linearisation, error
 
 // A variation is the work space of a linearisation.
 type variation struct {
-	o       *Orbit
-	c       *Circuit
-	order   int
-	inv     [][]complex128 // by segment: (jkI - A)^-1 blocks
-	turns   [][]complex128 // by boundary: e^jk theta, k = 0..2 order
-	flow    []float64      // d0 x d0 derivative over the period
-	means   []float64      // np x d0
-	lu      []float64      // (n0+np)^2 Newton matrix
-	n0, np  int
-	d0      int
-	rowsOut [][]complex128 // by segment: order x 3 x n: out (jkI - A)^-1
-
-	xa, xb [][]complex128 // by segment: variation at both ends, d
-	X      [][]complex128 // by segment: driven part, n
+	o      *Orbit
+	c      *Circuit
+	order  int
+	zero   bool // the circuit sees the zero sequence
+	parts  int
+	at     []place
+	flow   []float64 // d0 x d0: derivative over the part, in the frame of its start
+	means  []float64 // np x d0
+	home   []float64 // d0 x dEnd, nil without symmetry
+	n0, d0 int
+	np     int
 }
 
-func newVariation(o *Orbit, c *Circuit, order int) *variation {
-	v := &variation{o: o, c: c, order: order, n0: o.segs[0].m.n, d0: o.segs[0].m.d, np: len(c.Controls)}
-	powers := func(theta float64) []complex128 {
-		z := make([]complex128, 2*order+1)
-		for k := range z {
-			z[k] = turn(float64(k) * theta)
-		}
-		return z
+// A place is one segment in a linearisation.
+type place struct {
+	*segment
+	*link
+	inv    []complex128    // (jkI - A)^-1
+	za, zb []complex128    // e^jk theta at both ends, k = 0..2 order
+	turns  []complex128    // integral of e^jk theta, k = -order..2 order
+	B      [][3]complex128 // n: forces by sequence
+	xa, xb []complex128    // variation at both ends, d
+	X      []complex128    // driven part, n
+	xi     []complex128
+	up     reading // at +k
+	down   reading // at -k
+}
+
+// A reading turns the variation over one segment into Fourier integrals of the
+// line currents, by order (from 1) and sequence of the current.
+type reading struct {
+	start, end []complex128 // 3 x n: weights of the states at both ends
+	force      []complex128 // 3 x 3: weight of the integral of the driving
+	held       []complex128 // 3 x nc: weight of the integral of the constants
+}
+
+func newVariation(o *Orbit, order int) *variation {
+	e := o.solver.e
+	v := &variation{o: o, c: e.c, order: order, parts: o.parts, n0: o.segs[0].m.n, d0: o.segs[0].m.d, np: len(e.c.Controls)}
+	for _, k := range e.c.K {
+		v.zero = v.zero || math.Abs(k[0]+k[1]+k[2]) > 1e-9
 	}
-	v.turns = append(v.turns, powers(o.segs[0].a))
-	for _, s := range o.segs {
-		v.turns = append(v.turns, powers(s.b))
-		v.inv = append(v.inv, s.m.inverse(order))
-		v.xa = append(v.xa, make([]complex128, s.m.d))
-		v.xb = append(v.xb, make([]complex128, s.m.d))
-		v.X = append(v.X, make([]complex128, s.m.n))
-		v.rowsOut = append(v.rowsOut, s.m.outputs(order))
+	for i := range o.segs {
+		v.at = append(v.at, newPlace(&o.segs[i], &o.links[i], order))
 	}
+	// derivative works on the engine's pass: lend it that of the orbit
+	segs, links, sym, parts := e.segs, e.links, e.sym, e.parts
+	e.segs, e.links, e.sym, e.parts = o.segs, o.links, o.sym, o.parts
+	flow, means := e.derivative()
+	v.flow, v.means = append([]float64(nil), flow[:v.d0*v.d0]...), append([]float64(nil), means...)
+	if _, _, H := e.home(); H != nil {
+		v.home = append([]float64(nil), H...)
+	}
+	e.segs, e.links, e.sym, e.parts = segs, links, sym, parts
 	return v
 }
 
-// close prepares the matrix that makes a variation periodic.
-func (v *variation) close() error {
-	e := v.o.solver.e
-	// derivative works on the engine's segments: lend it those of the orbit
-	segs, links := e.segs, e.links
-	e.segs, e.links = v.o.segs, v.o.links
-	flow, means := e.derivative()
-	v.flow = append([]float64(nil), flow[:v.d0*v.d0]...)
-	v.means = append([]float64(nil), means...)
-	e.segs, e.links = segs, links
+func newPlace(s *segment, l *link, order int) place {
+	m := s.m
+	n, nc := m.n, m.d-m.n
+	p := place{
+		segment: s, link: l, inv: m.inverse(order),
+		za: make([]complex128, 2*order+1), zb: make([]complex128, 2*order+1), turns: make([]complex128, 3*order+1),
+		B: make([][3]complex128, n), xa: make([]complex128, m.d), xb: make([]complex128, m.d), X: make([]complex128, n), xi: make([]complex128, m.d),
+	}
+	for k := range p.za {
+		p.za[k], p.zb[k] = turn(float64(k)*s.a), turn(float64(k)*s.b)
+	}
+	for k := -order; k <= 2*order; k++ {
+		if k == 0 {
+			p.turns[order] = complex(s.b-s.a, 0)
+		} else {
+			p.turns[order+k] = (signed(p.zb, k) - signed(p.za, k)) * complex(0, -1/float64(k))
+		}
+	}
+	for j := range p.B {
+		for t := range p.B[j] {
+			for q := 0; q < 3; q++ {
+				p.B[j][t] += complex(m.B[j*3+q], 0) * sequence[t][q]
+			}
+		}
+	}
+	outs := m.outputs(order)
+	fill := func(r *reading, down bool) {
+		r.start, r.end = make([]complex128, order*3*n), make([]complex128, order*3*n)
+		r.force, r.held = make([]complex128, order*9), make([]complex128, order*3*nc)
+		for k := 1; k <= order; k++ {
+			za, zb, one := conj(p.za[k]), conj(p.zb[k]), p.turns[order-k]
+			if down {
+				za, zb, one = p.za[k], p.zb[k], p.turns[order+k]
+			}
+			for s := 0; s < 3; s++ {
+				row := (k-1)*3 + s
+				for j := 0; j < n; j++ {
+					// component of the sequence in (jkI - A)^-1, or its conjugate
+					var g complex128
+					for q := 0; q < 3; q++ {
+						z := outs[(k*3+q)*n+j]
+						if down {
+							z = conj(z)
+						}
+						g += conj(sequence[s][q]) * z
+					}
+					g /= 3
+					r.start[row*n+j], r.end[row*n+j] = g*za, -g*zb
+					for t := range p.B[j] {
+						r.force[row*3+t] += g * p.B[j][t]
+					}
+					for c := 0; c < nc; c++ {
+						r.held[row*nc+c] += g * complex(m.A[j*m.d+n+c], 0) * one
+					}
+				}
+			}
+		}
+	}
+	fill(&p.up, false)
+	fill(&p.down, true)
+	return p
+}
 
+// factor is what the variation under e^jht of a sequence is multiplied by from
+// one part of the period to the next.
+func (v *variation) factor(h, s int) complex128 {
+	if v.o.sym == nil {
+		return 1
+	}
+	return turn(2*math.Pi*float64(h)/float64(v.parts)) / v.own(s)
+}
+
+// own is the factor by which a sequence itself turns under the symmetry.
+func (v *variation) own(s int) complex128 {
+	if v.o.sym == nil {
+		return 1
+	}
+	return -sequence[s][v.o.sym.Phase[0]]
+}
+
+// drive fills xa, xb and X with the periodic variation under e^jht of sequence s.
+func (v *variation) drive(h, s int) bool {
+	for i := range v.at {
+		p := &v.at[i]
+		n := p.m.n
+		for r := 0; r < n; r++ {
+			var sum complex128
+			for j := 0; j < n; j++ {
+				sum += p.inv[(h*n+r)*n+j] * p.B[j][s]
+			}
+			p.X[r] = sum
+		}
+	}
+	// once with a zero start, for the right-hand side; once with the solution
+	clear(v.at[0].xa)
+	end, means := v.run(h, s)
+	f := v.factor(h, s)
+	// the parameters repeat, so they stand still unless the factor is 1
+	held := cabs1(f-1) > 1e-9
 	size := v.n0 + v.np
-	v.lu = make([]float64, size*size)
+	a, b := make([]float64, 4*size*size), make([]float64, 2*size)
+	set := func(i, j int, z complex128) {
+		a[2*i*2*size+2*j], a[2*i*2*size+2*j+1] = real(z), -imag(z)
+		a[(2*i+1)*2*size+2*j], a[(2*i+1)*2*size+2*j+1] = imag(z), real(z)
+	}
 	for i := 0; i < v.n0; i++ {
 		for j := 0; j < v.n0; j++ {
-			v.lu[i*size+j] = -v.flow[i*v.d0+j]
+			z := complex(-v.flow[i*v.d0+j], 0)
+			if i == j {
+				z += f
+			}
+			set(i, j, z)
 		}
-		v.lu[i*size+i]++
 		for j := 0; j < v.np; j++ {
-			v.lu[i*size+v.n0+j] = -v.flow[i*v.d0+v.n0+1+j]
+			set(i, v.n0+j, complex(-v.flow[i*v.d0+v.n0+1+j], 0))
 		}
+		b[2*i], b[2*i+1] = real(end[i]), imag(end[i])
 	}
+	span := 2 * math.Pi / float64(v.parts)
 	for c, w := range v.o.watts {
-		row := v.lu[(v.n0+c)*size : (v.n0+c+1)*size]
-		gain := w.gain()
-		if w.Power {
-			row[v.n0+c] += w.mean
+		row := v.n0 + c
+		if held {
+			set(row, row, 1)
+			continue
 		}
+		g := w.gain()
 		for j := 0; j < v.n0; j++ {
-			row[j] += gain * v.means[c*v.d0+j] / (2 * math.Pi)
+			set(row, j, complex(g*v.means[c*v.d0+j]/span, 0))
 		}
 		for j := 0; j < v.np; j++ {
-			row[v.n0+j] += gain * v.means[c*v.d0+v.n0+1+j] / (2 * math.Pi)
+			z := g * v.means[c*v.d0+v.n0+1+j] / span
+			if w.Power && j == c {
+				z += w.mean
+			}
+			set(row, v.n0+j, complex(z, 0))
 		}
+		b[2*row], b[2*row+1] = -g*real(means[c]), -g*imag(means[c])
 	}
-	return nil
+	if !solve(a, 2*size, b, 1) {
+		return false
+	}
+	xa := v.at[0].xa
+	for i := 0; i < v.n0; i++ {
+		xa[i] = complex(b[2*i], b[2*i+1])
+	}
+	for c := 0; c < v.np; c++ {
+		xa[v.n0+1+c] = complex(b[2*(v.n0+c)], b[2*(v.n0+c)+1])
+	}
+	v.run(h, s)
+	return true
 }
 
 // gain is the derivative of the controlled average by the mean of its state.
@@ -162,97 +309,65 @@ func (w control) gain() float64 {
 	return 1
 }
 
-// drive fills xa, xb and X with the periodic variation under e^jht on phase q.
-func (v *variation) drive(h, q int) error {
-	segs := v.o.segs
-	for i := range segs {
-		m := segs[i].m
-		n := m.n
-		for r := 0; r < n; r++ {
-			var sum complex128
-			for j := 0; j < n; j++ {
-				if b := m.B[j*3+q]; b != 0 {
-					z := v.inv[i][(h*n+r)*n+j]
-					sum += complex(b*real(z), b*imag(z))
-				}
-			}
-			v.X[i][r] = sum
-		}
-	}
-	// once with a zero start, for the right-hand side; once with the solution
-	clear(v.xa[0])
-	end, means := v.run(h, q)
-	size := v.n0 + v.np
-	rhs := make([]float64, size*2)
-	for i := 0; i < v.n0; i++ {
-		rhs[2*i], rhs[2*i+1] = real(end[i]), imag(end[i])
-	}
-	for c, w := range v.o.watts {
-		g := w.gain()
-		rhs[2*(v.n0+c)], rhs[2*(v.n0+c)+1] = -g*real(means[c]), -g*imag(means[c])
-	}
-	if !solve(append([]float64(nil), v.lu...), size, rhs, 2) {
-		return fmt.Errorf("the periodic state has no linearisation: %w", ErrNotPeriodic)
-	}
-	for i := 0; i < v.n0; i++ {
-		v.xa[0][i] = complex(rhs[2*i], rhs[2*i+1])
-	}
-	for c := 0; c < v.np; c++ {
-		v.xa[0][v.n0+1+c] = complex(rhs[2*(v.n0+c)], rhs[2*(v.n0+c)+1])
-	}
-	v.run(h, q)
-	return nil
-}
-
-// run carries the variation through the period from xa[0]. It returns its end
-// and the means of the controlled states.
-func (v *variation) run(h, q int) (end []complex128, means []complex128) {
+// run carries the variation from xa of the first place through the part. It
+// returns its end in the frame of the start, and the means of the controlled
+// states.
+func (v *variation) run(h, s int) (end, means []complex128) {
 	means = make([]complex128, v.np)
-	for i := range v.o.segs {
-		s, l := &v.o.segs[i], &v.o.links[i]
-		m := s.m
-		za, zb := v.turns[i][h], v.turns[i+1][h]
-		xa, xb, X := v.xa[i], v.xb[i], v.X[i]
+	span := complex(2*math.Pi/float64(v.parts), 0)
+	for i := range v.at {
+		p := &v.at[i]
+		m := p.m
+		za, zb := p.za[h], p.zb[h]
 		// transient part at the start
-		xi := make([]complex128, m.d)
-		copy(xi, xa)
-		for r := range X {
-			xi[r] -= X[r] * za
+		copy(p.xi, p.xa)
+		for r, x := range p.X {
+			p.xi[r] -= x * za
 		}
-		copy(xb, xi)
+		copy(p.xb, p.xi)
 		for r := 0; r < m.n; r++ {
-			xb[r] += rowTimes(l.D[r*m.d:(r+1)*m.d], xi) + X[r]*zb
+			p.xb[r] += rowTimes(p.D[r*m.d:(r+1)*m.d], p.xi) + p.X[r]*zb
 		}
 		for c := 0; c < v.np; c++ {
-			sum := rowTimes(l.W[c*m.d:(c+1)*m.d], xi)
+			sum := rowTimes(p.W[c*m.d:(c+1)*m.d], p.xi)
 			for j, g := range m.steps.seen[c*m.d : c*m.d+m.n] {
 				if g != 0 {
-					sum += complex(g, 0) * X[j] * (zb - za) / complex(0, float64(h))
+					sum += complex(g, 0) * p.X[j] * p.turns[v.order+h]
 				}
 			}
-			means[c] += sum / complex(2*math.Pi, 0)
+			means[c] += sum / span
 		}
-		if l.S == nil {
-			return xb, means
+		if p.S == nil {
+			if v.home == nil {
+				return p.xb, means
+			}
+			end = make([]complex128, v.d0)
+			for r := range end {
+				end[r] = rowTimes(v.home[r*m.d:(r+1)*m.d], p.xb)
+			}
+			return end, means
 		}
-		n := v.o.segs[i+1].m
-		xn := v.xa[i+1]
-		for r := 0; r < n.d; r++ {
-			xn[r] = rowTimes(l.S[r*m.d:(r+1)*m.d], xb)
+		next := &v.at[i+1]
+		for r := range next.xa {
+			next.xa[r] = rowTimes(p.S[r*m.d:(r+1)*m.d], p.xb)
 		}
+		var shift complex128
 		switch {
-		case s.gate >= 0:
+		case p.gate >= 0:
 			if h == 1 {
 				// the gate moves by minus the turn of its reference
-				shift := v.o.gateTurn(v.c.Gates[s.gate], q)
-				for r, g := range l.jump {
-					xn[r] += complex(g, 0) * shift
-				}
+				shift = v.o.gateTurn(v.c.Gates[p.gate], s)
 			}
-		case l.rate != 0:
-			du := complex(m.watch[s.by].u[q]/l.rate, 0) * zb
-			for r, g := range l.jump {
-				xn[r] += complex(g, 0) * du
+		case p.rate != 0:
+			u := &m.watch[p.by].u
+			for q := range u {
+				shift += complex(u[q]/p.rate, 0) * sequence[s][q]
+			}
+			shift *= zb
+		}
+		if shift != 0 {
+			for r, g := range p.jump {
+				next.xa[r] += complex(g, 0) * shift
 			}
 		}
 	}
@@ -260,56 +375,68 @@ func (v *variation) run(h, q int) (end []complex128, means []complex128) {
 }
 
 // gateTurn returns the turn of a gate's reference under the complex voltage
-// e^jt on phase q. The reference phasor (rms) changes by Ref_q / sqrt(2); of
-// the turn, the imaginary part of the relative change, only the half that
-// goes with e^jt counts here, its conjugate goes with e^-jt.
-func (o *Orbit) gateTurn(g Gate, q int) complex128 {
-	ref := g.Ref[0]*o.first[0] + g.Ref[1]*o.first[1] + g.Ref[2]*o.first[2]
-	// u = Re(sqrt(2) dV e^jt) = (dV/sqrt(2)) e^jt + its conjugate
-	dv := complex(math.Sqrt2, 0)
-	return g.Ref[q] * dv / ref / complex(0, 2)
+// e^jt of sequence s. A voltage change dV (rms) is (dV / sqrt 2) e^jt and its
+// conjugate; the turn, the imaginary part of Ref dV over the reference, has
+// likewise a half that goes with dV, which counts here, and its conjugate.
+func (o *Orbit) gateTurn(g Gate, s int) complex128 {
+	var ref, dv complex128
+	for q := range g.Ref {
+		ref += g.Ref[q] * o.first[q]
+		dv += g.Ref[q] * sequence[s][q]
+	}
+	return complex(math.Sqrt2, 0) * dv / ref / complex(0, 2)
 }
 
-// coefficients returns the Fourier coefficients of the line currents at +k and
-// -k of the variation under e^jht on phase q.
-func (v *variation) coefficients(h, q, k int) (up, down [3]complex128) {
-	for i := range v.o.segs {
-		s := &v.o.segs[i]
-		m := s.m
-		n := m.n
-		za, zb := v.turns[i], v.turns[i+1]
-		// integrals of e^j(h-k)t, e^j(h+k)t and e^-jkt over the segment
-		var minus complex128
-		if h == k {
-			minus = complex(s.b-s.a, 0)
-		} else {
-			minus = (signed(zb, h-k) - signed(za, h-k)) / complex(0, float64(h-k))
-		}
-		plus := (zb[h+k] - za[h+k]) / complex(0, float64(h+k))
-		oneUp := (signed(zb, -k) - signed(za, -k)) / complex(0, -float64(k))
-		cb, ca := signed(zb, -k), signed(za, -k)
-		block := v.rowsOut[i][k*3*n : (k+1)*3*n]
-		for j := 0; j < n; j++ {
-			b := complex(m.B[j*3+q], 0)
-			var held complex128
-			for c := n + 1; c < m.d; c++ {
-				held += complex(m.A[j*m.d+c], 0) * v.xa[i][c]
+// read adds the Fourier coefficients of the line currents of the variation
+// under e^jht of sequence s to the linearisation.
+func (v *variation) read(l *Linearisation, h, s int) {
+	scale := complex(float64(v.parts)/(2*math.Pi), 0)
+	f := v.factor(h, s)
+	for k := 1; k <= v.order; k++ {
+		out := l.index(k, h)
+		z := turn(2 * math.Pi * float64(k) / float64(v.parts))
+		for q := 0; q < 3; q++ {
+			if q == 0 && !v.zero {
+				continue
 			}
-			xb, xa := v.xb[i][j], v.xa[i][j]
-			fu := b*minus + held*oneUp - xb*cb + xa*ca
-			fd := b*plus + held*conj(oneUp) - xb*zb[k] + xa*za[k]
-			for p := 0; p < 3; p++ {
-				r := block[p*n+j]
-				up[p] += r * fu
-				down[p] += conj(r) * fd
+			// part r gives its integral times (factor own(q) / z)^r: a sum of
+			// parts, or nothing
+			own := v.own(q)
+			if cabs1(f*own-z) < 1e-9 {
+				l.up[out+q*3+s] = scale * v.coefficient(k, q, s, h-k, false)
+			}
+			if cabs1(f*own-conj(z)) < 1e-9 {
+				l.down[out+q*3+s] = scale * v.coefficient(k, q, s, h+k, true)
 			}
 		}
 	}
-	for p := range up {
-		up[p] /= complex(2*math.Pi, 0)
-		down[p] /= complex(2*math.Pi, 0)
+}
+
+// coefficient returns the integral of sequence q of the line currents at +k or
+// -k over the part; turn is the order of the driving in that frame.
+func (v *variation) coefficient(k, q, s, turn int, down bool) (sum complex128) {
+	row := (k-1)*3 + q
+	for i := range v.at {
+		p := &v.at[i]
+		r := &p.up
+		if down {
+			r = &p.down
+		}
+		n := p.m.n
+		sum += r.force[row*3+s] * p.turns[v.order+turn]
+		start, end := r.start[row*n:(row+1)*n], r.end[row*n:(row+1)*n]
+		xa, xb := p.xa[:n], p.xb[:n]
+		for j, g := range start {
+			sum += g*xa[j] + end[j]*xb[j]
+		}
+		nc := p.m.d - n
+		for c, x := range p.xa[n:] {
+			if x != 0 {
+				sum += r.held[row*nc+c] * x
+			}
+		}
 	}
-	return up, down
+	return sum
 }
 
 func signed(z []complex128, k int) complex128 {

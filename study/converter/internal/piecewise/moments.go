@@ -32,11 +32,18 @@ func (e *engine) moments() [][]float64 {
 		e.s.value(e.zh, &u)
 		copy(xa, s.xa[:n])
 		m.slope(s.xa, &u, da)
+		fine := 0.3 / m.steps.norm // panels of a fast transient
 		for k := int(s.a/cell) + 1; ; k++ {
 			to := cell * float64(k)
 			done := to >= s.b
 			if done {
 				to = s.b
+			}
+			if next := from + math.Max(fine, 0.25*(from-s.a)); next < to {
+				to, done = next, false
+				k--
+				e.stateOf(s, to, xb, &u)
+			} else if done {
 				e.zh = e.s.powers(s.b, e.zh)
 				e.s.value(e.zh, &u)
 				copy(xb, s.xb[:n])
@@ -73,12 +80,33 @@ func (e *engine) moments() [][]float64 {
 			if i >= dyn {
 				out[i][j] = consts[i-dyn] * consts[j-dyn]
 			} else {
-				out[i][j] /= 2 * math.Pi
+				out[i][j] /= e.span()
 			}
 			out[j][i] = out[i][j]
 		}
 	}
-	return out
+	return e.overParts(out)
+}
+
+// stateOf writes the dynamic state within a segment and the voltages there.
+func (e *engine) stateOf(s *segment, theta float64, x []float64, u *[3]float64) {
+	m := s.m
+	xi := e.rootXi[:m.d]
+	e.zh = e.s.powers(s.a, e.zh)
+	m.response(e.zh, xi)
+	for i, v := range s.xa {
+		if i < m.n {
+			v -= xi[i]
+		}
+		xi[i] = v
+	}
+	m.steps.advance(theta-s.a, xi)
+	e.zh = e.s.powers(theta, e.zh)
+	e.s.value(e.zh, u)
+	m.response(e.zh, x[:m.n])
+	for i := 0; i < m.n; i++ {
+		x[i] += xi[i]
+	}
 }
 
 // spread adds second moments of the mode's state (upper triangle of rows
@@ -118,4 +146,31 @@ func (m *mode) spread(sum, half []float64, out [][]float64, nb int) {
 			}
 		}
 	}
+}
+
+// overParts averages second moments over the parts of the period.
+func (e *engine) overParts(one [][]float64) [][]float64 {
+	if e.sym == nil {
+		return one
+	}
+	ns := len(one)
+	from, sign := make([]int, ns), make([]float64, ns)
+	for i := range from {
+		from[i], sign[i] = i, 1
+	}
+	for i, f := range e.sym.From {
+		from[i], sign[i] = f, e.sym.Sign[i]
+	}
+	sum, now := square(ns), one
+	for r := 0; r < e.parts; r++ {
+		next := square(ns)
+		for i := range now {
+			for j, v := range now[i] {
+				sum[i][j] += v / float64(e.parts)
+				next[i][j] = sign[i] * sign[j] * now[from[i]][from[j]]
+			}
+		}
+		now = next
+	}
+	return sum
 }

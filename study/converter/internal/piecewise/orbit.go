@@ -34,6 +34,8 @@ type Orbit struct {
 	Yield      []float64          // by control: derivative of its average (power) by its parameter alone
 
 	solver *Solver
+	sym    *Symmetry
+	parts  int
 	segs   []segment
 	links  []link
 	watts  []control
@@ -78,6 +80,7 @@ func (s *Solver) Solve(ctx context.Context, v [3]phasor.Spectrum, order int) (*O
 	e := s.e
 	e.s.set(v)
 	e.schedule()
+	e.choose()
 	e.passes = 0
 	was := s.at
 	was.x = append([]float64(nil), was.x...)
@@ -90,7 +93,7 @@ func (s *Solver) Solve(ctx context.Context, v [3]phasor.Spectrum, order int) (*O
 	s.at.x = append(s.at.x[:0], e.segs[0].xa...)
 	s.at.key = e.segs[0].m.key
 
-	o := &Orbit{solver: s, Correction: left, Passes: e.passes, Changes: len(e.segs) - 1, first: e.s.first}
+	o := &Orbit{solver: s, Correction: left, Passes: e.passes, Changes: e.parts * (len(e.segs) - 1), first: e.s.first}
 	o.Moments = e.moments()
 	o.Lines = e.lines(order)
 	nb, nv := e.c.nb(), e.c.nv()
@@ -123,21 +126,26 @@ func (o *Orbit) keep(e *engine) {
 			o.links[i].S = clone(l.S)
 		}
 	}
+	o.sym, o.parts = e.sym, e.parts
 	o.walked = make([]float64, Samples*e.wide)
-	for k, m := range e.atM {
-		m.expand(e.atX[k*e.wide:k*e.wide+m.d], o.walked[k*e.wide:(k+1)*e.wide])
+	row := func(k int) []float64 { k %= Samples; return o.walked[k*e.wide : (k+1)*e.wide] }
+	for _, k := range e.recorded() {
+		m := e.atM[k]
+		m.expand(e.atX[k*e.wide:k*e.wide+m.d], row(k))
+	}
+	stride := Samples / e.parts
+	for i, k := 0, e.marks[0]; i < Samples-stride; i++ {
+		e.ahead(row(k+i), row(k+i+stride))
 	}
 }
 
-// multiplier returns the largest eigenvalue of the derivative over one period.
+// multiplier returns the largest eigenvalue of the derivative over what was
+// stepped, to the power that makes it a period.
 func (o *Orbit) multiplier(e *engine) complex128 {
 	flow, _ := e.derivative()
 	m := e.segs[0].m
 	if m.n == 0 {
 		return 0
-	}
-	if m.n == 1 {
-		return complex(flow[0], 0)
 	}
 	a := mat.NewDense(m.n, m.n, nil)
 	for i := 0; i < m.n; i++ {
@@ -153,7 +161,7 @@ func (o *Orbit) multiplier(e *engine) complex128 {
 			big = v
 		}
 	}
-	return big
+	return cmplx.Pow(big, complex(float64(e.parts), 0))
 }
 
 // yield lets each parameter move alone and returns how its controlled average
@@ -182,7 +190,7 @@ func (o *Orbit) yield(e *engine) []float64 {
 		for j, d := range dx {
 			mean += means[c*m.d+j] * d
 		}
-		mean /= 2 * math.Pi
+		mean /= e.span()
 		out[c] = w.gain() * mean
 		if w.Power {
 			out[c] += w.mean
@@ -207,16 +215,21 @@ func (o *Orbit) Walk() [][]float64 {
 // Share returns the share of the period in which a unit's state satisfies f.
 func (o *Orbit) Share(unit int, f func(state uint64) bool) float64 {
 	var shift uint
-	units := o.solver.e.c.Units
-	for _, u := range units[:unit] {
+	c := o.solver.e.c
+	for _, u := range c.Units[:unit] {
 		shift += u.bits()
 	}
-	var sum, all float64
+	var sum float64
 	for _, s := range o.segs {
-		all += s.b - s.a
-		if f(s.m.key >> shift & (1<<units[unit].bits() - 1)) {
-			sum += s.b - s.a
+		key := s.m.key
+		for r := 0; r < o.parts; r++ {
+			if f(key >> shift & (1<<c.Units[unit].bits() - 1)) {
+				sum += s.b - s.a
+			}
+			if o.sym != nil {
+				key = o.sym.turn(c, key)
+			}
 		}
 	}
-	return sum / all
+	return sum / (2 * math.Pi)
 }

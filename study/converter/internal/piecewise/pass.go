@@ -11,8 +11,13 @@ type segment struct {
 	gate   int       // gate whose opening ended it, -1 when no gate did
 }
 
-// tolerance of a watch at the instant of a change, relative to its scale.
-const settleTol = 1e-9
+// settleTol is the tolerance of a watch at the instant of a change, roundTol
+// that at a sample, where a current that has just begun may be off by rounding;
+// both relative to its scale.
+const (
+	settleTol = 1e-9
+	roundTol  = 1e-13
+)
 
 // An engine steps one circuit through its periods. It is not for concurrent use.
 type engine struct {
@@ -20,6 +25,8 @@ type engine struct {
 	modes map[uint64]*mode
 	s     supply
 	edges []edge
+	sym   *Symmetry // in force; nil for none
+	parts int       // 1 without symmetry
 
 	segs  []segment
 	atX   []float64 // Samples x wide: state at the samples of the last pass
@@ -46,12 +53,14 @@ type engine struct {
 	re, im, diff        []float64
 	diffStamp           int
 	ka, kb, za, zb2     []complex128
+	homeH, homeX        []float64
+	marks               []int
 	force               []complex128
 }
 
 func newEngine(c *Circuit) *engine {
 	wide := c.states()
-	e := &engine{c: c, modes: map[uint64]*mode{}, wide: wide, atX: make([]float64, Samples*wide), atM: make([]*mode, Samples), full: make([]float64, wide)}
+	e := &engine{c: c, parts: 1, modes: map[uint64]*mode{}, wide: wide, atX: make([]float64, Samples*wide), atM: make([]*mode, Samples), full: make([]float64, wide)}
 	for _, v := range []*[]float64{&e.x, &e.xi, &e.xb, &e.xib, &e.prevXi, &e.rootXi} {
 		*v = make([]float64, wide)
 	}
@@ -81,14 +90,14 @@ func (e *engine) keep(x []float64) []float64 {
 	return e.arena[at:len(e.arena):len(e.arena)]
 }
 
-// pass steps the state x of mode m from sample k0 through one period and
-// leaves the segments and the states at the samples behind.
+// pass steps the state x of mode m from sample k0 through one period, or one
+// part of it under a symmetry, and leaves the segments and the states at the samples behind.
 func (e *engine) pass(k0 int, m *mode, x []float64) error {
 	e.passes++
 	e.segs, e.arena = e.segs[:0], e.arena[:0]
 	k := k0
 	theta := cell * float64(k0)
-	end := k0 + Samples
+	end := k0 + Samples/e.parts
 	gates, next := e.gatesAt(theta)
 
 	copy(e.x[:m.d], x)
@@ -157,7 +166,7 @@ func (e *engine) pass(k0 int, m *mode, x []float64) error {
 				continue
 			}
 			switch fa := e.fa[i]; {
-			case f < 0:
+			case f < -roundTol*w.scale:
 				if t := e.root(m, w, theta, e.xi, fa, stop, f); t < when {
 					by, when, back = i, t, false
 				}

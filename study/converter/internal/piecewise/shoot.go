@@ -45,14 +45,24 @@ func (e *engine) shoot(ctx context.Context, at *start, quiet bool) (float64, err
 			}
 			return 0, err
 		}
-		first, end := &e.segs[0], &e.segs[len(e.segs)-1]
-		if first.m != end.m || fresh {
+		first := &e.segs[0]
+		home, end, _ := e.home()
+		if home == nil {
+			return 0, ErrInconsistent
+		}
+		if first.m != home || fresh {
 			fresh = false
 			lastStep, last = nil, math.Inf(1)
 			e.relocate(at)
 			continue
 		}
 		m = first.m
+		if starved := e.starved(); starved != nil {
+			e.relocate(at)
+			e.feed(at, starved)
+			lastStep, last = nil, math.Inf(1)
+			continue
+		}
 		e.buildLinks()
 		means := e.controlled()
 		flow, dMeans := e.derivative()
@@ -67,7 +77,7 @@ func (e *engine) shoot(ctx context.Context, at *start, quiet bool) (float64, err
 			for j := 0; j < np; j++ {
 				J[i*size+m.n+j] = -flow[i*m.d+m.n+1+j]
 			}
-			r[i] = end.xb[i] - first.xa[i]
+			r[i] = end[i] - first.xa[i]
 		}
 		for c, ctl := range e.c.Controls {
 			p, w := first.xa[m.n+1+c], means[c]
@@ -81,20 +91,19 @@ func (e *engine) shoot(ctx context.Context, at *start, quiet bool) (float64, err
 				r[m.n+c] = ctl.Target - w
 			}
 			for j := 0; j < m.n; j++ {
-				row[j] += gain * dMeans[c*m.d+j] / (2 * math.Pi)
+				row[j] += gain * dMeans[c*m.d+j] / e.span()
 			}
 			for j := 0; j < np; j++ {
-				row[m.n+j] += gain * dMeans[c*m.d+m.n+1+j] / (2 * math.Pi)
+				row[m.n+j] += gain * dMeans[c*m.d+m.n+1+j] / e.span()
 			}
 		}
 		if !solve(J, size, r, 1) {
-			// no gain from the start state to the end: let the circuit run
+			// no answer of the end to the start: let the circuit run
 			stuck++
 			if stuck > 40 {
 				return 0, ErrNotPeriodic
 			}
 			e.relocate(at)
-			e.loosen(at)
 			lastStep, last = nil, math.Inf(1)
 			continue
 		}
@@ -171,8 +180,8 @@ func (e *engine) relocate(at *start) {
 	mid := int(math.Round((long.a + long.b) / 2 / cell))
 	if float64(mid)*cell < long.a || float64(mid)*cell > long.b {
 		// the longest is shorter than a cell: continue at the end
-		end := &e.segs[len(e.segs)-1]
-		at.key, at.x = end.m.key, append([]float64(nil), end.xb...)
+		m, x, _ := e.home()
+		at.key, at.x = m.key, append([]float64(nil), x...)
 		return
 	}
 	mid %= Samples
@@ -181,12 +190,36 @@ func (e *engine) relocate(at *start) {
 	at.x = append([]float64(nil), e.atX[mid*e.wide:mid*e.wide+m.d]...)
 }
 
-// loosen lowers the capacitor voltages of the start by 3 %, so that a bridge
-// which did not conduct at all begins to.
-func (e *engine) loosen(at *start) {
+// starved returns the capacitors that no branch charged during the last pass;
+// nil when there is none.
+func (e *engine) starved() []int {
+	var out []int
+	for v := range e.c.Y {
+		fed := false
+		for i := range e.segs {
+			m := e.segs[i].m
+			for b := range e.c.S {
+				if e.c.S[b][v] <= 0 {
+					continue
+				}
+				for _, t := range m.T[b*m.ny : (b+1)*m.ny] {
+					fed = fed || t != 0
+				}
+			}
+		}
+		if !fed {
+			out = append(out, v)
+		}
+	}
+	return out
+}
+
+// feed lowers starved capacitors, so that their rectifiers begin to conduct.
+func (e *engine) feed(at *start, starved []int) {
 	m := e.mode(at.key)
-	for i := m.ny; i < m.n; i++ {
-		at.x[i] *= 0.97
+	for _, v := range starved {
+		x := &at.x[m.ny+v]
+		*x = math.Min(0.97**x, e.c.Rest[v])
 	}
 }
 
@@ -194,10 +227,24 @@ func (e *engine) loosen(at *start) {
 // the samples.
 func (e *engine) variance(control int, mean float64) float64 {
 	var sum float64
-	for k, m := range e.atM {
+	for _, k := range e.recorded() {
+		m := e.atM[k]
 		x := e.atX[k*e.wide : k*e.wide+m.d]
 		d := dot(m.steps.seen[control*m.d:(control+1)*m.d], x) - mean
 		sum += d * d
 	}
-	return sum / Samples
+	return sum / float64(Samples/e.parts)
+}
+
+// span is the angle that a pass covers.
+func (e *engine) span() float64 { return 2 * math.Pi / float64(e.parts) }
+
+// recorded returns the samples of the last pass, in their order.
+func (e *engine) recorded() []int {
+	e.marks = e.marks[:0]
+	k0 := int(math.Round(e.segs[0].a / cell))
+	for k := k0; k < k0+Samples/e.parts; k++ {
+		e.marks = append(e.marks, k%Samples)
+	}
+	return e.marks
 }

@@ -10,6 +10,8 @@ type Unit interface {
 	columns(state uint64) []column
 	// triggers returns what ends a state.
 	triggers(state uint64) []trigger
+	// turned returns the state with polarity exchanged and legs permuted.
+	turned(state uint64, legs []int) uint64
 }
 
 // A term is one summand of a linear function of the branch currents or of the

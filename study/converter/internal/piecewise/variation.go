@@ -79,8 +79,8 @@ func (e *engine) joint(s, t *segment, l *link) {
 	}
 }
 
-// derivative returns the derivative of the state at the end of the pass (n x d
-// of the last mode) and of the integrals of the controlled states (np x d) by
+// derivative returns the derivative of the state at the end of the pass, in the
+// frame of its start (d x d), and of the integrals of the controlled states (np x d) by
 // the state at its start.
 func (e *engine) derivative() (flow, means []float64) {
 	d0, np := e.segs[0].m.d, len(e.c.Controls)
@@ -99,6 +99,11 @@ func (e *engine) derivative() (flow, means []float64) {
 		multiplyAdd(b, l.D, a, m.n, m.d, d0)
 		a, b = b, a
 		if l.S == nil {
+			if to, _, H := e.home(); H != nil {
+				clear(b[:to.d*d0])
+				multiplyAdd(b, H, a, to.d, m.d, d0)
+				a = b
+			}
 			break
 		}
 		n := e.segs[i+1].m
@@ -169,7 +174,7 @@ func (e *engine) controlled() []float64 {
 					sum += g * (real(x)*imag(z) + imag(x)*real(z)) / float64(h)
 				}
 			}
-			e.mean[c] += sum / (2 * math.Pi)
+			e.mean[c] += sum / e.span()
 		}
 	}
 	return e.mean
