@@ -130,7 +130,10 @@ func (d *diagram) bus(b *PlacedBus) {
 	}
 	d.write(text, y+11, left, d.st.Small, d.st.Muted, words)
 	if over, times := d.over(b.Name); over {
-		at := vg.Point{X: text + d.width(d.st.Small, words) + 11, Y: y + 11}
+		at := vg.Point{X: text + d.st.text(d.st.Head, ink, true, false).Width(b.Name) + 12, Y: y + 24}
+		if at.X+46 > x1-44 { // no room beside the name and the small spectrum
+			at = vg.Point{X: text + d.width(d.st.Small, words) + 11, Y: y + 11}
+		}
 		var path vg.Path
 		path.Move(vg.Point{X: at.X, Y: at.Y + 5})
 		path.Line(vg.Point{X: at.X + 5, Y: at.Y})

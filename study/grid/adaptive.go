@@ -91,7 +91,7 @@ func (c *ScanCurve) extrema(z func(float64) complex128) {
 // of the phase: Q = (h/2) |d arg Z / dh|.
 func refine(z func(float64) complex128, lo, hi, sign float64) Extremum {
 	const golden = 0.6180339887498949
-	for range 40 {
+	for range 30 {
 		a, b := hi-golden*(hi-lo), lo+golden*(hi-lo)
 		if sign*cmplx.Abs(z(a)) > sign*cmplx.Abs(z(b)) {
 			hi = b

@@ -43,6 +43,12 @@ func TestSkinEffect(t *testing.T) {
 		}
 	}
 	law := SkinLaw(RoundSkin, 0.0754e-3, 50, 50)
+	for _, h := range []float64{1.1, 2.37, 5, 7.6, 24.99, 49.9, 63} {
+		x := math.Sqrt(8 * math.Pi * 50 * 1e-7 / 0.0754e-3)
+		if want := RoundSkin(x*math.Sqrt(h)) / RoundSkin(x); math.Abs(law(h)-want) > 1e-5*want {
+			t.Errorf("order %g: %.7f, want %.7f", h, law(h), want)
+		}
+	}
 	if law(1) != 1 || math.Abs(law(7)-law(7.0000001)) > 1e-6 || law(50) < law(49) {
 		t.Error("the law is not one at order 1, smooth and rising")
 	}
