@@ -307,7 +307,9 @@ func (p *Picture) CreateRenderer() fyne.WidgetRenderer {
 		outline:  canvas.NewRectangle(color.Transparent),
 		focus:    canvas.NewRectangle(color.Transparent),
 		fault:    newParagraph(theme.SizeNameText, theme.ColorNameForeground),
+		pulse:    canvas.NewRectangle(color.Transparent),
 	}
+	r.pulse.Resize(fyne.NewSize(1, 1))
 	r.raster = canvas.NewRaster(p.asked)
 	r.raster.ScaleMode = canvas.ImageScalePixels
 	p.renderer = r
@@ -321,6 +323,11 @@ type pictureRenderer struct {
 	box                      *readout
 	fault                    *paragraph
 	pad                      *zoomPad
+
+	// pulse is always there and never seen. The toolkit does not repaint for an
+	// object that was hidden until now, and a refresh of the whole picture would
+	// send its pixels again: so this is refreshed instead.
+	pulse *canvas.Rectangle
 }
 
 func (r *pictureRenderer) Layout(size fyne.Size) {
@@ -340,7 +347,7 @@ func (r *pictureRenderer) Refresh() {
 }
 
 func (r *pictureRenderer) Objects() []fyne.CanvasObject {
-	return []fyne.CanvasObject{r.raster, r.selected, r.outline, r.fault, r.box, r.focus, r.pad}
+	return []fyne.CanvasObject{r.raster, r.selected, r.outline, r.fault, r.box, r.focus, r.pad, r.pulse}
 }
 
 func (r *pictureRenderer) Destroy() { r.p.renderer = nil }
@@ -349,6 +356,7 @@ func (r *pictureRenderer) Destroy() { r.p.renderer = nil }
 func (r *pictureRenderer) overlay() {
 	p := r.p
 	p.ensure()
+	defer r.pulse.Refresh()
 	r.pad.wheel = p.Zoomable
 	if p.Zoomable || p.OnDragged != nil {
 		r.pad.Show()

@@ -225,11 +225,18 @@ func (w *verdictRow) heightFor(width float32) float32 {
 	return max(height, w.mark.MinSize().Height, Target) + Step
 }
 
-// beside tells whether the words on before fit on the line of the finding, and
-// how far the finding reaches.
+// beside tells whether the words on before fit on the line of the finding, in
+// small type if need be, and how far the finding reaches.
 func (w *verdictRow) beside(inner float32) (float32, bool) {
 	reach := fyne.MeasureText(w.text.text, sizeOf(w, w.text.size), w.text.style).Width + 2*Step
-	return reach, reach+fyne.MeasureText(w.before.text, sizeOf(w, w.before.size), w.before.style).Width+1 <= inner
+	for _, size := range []fyne.ThemeSizeName{theme.SizeNameText, theme.SizeNameCaptionText} {
+		w.before.size = size
+		if reach+fyne.MeasureText(w.before.text, sizeOf(w, size), w.before.style).Width+1 <= inner {
+			return reach, true
+		}
+	}
+	w.before.size = theme.SizeNameText
+	return reach, false
 }
 
 // Tapped implements fyne.Tappable.
@@ -330,7 +337,7 @@ func (r *verdictRowRenderer) Layout(size fyne.Size) {
 	w.text.Move(fyne.NewPos(lead, top))
 	w.text.Resize(fyne.NewSize(inner, height))
 	if reach, beside := w.beside(inner); beside {
-		small := lineHeight(sizeOf(w, theme.SizeNameText), fyne.TextStyle{})
+		small := lineHeight(sizeOf(w, w.before.size), fyne.TextStyle{})
 		w.before.Move(fyne.NewPos(lead+reach, top+(line-small)*0.8)) // on one baseline
 		w.before.Resize(fyne.NewSize(inner-reach, small))
 		return
