@@ -9,11 +9,11 @@ import (
 )
 
 // floors keep loops from having no inductance or no loss at all. They are far
-// below any real part: a millionth of a controlled resistance, and X/R of
-// 100,000.
+// below any real part: a millionth of a controlled resistance, and X/R of ten
+// million.
 const (
 	inductanceFloor = 1e-6
-	lossFloor       = 1e-5
+	lossFloor       = 1e-7
 )
 
 // A plant is a converter as a circuit, with what is needed to read its result.

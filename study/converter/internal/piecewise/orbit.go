@@ -49,6 +49,10 @@ type control struct {
 	p, mean float64
 }
 
+// quiet is a sample at which a supply with its phases at the usual angles has no
+// two phases alike.
+const quiet = 7
+
 // NewSolver takes the circuit over; it must not be changed afterwards.
 func NewSolver(c *Circuit) *Solver {
 	return &Solver{e: newEngine(c)}
@@ -62,7 +66,7 @@ func (s *Solver) Start(full []float64) {
 	m := s.e.mode(0)
 	x := make([]float64, m.d)
 	m.reduce(full, x)
-	s.at, s.ok = start{key: 0, x: x}, false
+	s.at, s.ok = start{sample: quiet, key: 0, x: x}, false
 }
 
 // Warm reports whether the solver holds a periodic state to start from.

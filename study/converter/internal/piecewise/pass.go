@@ -11,11 +11,12 @@ type segment struct {
 	gate   int       // gate whose opening ended it, -1 when no gate did
 }
 
-// settleTol is the tolerance of a watch at the instant of a change, roundTol
+// settleTol is the tolerance of a watch at the instant of a change (ten times
+// more each time that valves change twice at one instant), roundTol
 // that at a sample, where a current that has just begun may be off by rounding;
 // both relative to its scale.
 const (
-	settleTol = 1e-9
+	settleTol = 1e-7
 	roundTol  = 1e-13
 )
 
@@ -55,6 +56,7 @@ type engine struct {
 	ka, kb, za, zb2     []complex128
 	homeH, homeX        []float64
 	marks               []int
+	tol                 float64
 	force               []complex128
 }
 
@@ -94,6 +96,7 @@ func (e *engine) keep(x []float64) []float64 {
 // part of it under a symmetry, and leaves the segments and the states at the samples behind.
 func (e *engine) pass(k0 int, m *mode, x []float64) error {
 	e.passes++
+	e.tol = settleTol
 	e.segs, e.arena = e.segs[:0], e.arena[:0]
 	k := k0
 	theta := cell * float64(k0)
@@ -279,6 +282,11 @@ func (e *engine) change(m *mode, by int, gates uint64) (*mode, error) {
 	if err != nil {
 		return nil, err
 	}
+	if s := &e.segs[len(e.segs)-1]; s.b-s.a < 1e-9 {
+		e.tol = math.Min(10*e.tol, 1e-2)
+	} else {
+		e.tol = settleTol
+	}
 	return e.settle(to, gates)
 }
 
@@ -296,7 +304,7 @@ func (e *engine) enter(m *mode, key uint64) (*mode, error) {
 // settle changes mode until every watch holds at the present state.
 func (e *engine) settle(m *mode, gates uint64) (*mode, error) {
 	for tries := 0; tries < 60; tries++ {
-		worst, depth := -1, -settleTol
+		worst, depth := -1, -e.tol
 		for i := range m.watch {
 			w := &m.watch[i]
 			if w.need&^gates != 0 {
