@@ -1,0 +1,79 @@
+//go:build !headless
+
+package main
+
+import (
+	"errors"
+	"strings"
+
+	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/dialog"
+	"fyne.io/fyne/v2/widget"
+
+	"quietbus/study"
+)
+
+// maxErrors is how many mistakes a dialog lists before it counts the rest.
+const maxErrors = 12
+
+// errorText words an error for a dialog, each of several on its own line.
+func errorText(err error) string {
+	var several study.FieldErrors
+	if !errors.As(err, &several) {
+		return err.Error()
+	}
+	var lines []string
+	for i, e := range several {
+		if i == maxErrors {
+			lines = append(lines, "and "+count(len(several)-maxErrors, "more mistake"))
+			break
+		}
+		lines = append(lines, e.Error())
+	}
+	return strings.Join(lines, "\n\n")
+}
+
+// fail shows an error.
+func (w *Window) fail(title string, err error) { w.tell(title, errorText(err)) }
+
+// tell shows a text with one button.
+func (w *Window) tell(title, text string) {
+	w.choose(title, text, "OK", func() {}, "", nil)
+}
+
+// confirm asks before something is done.
+func (w *Window) confirm(title, text, yes, no string, then func()) {
+	w.choose(title, text, yes, then, no, func() {})
+}
+
+// choose shows a text and one or two buttons. The first has the focus, so that
+// Return takes it.
+func (w *Window) choose(title, text, yes string, onYes func(), no string, onNo func()) {
+	label := widget.NewLabel(text)
+	label.Wrapping = fyne.TextWrapWord
+	label.Selectable = true
+	var d dialog.Dialog
+	button := func(name string, f func()) *widget.Button {
+		return widget.NewButton(name, func() {
+			d.Hide()
+			w.dialog = ""
+			f()
+			w.report()
+		})
+	}
+	first := button(yes, onYes)
+	first.Importance = widget.HighImportance
+	row := container.NewHBox(first)
+	if no != "" {
+		row = container.NewHBox(button(no, onNo), first)
+	}
+	body := container.NewBorder(nil, container.NewCenter(row), nil, nil, container.NewVScroll(label))
+	d = dialog.NewCustomWithoutButtons(title, body, w.win)
+	lines := 1 + len(text)/80 + strings.Count(text, "\n")
+	d.Resize(fyne.NewSize(620, min(160+float32(lines)*24, 560)))
+	w.dialog = title
+	d.Show()
+	w.win.Canvas().Focus(first)
+	w.report()
+}

@@ -1,0 +1,116 @@
+//go:build !headless
+
+package main
+
+import "quietbus/study"
+
+// A selection is what the evidence is about: a bus, and on it perhaps an item
+// whose current is looked at.
+type selection struct {
+	Bus     string // bus whose voltage and impedance are shown
+	Element string // item whose current is shown instead of the voltage, "" for none
+	Other   string // item that carries no current (measure, assessment, scan), for editing
+}
+
+// item returns the name of the item that is selected.
+func (s selection) item() string {
+	switch {
+	case s.Other != "":
+		return s.Other
+	case s.Element != "":
+		return s.Element
+	}
+	return s.Bus
+}
+
+// firstSelection returns what a study opens with: its first assessed bus, else
+// its first bus.
+func firstSelection(s *study.Study) selection {
+	for i := range s.Assessments {
+		if _, item := s.Find(s.Assessments[i].Bus); item != nil {
+			return selection{Bus: s.Assessments[i].Bus}
+		}
+	}
+	if len(s.Buses) > 0 {
+		return selection{Bus: s.Buses[0].Name}
+	}
+	return selection{}
+}
+
+// in returns the selection with what is no longer in the study taken out.
+func (sel selection) in(s *study.Study) selection {
+	gone := func(name string) bool {
+		_, item := s.Find(name)
+		return name != "" && item == nil
+	}
+	if gone(sel.Element) {
+		sel.Element = ""
+	}
+	if gone(sel.Other) {
+		sel.Other = ""
+	}
+	if sel.Bus == "" || gone(sel.Bus) {
+		sel.Bus = firstSelection(s).Bus
+	}
+	return sel
+}
+
+// selectionOf returns what picking a named item shows: the item's own current
+// at the bus it stands on, or the bus.
+func selectionOf(s *study.Study, name string) selection {
+	kind, found := s.Find(name)
+	if found == nil {
+		return selection{}
+	}
+	switch kind {
+	case study.KindBus:
+		return selection{Bus: name}
+	case study.KindMeasure, study.KindAssessment, study.KindScan:
+		return selection{Bus: busOf(s, name), Other: name}
+	case study.KindCoupler: // an ideal switch: its current is not a result
+		return selection{Bus: busOf(s, name), Other: name}
+	}
+	return selection{Bus: busOf(s, name), Element: name}
+}
+
+// busOf returns the bus that an item stands on, the lower-voltage or far side
+// of a branch.
+func busOf(s *study.Study, name string) string {
+	_, found := s.Find(name)
+	switch i := found.(type) {
+	case *study.Bus:
+		return i.Name
+	case *study.Supply:
+		return i.Bus
+	case *study.Transformer:
+		return i.LVBus
+	case *study.Cable:
+		return i.To
+	case *study.Reactor:
+		return i.To
+	case *study.Coupler:
+		return i.To
+	case *study.Load:
+		return i.Bus
+	case *study.Motor:
+		return i.Bus
+	case *study.NonlinearLoad:
+		return i.Bus
+	case *study.Bank:
+		return i.Bus
+	case *study.Filter:
+		return i.Bus
+	case *study.Assessment:
+		return i.Bus
+	case *study.ScanRequest:
+		return i.Bus
+	case *study.Measure:
+		if i.Bus != "" {
+			return i.Bus
+		}
+		if i.Target != name {
+			return busOf(s, i.Target)
+		}
+	}
+	return ""
+}
