@@ -62,7 +62,7 @@ func (t *Theme) Color(name fyne.ThemeColorName, _ fyne.ThemeVariant) color.Color
 	case theme.ColorNameBackground:
 		return p.Ground
 	case theme.ColorNameForeground:
-		return p.Ink
+		return textInk(p.Ink)
 	case theme.ColorNameButton, theme.ColorNameMenuBackground, theme.ColorNameHeaderBackground:
 		return p.Surface
 	case theme.ColorNameOverlayBackground:
@@ -101,8 +101,21 @@ func (t *Theme) Color(name fyne.ThemeColorName, _ fyne.ThemeVariant) color.Color
 	case theme.ColorNameShadow:
 		return color.NRGBA{A: 0x30}
 	}
-	return p.Ink
+	return textInk(p.Ink)
 }
+
+// textInk is a colour of text that is all but opaque. The toolkit (2.7.1) fades
+// the shortcuts in menus to the low byte of 95 % of a sixteen-bit alpha, which
+// leaves a fifth of an opaque colour; of this alpha it leaves nearly all.
+type textInk color.NRGBA
+
+// RGBA implements color.Color.
+func (c textInk) RGBA() (r, g, b, a uint32) {
+	r, g, b, _ = color.NRGBA(c).RGBA()
+	return min(r, textAlpha), min(g, textAlpha), min(b, textAlpha), textAlpha
+}
+
+const textAlpha = 0xFEBB // 0.95 of it is 0xF1FE
 
 // Font implements fyne.Theme.
 func (t *Theme) Font(style fyne.TextStyle) fyne.Resource {

@@ -3,12 +3,16 @@ package widgets
 import (
 	"image/color"
 	"math"
+	"strings"
 	"testing"
 
 	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/canvas"
 	"fyne.io/fyne/v2/container"
+	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/test"
 	"fyne.io/fyne/v2/theme"
+	"fyne.io/fyne/v2/widget"
 	"golang.org/x/image/font/sfnt"
 
 	"quietbus/assets"
@@ -104,6 +108,42 @@ func TestTheme(t *testing.T) {
 			if w := fyne.MeasureText(string(d), 14, style).Width; w != zero {
 				t.Errorf("%v: %c is %g wide, a nought %g", style, d, w, zero)
 			}
+		}
+	}
+}
+
+// The shortcuts in menus can be read.
+func TestThemeMenuShortcuts(t *testing.T) {
+	for _, l := range looks[:2] {
+		w := stage(t, l, fyne.NewSize(300, 200), func() fyne.CanvasObject { return container.NewStack() })
+		item := fyne.NewMenuItem("Spectrum", func() {})
+		item.Shortcut = &desktop.CustomShortcut{KeyName: fyne.Key2, Modifier: fyne.KeyModifierControl}
+		widget.ShowPopUpMenuAtPosition(fyne.NewMenu("", item), w.Canvas(), fyne.NewPos(20, 20))
+		keep(t, "menu-"+l.name, w.Canvas().Capture())
+		found := false
+		var walk func(o fyne.CanvasObject)
+		walk = func(o fyne.CanvasObject) {
+			switch o := o.(type) {
+			case *canvas.Text:
+				if strings.Contains(o.Text, "Ctrl") || o.Text == "2" {
+					found = true
+					if _, _, _, a := o.Color.RGBA(); a < 0xE000 {
+						t.Errorf("%s: %q has an alpha of %#x", l.name, o.Text, a)
+					}
+				}
+			case *fyne.Container:
+				for _, c := range o.Objects {
+					walk(c)
+				}
+			case fyne.Widget:
+				for _, c := range test.WidgetRenderer(o).Objects() {
+					walk(c)
+				}
+			}
+		}
+		walk(w.Canvas().Overlays().Top())
+		if !found {
+			t.Error("no shortcut is shown")
 		}
 	}
 }
