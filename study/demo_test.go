@@ -40,6 +40,9 @@ func TestDemoStory(t *testing.T) {
 	if len(scan.Peaks) == 0 || scan.Peaks[0].Order < 6.5 || scan.Peaks[0].Order > 8 {
 		t.Errorf("the resonance is not beside the seventh: %v", scan.Peaks)
 	}
+	if words := scan.Peaks[0].Words(); words != "C1 against T1" && words != "C1 against T1 and Grid" {
+		t.Errorf("the resonance is %q", words)
+	}
 	if w := before.Points[1].Worst(); w.Order != 7 {
 		t.Errorf("the worst row is %s, not the seventh", RowName(*w))
 	}

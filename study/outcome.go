@@ -113,6 +113,19 @@ type Peak struct {
 	Order float64
 	Ohm   float64
 	Q     float64 // order over 3 dB width; 0 when it cannot be told
+
+	// Who makes a parallel resonance: the items whose reactive power swings in
+	// it, largest share first. Nil for valleys.
+	Capacitive, Inductive []string
+}
+
+// Words says who makes the peak: "C1 against T1 and Grid"; empty when nobody
+// stands out.
+func (p Peak) Words() string {
+	if len(p.Capacitive) == 0 || len(p.Inductive) == 0 {
+		return ""
+	}
+	return join(p.Capacitive) + " against " + join(p.Inductive)
 }
 
 // Check is how well the solution satisfies its own equations.

@@ -54,7 +54,11 @@ func resonances(when string, r *study.ScanResult) string {
 		if len(words) == 4 {
 			break
 		}
-		words = append(words, fmt.Sprintf("%s ohm at order %s", number(p.Ohm), number(p.Order)))
+		text := fmt.Sprintf("%s ohm at order %s", number(p.Ohm), number(p.Order))
+		if who := p.Words(); who != "" {
+			text += " (" + who + ")"
+		}
+		words = append(words, text)
 	}
 	return fmt.Sprintf(" Peaks %s: %s.", when, strings.Join(words, ", "))
 }
@@ -156,6 +160,9 @@ func (x *axes) peaks(b, a *study.ScanResult) {
 				continue
 			}
 			words := fmt.Sprintf("%s Ω at order %s", number(k.Ohm), strconv.FormatFloat(k.Order, 'f', 1, 64))
+			if who := k.Words(); who != "" && x.width(x.st.Small, words+who) < 0.6*(x.area.Max.X-x.area.Min.X) {
+				words += ", " + who
+			}
 			if place, ok := x.room(k, words, taken, b, a); ok {
 				taken = append(taken, place)
 				x.write(place.Min.X, (place.Min.Y+place.Max.Y)/2, left, x.st.Small, ink, words)

@@ -484,3 +484,39 @@ func BenchmarkRadial30(b *testing.B)    { benchmarkRadial(b, 30) }
 func BenchmarkRadial100(b *testing.B)   { benchmarkRadial(b, 100) }
 func BenchmarkRadial1000(b *testing.B)  { benchmarkRadial(b, 1000) }
 func BenchmarkRadial10000(b *testing.B) { benchmarkRadial(b, 10000) }
+
+// A capacitor behind a transformer behind a stiff supply: the capacitor swings
+// against the transformer, each with nearly its whole side.
+func TestParticipants(t *testing.T) {
+	n := New(50)
+	hv, lv := n.AddBus("HV", 11000), n.AddBus("LV", 400)
+	sup := n.Add(&Supply{Name: "s", Bus: hv, R: 0.01, X: 0.1, EMF: 6350})
+	g, _ := ParseVectorGroup("Dyn11")
+	tr := n.Add(&Transformer{Name: "t", HV: hv, LV: lv, Ratio: 27.5, R: 0.001, X: 0.0096, Group: g})
+	bank := n.Add(&Shunt{Name: "c", Bus: lv, Branch: capacitor{0.5}})
+	s, err := n.Compile()
+	if err != nil {
+		t.Fatal(err)
+	}
+	curve, err := s.ScanAdaptive(context.Background(), lv, phasor.Positive, 2, 20)
+	if err != nil || len(curve.Peaks) != 1 {
+		t.Fatal(err, curve.Peaks)
+	}
+	list, err := s.NewScanner(lv, phasor.Positive).Participants(curve.Peaks[0].Order)
+	if err != nil {
+		t.Fatal(err)
+	}
+	// shares of reactance: the supply has 0.1 ohm at 11 kV, 0.000132 at 400 V
+	want := map[ElementID]float64{bank: -1, tr: 0.0096 / (0.0096 + 0.1/27.5/27.5)}
+	for _, p := range list {
+		if p.Element == sup {
+			t.Errorf("the stiff supply takes part: %+v", p)
+		}
+		if math.Abs(p.Share-want[p.Element]) > 1e-6 {
+			t.Errorf("element %d: share %.6f, want %.6f", p.Element, p.Share, want[p.Element])
+		}
+	}
+	if len(list) != 2 {
+		t.Errorf("%+v", list)
+	}
+}
