@@ -54,8 +54,8 @@ func (w *Window) choose(title, text, yes string, onYes func(), no string, onNo f
 	label.Wrapping = fyne.TextWrapWord
 	label.Selectable = true
 	var d dialog.Dialog
-	button := func(name string, f func()) *widget.Button {
-		return widget.NewButton(name, func() {
+	button := func(name string, f func()) *keyButton {
+		return newKeyButton(name, func() {
 			d.Hide()
 			w.dialog = ""
 			f()
@@ -76,4 +76,23 @@ func (w *Window) choose(title, text, yes string, onYes func(), no string, onNo f
 	d.Show()
 	w.win.Canvas().Focus(first)
 	w.report()
+}
+
+// A keyButton answers to Return as well as to space while it has the focus.
+type keyButton struct{ widget.Button }
+
+func newKeyButton(text string, f func()) *keyButton {
+	b := &keyButton{}
+	b.Text, b.OnTapped = text, f
+	b.ExtendBaseWidget(b)
+	return b
+}
+
+// TypedKey implements fyne.Focusable.
+func (b *keyButton) TypedKey(e *fyne.KeyEvent) {
+	if e.Name == fyne.KeyReturn || e.Name == fyne.KeyEnter {
+		b.Tapped(nil)
+		return
+	}
+	b.Button.TypedKey(e)
 }

@@ -50,6 +50,15 @@ type Evaluator struct {
 	cancel  context.CancelFunc
 	stopped bool
 	done    chan struct{}
+
+	inbox   []delivery    // for the main routine
+	arrived chan struct{} // something is in the inbox
+}
+
+// A delivery is what a job has for the main routine.
+type delivery struct {
+	number int // of the job
+	run    func()
 }
 
 // NewEvaluator starts an evaluator that hands each picture to show by way of
@@ -68,7 +77,8 @@ func NewEvaluator(post func(func()), show func(*Picture), worth func(*Worths)) *
 }
 
 func newEvaluator(post func(func()), show func(*Picture), work func(context.Context, Job) *Picture) *Evaluator {
-	e := &Evaluator{post: post, show: show, work: work, wake: make(chan struct{}, 1), done: make(chan struct{})}
+	e := &Evaluator{post: post, show: show, work: work, wake: make(chan struct{}, 1), done: make(chan struct{}),
+		arrived: make(chan struct{}, 1)}
 	go e.loop()
 	return e
 }
@@ -140,14 +150,53 @@ func (e *Evaluator) loop() {
 // deliver runs f on the main routine if the job of that number is still the
 // newest by then.
 func (e *Evaluator) deliver(number int, f func()) {
-	e.post(func() {
+	e.mu.Lock()
+	e.inbox = append(e.inbox, delivery{number, f})
+	e.mu.Unlock()
+	select {
+	case e.arrived <- struct{}{}:
+	default:
+	}
+	e.post(e.drain)
+}
+
+// drain runs what has been delivered. It runs on the main routine.
+func (e *Evaluator) drain() {
+	for {
 		e.mu.Lock()
-		current := number == e.newest
+		if len(e.inbox) == 0 {
+			e.mu.Unlock()
+			return
+		}
+		next := e.inbox[0]
+		e.inbox = e.inbox[1:]
+		current := next.number == e.newest
 		e.mu.Unlock()
 		if current {
-			f()
+			next.run()
 		}
-	})
+	}
+}
+
+// Await gives the newest job a short while, so that its picture is shown in the
+// same frame as the switch that asked for it. It is called on the main routine.
+func (e *Evaluator) Await(limit time.Duration) {
+	timeout := time.NewTimer(limit)
+	defer timeout.Stop()
+	for {
+		select {
+		case <-e.arrived:
+			e.mu.Lock()
+			current := len(e.inbox) > 0 && e.inbox[len(e.inbox)-1].number == e.newest
+			e.mu.Unlock()
+			e.drain()
+			if current {
+				return
+			}
+		case <-timeout.C:
+			return
+		}
+	}
 }
 
 // guardedMore leaves the extra work undone when the engine fails in it: the

@@ -117,6 +117,33 @@ func TestEvaluatorCancelsObsoleteRace(t *testing.T) {
 	}
 }
 
+func TestEvaluatorAwaitShowsAtOnceRace(t *testing.T) {
+	m := newMainRoutine(t)
+	shown := ""
+	e := newEvaluator(m.post, func(p *Picture) { shown = p.ScanBus }, func(ctx context.Context, j Job) *Picture {
+		if j.ScanBus == "slow" {
+			<-ctx.Done()
+		}
+		return &Picture{Job: j}
+	})
+	defer e.Stop()
+	m.do(func() {
+		for i := range 50 {
+			want := strconv.Itoa(i)
+			e.Submit(Job{ScanBus: "slow"})
+			e.Submit(Job{ScanBus: want})
+			if e.Await(5 * time.Second); shown != want {
+				t.Errorf("after waiting for %s the picture is %s", want, shown)
+			}
+		}
+		start := time.Now()
+		e.Submit(Job{ScanBus: "slow"})
+		if e.Await(10 * time.Millisecond); shown == "slow" || time.Since(start) > time.Second {
+			t.Errorf("waiting for a slow job took %s, shown %s", time.Since(start), shown)
+		}
+	})
+}
+
 func TestEvaluatorStopShowsNothingMoreRace(t *testing.T) {
 	m := newMainRoutine(t)
 	begun := make(chan struct{})

@@ -71,10 +71,10 @@ func (w *Window) guard(next func()) {
 			f()
 		}
 	}
-	save := widget.NewButton("Save", finish(func() { w.save(next) }))
+	save := newKeyButton("Save", finish(func() { w.save(next) }))
 	save.Importance = widget.HighImportance
-	drop := widget.NewButton("Give the changes up", finish(next))
-	cancel := widget.NewButton("Go on working", finish(func() {}))
+	drop := newKeyButton("Give the changes up", finish(next))
+	cancel := newKeyButton("Go on working", finish(func() {}))
 	text := widget.NewLabel(fmt.Sprintf("%s has changes that are not saved (last: %s).", w.project.Name(), w.lastEdit()))
 	text.Wrapping = fyne.TextWrapWord
 	d = dialog.NewCustomWithoutButtons(w.dialog, container.NewVBox(text, container.NewHBox(cancel, drop, save)), w.win)
@@ -285,7 +285,7 @@ func (w *Window) writeHandout(p *Picture, dir string) {
 	if w.app.Preferences().String("paper") == "letter" {
 		paper = handout.Letter
 	}
-	in := handout.Input{Study: p.Study, Before: p.Before, After: p.After}
+	in := handout.Input{Study: w.project.Study(), Before: p.Before, After: p.After, Version: readMeta().Version}
 	go func() {
 		err := os.MkdirAll(dir, 0o755)
 		if err == nil {

@@ -106,6 +106,7 @@ func badUse(format string, args ...any) error {
 // request is a command's common input.
 type request struct {
 	study    *study.Study
+	file     []byte // as read, for the digest in print
 	prepared *study.Prepared
 	on       []string
 	out      string
@@ -154,6 +155,9 @@ func parse(command string, args []string) (*request, error) {
 	}
 	var err error
 	if r.study, err = study.Open(path); err != nil {
+		return nil, err
+	}
+	if r.file, err = os.ReadFile(path); err != nil {
 		return nil, err
 	}
 	if r.on, err = chooseMeasures(r.study, *measures); err != nil {
@@ -253,7 +257,7 @@ func writeHandout(args []string, stdout io.Writer) (int, error) {
 	if err != nil {
 		return 0, err
 	}
-	in := handout.Input{Study: r.study, Before: before, After: after}
+	in := handout.Input{Study: r.study, Before: before, After: after, File: r.file, Version: readMeta().Version}
 	if _, err := handout.Write(context.Background(), r.out, in, handout.Options{Paper: r.paper}); err != nil {
 		return 0, err
 	}

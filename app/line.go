@@ -3,6 +3,7 @@
 package main
 
 import (
+	"maps"
 	"math"
 	"time"
 
@@ -23,8 +24,9 @@ type linePart struct {
 	panel   *widgets.Picture
 	figure  *figure.Figure
 	layout  *figure.Layout
-	placed  *study.Study // the study that layout belongs to
-	moved   string       // bus that is being dragged
+	base    *study.Study // what layout was made for, with drawing
+	drawing map[string]study.Point
+	moved   string // bus that is being dragged
 	movedTo study.Point
 }
 
@@ -80,8 +82,8 @@ func (l *linePart) refresh() time.Duration {
 	if l.moved != "" {
 		s = withPlace(s, l.moved, l.movedTo)
 	}
-	if s != l.placed {
-		l.layout, l.placed = figure.Tidy(s), s
+	if base := l.w.project.Base(); l.layout == nil || base != l.base || !maps.Equal(s.Drawing, l.drawing) {
+		l.layout, l.base, l.drawing = figure.Tidy(s), base, s.Drawing
 	}
 	var before, after *study.Outcome
 	if p := l.w.picture; p != nil {

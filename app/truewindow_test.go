@@ -90,8 +90,8 @@ func (d *desk) open(theme string, args ...string) {
 	os.Remove(d.stateFile())
 	d.cmd = exec.Command(d.program, args...)
 	d.cmd.Dir = ".." // FyneApp.toml, as under make run
-	d.cmd.Env = append(os.Environ(), "DISPLAY="+d.display, "LANG=C.UTF-8", "LIBGL_ALWAYS_SOFTWARE=1",
-		"FYNE_SCALE=1", "FYNE_THEME="+theme, "QUIETBUS_THEME="+theme, "QUIETBUS_TIMING=1",
+	d.cmd.Env = append(os.Environ(), "DISPLAY="+d.display, "LANG=C", "LIBGL_ALWAYS_SOFTWARE=1",
+		"FYNE_SCALE=1", "FYNE_THEME="+theme, "QUIETBUS_TIMING=1",
 		"QUIETBUS_HOME="+filepath.Join(d.dir, "home"), "QUIETBUS_STATE="+d.stateFile())
 	d.cmd.Stderr = os.Stderr
 	d.start(d.cmd)
@@ -175,6 +175,9 @@ func expected(t *testing.T, s *study.Study, on []string) []string {
 	if err != nil {
 		t.Fatal(err)
 	}
+	if len(on) == 0 {
+		before = nil // as on the screen: it would repeat itself
+	}
 	return verdictTexts(before, after)
 }
 
@@ -189,7 +192,7 @@ func TestTrueWindow(t *testing.T) {
 	}
 	d := newDesk(t, 1280, 800)
 	d.open("light", demo)
-	d.xdo("windowmove", d.window, "0", "0", "windowsize", d.window, "1280", "800")
+	d.xdo("windowmove", d.window, "0", "0", "windowsize", d.window, "1280", "778")
 
 	on := s.OnMeasures()
 	before := expected(t, s, on)
@@ -247,7 +250,7 @@ func TestTrueWindow(t *testing.T) {
 		t.Fatalf("after a crash %d unsaved studies are found", len(left))
 	}
 	d.open("dark", demo)
-	d.xdo("windowmove", d.window, "0", "0", "windowsize", d.window, "1280", "800")
+	d.xdo("windowmove", d.window, "0", "0", "windowsize", d.window, "1280", "778")
 	d.until("the offer to recover", func() bool { return d.state().Dialog == recoverTitle })
 	time.Sleep(time.Second)
 	d.xdo("key", "Return")

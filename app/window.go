@@ -157,7 +157,12 @@ func (w *Window) changed() {
 	w.listsStale = true
 	w.measures.refresh()
 	w.retitle()
+	w.eval.Await(sameFrame)
 }
+
+// sameFrame is how long a change waits for its picture. Beyond it the window
+// goes on, and the picture comes when it is ready.
+const sameFrame = 12 * time.Millisecond
 
 // refreshLists brings lists and menus up to date with the project.
 func (w *Window) refreshLists() {

@@ -107,7 +107,7 @@ func search[T fyne.CanvasObject](o fyne.CanvasObject, ok func(T) bool, found *T)
 // press taps the button of a label.
 func (b *bed) press(label string) {
 	b.t.Helper()
-	test.Tap(find(b, func(w *widget.Button) bool { return w.Text == label && w.Visible() }))
+	test.Tap(find(b, func(w *keyButton) bool { return w.Text == label && w.Visible() }))
 	b.settle()
 }
 
