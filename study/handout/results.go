@@ -231,6 +231,9 @@ type PeakState struct {
 	Order Num `json:"order"`
 	Ohm   Num `json:"ohm"`
 	Q     Num `json:"q"` // 0 when it cannot be told
+
+	Capacitive []string `json:"capacitive"` // items whose capacitance makes a parallel resonance, largest share first
+	Inductive  []string `json:"inductive"`  // items whose inductance makes it
 }
 
 // CheckState is how well the solution satisfies its own equations.

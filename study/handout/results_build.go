@@ -211,7 +211,8 @@ func (b *builder) scan(r *study.ScanResult) ScanState {
 func (b *builder) peaks(ps []study.Peak) []PeakState {
 	out := []PeakState{}
 	for _, p := range ps {
-		out = append(out, PeakState{b.num(p.Order), b.num(p.Ohm), b.num(p.Q)})
+		out = append(out, PeakState{b.num(p.Order), b.num(p.Ohm), b.num(p.Q),
+			append([]string{}, p.Capacitive...), append([]string{}, p.Inductive...)})
 	}
 	return out
 }
