@@ -97,6 +97,15 @@ func top(img image.Image, height int) image.Image {
 	}).SubImage(b)
 }
 
+// bottom is the lower part of a picture.
+func bottom(img image.Image, height int) image.Image {
+	b := img.Bounds()
+	b.Min.Y = max(b.Min.Y, b.Max.Y-height)
+	return img.(interface {
+		SubImage(image.Rectangle) image.Image
+	}).SubImage(b)
+}
+
 // keep saves a picture for the eye when QUIETBUS_PICTURES names a folder.
 func keep(t testing.TB, name string, img image.Image) {
 	t.Helper()

@@ -38,7 +38,7 @@ type MeasureCard struct {
 	OnHover   func(inside bool)
 
 	measure Measure
-	hovered bool
+	compact bool // name, switch, one line and the button only
 
 	mark                                    *drawing
 	sw                                      *Switch
@@ -153,15 +153,19 @@ type measureCardRenderer struct {
 	back *canvas.Rectangle
 }
 
-func (r *measureCardRenderer) MinSize() fyne.Size { return cardSize(r.c) }
+func (r *measureCardRenderer) MinSize() fyne.Size { return cardSize(r.c, r.c.compact) }
 
-// cardSize is the size of every card as shown beside a widget: name, kind,
-// facts, two lines of worth or trouble, foot.
-func cardSize(w fyne.CanvasObject) fyne.Size {
+// cardSize is the size of every card as shown beside a widget: name and switch;
+// kind, facts, two lines of worth or trouble; foot. A compact card has name and
+// switch, and a foot with one of the lines.
+func cardSize(w fyne.CanvasObject, compact bool) fyne.Size {
 	k := max(typeScaleOf(w), 1)
-	caption := lineHeight(sizeOf(w, theme.SizeNameCaptionText), fyne.TextStyle{})
-	text := lineHeight(sizeOf(w, theme.SizeNameText), fyne.TextStyle{})
-	return fyne.NewSize(CardWidth*k, Step+switchHeight*k+4*caption+Step/2+text+Step+Step)
+	foot := lineHeight(sizeOf(w, theme.SizeNameText), fyne.TextStyle{}) + Step
+	height := Step/2 + switchHeight*k + foot + Step
+	if !compact {
+		height += Step + 4*lineHeight(sizeOf(w, theme.SizeNameCaptionText), fyne.TextStyle{})
+	}
+	return fyne.NewSize(CardWidth*k, height)
 }
 
 func (r *measureCardRenderer) Layout(size fyne.Size) {
@@ -171,9 +175,13 @@ func (r *measureCardRenderer) Layout(size fyne.Size) {
 	inner := size.Width - 2*pad
 	caption := lineHeight(sizeOf(c, theme.SizeNameCaptionText), fyne.TextStyle{})
 
+	top := Step
+	if c.compact {
+		top = Step / 2
+	}
 	sw := c.sw.MinSize()
 	c.sw.Resize(sw)
-	c.sw.Move(fyne.NewPos(size.Width-Step-sw.Width, Step))
+	c.sw.Move(fyne.NewPos(size.Width-Step-sw.Width, top))
 	side := fyne.Size{}
 	x := float32(pad)
 	if c.measure.Mark != nil {
@@ -184,35 +192,58 @@ func (r *measureCardRenderer) Layout(size fyne.Size) {
 		c.mark.Hide()
 	}
 	c.mark.Resize(side)
-	c.mark.Move(fyne.NewPos(pad, Step+(sw.Height-side.Height)/2))
+	c.mark.Move(fyne.NewPos(pad, top+(sw.Height-side.Height)/2))
 	name := lineHeight(sizeOf(c, theme.SizeNameText), fyne.TextStyle{Bold: true})
-	c.name.Move(fyne.NewPos(x, Step+(sw.Height-name)/2))
+	c.name.Move(fyne.NewPos(x, top+(sw.Height-name)/2))
 	c.name.Resize(fyne.NewSize(size.Width-Step-sw.Width-Step/2-x, name))
 
-	y := Step + sw.Height
-	row := func(p *paragraph, lines float32) {
-		p.Move(fyne.NewPos(pad, y))
-		p.Resize(fyne.NewSize(inner, lines*caption))
-		y += lines * caption
-	}
-	row(c.kind, 1)
-	row(c.facts, 1)
-	if c.measure.Conflict != "" {
-		c.trouble.Show()
-		c.worth.Hide()
-		row(c.trouble, 2)
-	} else {
-		c.trouble.Hide()
-		c.worth.Show()
-		row(c.worth, 2)
-	}
+	// The foot: the button, and to its left the cost, or on a compact card what
+	// matters most.
 	edit := c.edit.MinSize()
 	edit.Height = max(edit.Height-Step, Target)
-	y = size.Height - Step - edit.Height
+	foot := size.Height - Step - edit.Height
+	if c.compact {
+		foot = size.Height - Step/2 - edit.Height
+	}
 	c.edit.Resize(edit)
-	c.edit.Move(fyne.NewPos(size.Width-Step-edit.Width, y))
-	c.cost.Move(fyne.NewPos(pad, y+(edit.Height-caption)/2))
-	c.cost.Resize(fyne.NewSize(max(inner-edit.Width, 0), caption))
+	c.edit.Move(fyne.NewPos(size.Width-Step-edit.Width, foot))
+	room := inner - edit.Width
+	if c.OnEdit == nil {
+		room = inner
+	}
+
+	y := top + sw.Height
+	row := func(p *paragraph, lines int) {
+		p.most = lines
+		p.Move(fyne.NewPos(pad, y))
+		p.Resize(fyne.NewSize(inner, float32(lines)*caption))
+		y += float32(lines) * caption
+	}
+	last := c.worth
+	if c.measure.Conflict != "" {
+		last = c.trouble
+	}
+	show(c.worth, last == c.worth)
+	show(c.trouble, last == c.trouble)
+	for _, p := range []*paragraph{c.kind, c.facts, c.cost} {
+		show(p, !c.compact)
+	}
+	under := c.cost
+	if c.compact {
+		if last.text == "" {
+			last.Hide()
+			last = c.kind
+		}
+		last.Show()
+		under = last
+		under.most = 1
+	} else {
+		row(c.kind, 1)
+		row(c.facts, 1)
+		row(last, 2)
+	}
+	under.Move(fyne.NewPos(pad, foot+(edit.Height-caption)/2))
+	under.Resize(fyne.NewSize(max(room-Step/2, 0), caption))
 }
 
 func (r *measureCardRenderer) Refresh() {

@@ -6,7 +6,8 @@ import (
 	"fyne.io/fyne/v2/widget"
 )
 
-// A MeasureRow is the strip of measure cards; it scrolls sideways.
+// A MeasureRow is the strip of measure cards; it scrolls sideways. In a low
+// window, or with large type, the cards are compact.
 type MeasureRow struct {
 	widget.BaseWidget
 
@@ -136,6 +137,19 @@ func (m *MeasureRow) fill() {
 	m.scroll.Refresh()
 }
 
+// compact tells whether full cards would take too much of the window's height,
+// and sets the cards so.
+func (m *MeasureRow) compact() bool {
+	compact := false
+	if c := fyne.CurrentApp().Driver().CanvasForObject(m); c != nil && c.Size().Height > 0 {
+		compact = cardSize(m, false).Height > c.Size().Height*0.2
+	}
+	for _, card := range m.cards {
+		card.compact = compact
+	}
+	return compact
+}
+
 // CreateRenderer implements fyne.Widget.
 func (m *MeasureRow) CreateRenderer() fyne.WidgetRenderer {
 	m.ExtendBaseWidget(m)
@@ -145,14 +159,16 @@ func (m *MeasureRow) CreateRenderer() fyne.WidgetRenderer {
 type measureRowRenderer struct{ m *MeasureRow }
 
 func (r *measureRowRenderer) Layout(size fyne.Size) {
+	r.m.compact()
 	r.m.scroll.Resize(size)
+	r.m.scroll.Refresh()
 	r.m.empty.Resize(size)
 }
 
 // MinSize is the height of a card in any case, so the first card does not push
 // the rest of the window.
 func (r *measureRowRenderer) MinSize() fyne.Size {
-	return fyne.NewSize(CardWidth/2, max(cardSize(r.m).Height, r.m.empty.MinSize().Height)+Step)
+	return fyne.NewSize(CardWidth/2, max(cardSize(r.m, r.m.compact()).Height, r.m.empty.MinSize().Height)+Step)
 }
 
 func (r *measureRowRenderer) Refresh() {

@@ -4,6 +4,7 @@ import (
 	"testing"
 
 	"fyne.io/fyne/v2"
+	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/driver/desktop"
 	"fyne.io/fyne/v2/test"
 )
@@ -19,19 +20,58 @@ func someMeasures() []Measure {
 	}
 }
 
+// showMeasures shows the strip at the foot of a window.
+func showMeasures(t *testing.T, l look, size fyne.Size, measures []Measure) (*MeasureRow, fyne.Window) {
+	t.Helper()
+	var m *MeasureRow
+	w := stage(t, l, size, func() fyne.CanvasObject {
+		m = NewMeasureRow()
+		m.OnEdit, m.OnAdd = func(string) {}, func() {}
+		m.SetMeasures(measures)
+		return container.NewBorder(nil, m, nil, nil)
+	})
+	settle(w)
+	return m, w
+}
+
 func TestMeasureRowLooks(t *testing.T) {
-	for _, look := range looks {
-		w := stage(t, look, fyne.NewSize(1280, 160*look.size), func() fyne.CanvasObject {
-			m := NewMeasureRow()
-			m.OnEdit, m.OnAdd = func(string) {}, func() {}
-			m.SetMeasures(someMeasures())
-			return m
-		})
-		assertFits(t, look.name, w)
-		golden(t, "measures-"+look.name, w.Canvas().Capture())
-		w = stage(t, look, fyne.NewSize(900, 160*look.size), func() fyne.CanvasObject { return NewMeasureRow() })
-		assertFits(t, look.name+" empty", w)
-		keep(t, "measures-empty-"+look.name, w.Canvas().Capture())
+	for _, l := range looks {
+		for _, height := range []float32{800 * l.size, 500 * l.size} {
+			m, w := showMeasures(t, l, fyne.NewSize(1280, height), someMeasures())
+			assertFits(t, l.name, w)
+			name := "measures-"
+			if height == 500*l.size {
+				name = "measures-low-"
+			}
+			strip := w.Canvas().Capture()
+			golden(t, name+l.name, bottom(strip, int(m.Size().Height*l.pixels)))
+		}
+		_, w := showMeasures(t, l, fyne.NewSize(900, 160*l.size), nil)
+		assertFits(t, l.name+" empty", w)
+		keep(t, "measures-empty-"+l.name, w.Canvas().Capture())
+	}
+}
+
+// Cards leave the window its height: at most about a fifth of it, also with the
+// largest type in the smallest window.
+func TestMeasureRowLeavesRoom(t *testing.T) {
+	for _, c := range []struct {
+		size    float32
+		height  float32
+		compact bool
+	}{{1, 800, false}, {1, 500, true}, {1.4, 800, true}, {2, 800, true}, {2, 1600, false}} {
+		m, w := showMeasures(t, look{"", false, c.size, 1}, fyne.NewSize(1280, c.height), someMeasures())
+		if m.Card("F5").compact != c.compact {
+			t.Errorf("type %g in a window %g high: compact %v", c.size, c.height, !c.compact)
+		}
+		if h := m.MinSize().Height; h > 0.22*c.height {
+			t.Errorf("type %g: the strip takes %g of %g", c.size, h, c.height)
+		}
+		w.Resize(fyne.NewSize(1280, 2000))
+		settle(w)
+		if m.Card("F5").compact {
+			t.Error("the cards stay compact in a high window")
+		}
 	}
 }
 

@@ -139,7 +139,7 @@ func lineHeight(size float32, style fyne.TextStyle) float32 {
 	return fyne.MeasureText("Mg", size, style).Height
 }
 
-// wrapText breaks text at blanks, and inside a word that is too wide by itself.
+// wrapText breaks text where breakable allows, and inside a word that is too wide by itself.
 // Line feeds are kept. With most above zero the last line allowed ends in dots
 // when there is more.
 func wrapText(text string, width, size float32, style fyne.TextStyle, most int) []string {
@@ -147,7 +147,7 @@ func wrapText(text string, width, size float32, style fyne.TextStyle, most int) 
 	measure := func(s string) float32 { return fyne.MeasureText(s, size, style).Width }
 	for _, part := range strings.Split(text, "\n") {
 		line := ""
-		for _, word := range strings.Fields(part) {
+		for _, word := range breakable(part) {
 			next := word
 			if line != "" {
 				next = line + " " + word
@@ -176,6 +176,20 @@ func wrapText(text string, width, size float32, style fyne.TextStyle, most int) 
 		lines[most-1] = ellipsis(lines[most-1]+" ...", width, size, style)
 	}
 	return lines
+}
+
+// breakable splits a line where it may be broken: at blanks, but not before a
+// per-cent sign, nor at a blank that is marked as not to be broken.
+func breakable(line string) []string {
+	var words []string
+	for _, word := range strings.FieldsFunc(line, func(r rune) bool { return r == ' ' || r == '\t' }) {
+		if n := len(words); n > 0 && strings.HasPrefix(word, "%") {
+			words[n-1] += " " + word
+			continue
+		}
+		words = append(words, word)
+	}
+	return words
 }
 
 // fitting returns the longest head of a word that fits, one letter at least.

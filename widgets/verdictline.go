@@ -117,7 +117,7 @@ func (r *verdictLineRenderer) height(width float32) float32 {
 // most is the share of the window that sentences may take before they scroll.
 func (r *verdictLineRenderer) most() float32 {
 	if c := fyne.CurrentApp().Driver().CanvasForObject(r.v); c != nil && c.Size().Height > 0 {
-		return c.Size().Height * 0.3
+		return c.Size().Height * 0.28
 	}
 	return 30 * Step
 }
