@@ -123,23 +123,10 @@ func (b *BusResult) THD() float64 {
 // measures last.
 func (m *model) elements(o *Outcome, sol *solution) {
 	s := m.plan.study
-	for i := range s.Supplies {
-		m.passive(o, sol, KindSupply, s.Supplies[i].Name)
-	}
-	for i := range s.Transformers {
-		m.passive(o, sol, KindTransformer, s.Transformers[i].Name)
-	}
-	for i := range s.Cables {
-		m.passive(o, sol, KindCable, s.Cables[i].Name)
-	}
-	for i := range s.Reactors {
-		m.passive(o, sol, KindReactor, s.Reactors[i].Name)
-	}
-	for i := range s.Loads {
-		m.passive(o, sol, KindLoad, s.Loads[i].Name)
-	}
-	for i := range s.Motors {
-		m.passive(o, sol, KindMotor, s.Motors[i].Name)
+	for _, kind := range []Kind{KindSupply, KindTransformer, KindCable, KindReactor, KindLoad, KindMotor} {
+		for _, item := range s.Items(kind) {
+			m.passive(o, sol, kind, NameOf(item))
+		}
 	}
 	for i := range s.NonlinearLoads {
 		l := &s.NonlinearLoads[i]

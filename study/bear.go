@@ -19,7 +19,7 @@ func (m *model) measure(x *Measure, sol *solution, o *Outcome) MeasureResult {
 		for i := range m.plan.banks {
 			if b := &m.plan.banks[i]; b.Name == x.Target {
 				r.Bus = b.Bus
-				m.bears(&r, b.Name, m.branch[b.Name], b.RatedKV, b.Connection, o)
+				m.bears(&r, b.Name, m.branch[b.Name], b.RatedKV, b.connection(), o)
 			}
 		}
 	case RemoveBank:
@@ -43,38 +43,34 @@ func (m *model) measure(x *Measure, sol *solution, o *Outcome) MeasureResult {
 	return r
 }
 
-// bears fills in components and duty of a passive branch, from the current of
-// its worst phase.
+// bears fills in components and duty of a passive branch from its currents.
+// Capacitor voltages are those across each capacitor as it is connected:
+// between phases in delta, else phase to star point.
 func (m *model) bears(r *MeasureResult, element string, b *filter.Branch, ratedKV float64, connection string, o *Outcome) {
 	e := o.Element(element)
-	worst := filter.Duty{}
-	for _, current := range e.Ends[0].Phase {
-		if d := b.DutyOf(current); d.Current >= worst.Current {
-			worst = d
-		}
-	}
-	loss1, loss, output := 0.0, 0.0, 0.0
-	bus := o.Bus(e.Ends[0].Bus)
+	delta := connection == "delta"
+	d := b.Bear(e.Ends[0].Phase, delta)
+	output := 0.0
 	for p, current := range e.Ends[0].Phase {
-		d := b.DutyOf(current)
-		loss1, loss = loss1+d.Loss1, loss+d.Loss
-		output -= imag(bus.Phase[p].At(1) * cmplx.Conj(current.At(1)))
+		output -= imag(o.Bus(e.Ends[0].Bus).Phase[p].At(1) * cmplx.Conj(current.At(1)))
 	}
-	rated := 1000 * ratedKV
-	note := "rating stated"
+	across := math.Sqrt(3) // line-to-line rating over the voltage across one capacitor
+	if delta {
+		across = 1
+	}
+	rated, note := 1000*ratedKV, "rating stated"
 	if rated == 0 {
-		rated = filter.PreferredVoltage(m.needsV(b, worst))
-		note = "next preferred voltage above the duty"
+		rated, note = filter.PreferredVoltage(across*needsV(b, d, across)), "next preferred voltage above the duty"
 	}
-	kvar := rated * rated / b.Xc / 1000
-	r.Duty = &Duty{CurrentA1: worst.Current1, CurrentA: worst.Current, VoltageV1: worst.Voltage1, VoltageV: worst.Voltage, PeakV: worst.Peak,
-		RatedV: rated / math.Sqrt(3), RatedA: rated / math.Sqrt(3) / b.Xc, LossW1: loss1, LossW: loss, KvarRated: kvar, KvarOutput: output / 1000}
+	kvar := b.RatedVar(rated) / 1000
+	r.Duty = &Duty{CurrentA1: d.Current1, CurrentA: d.Current, VoltageV1: d.Voltage1, VoltageV: d.Voltage, PeakV: d.Peak,
+		RatedV: rated / across, RatedA: b.RatedCurrent(rated), LossW1: d.Loss1, LossW: d.Loss, KvarRated: kvar, KvarOutput: output / 1000}
 	for _, part := range b.Parts() {
 		c := Component{Part: part.Name, Symbol: part.Symbol, Value: part.Value}
 		switch part.Name {
 		case "capacitor":
 			c.Note = fmt.Sprintf("star equivalent; %.4g kvar at %.4g V rated (%s)", kvar, rated, note)
-			if connection == "delta" {
+			if delta {
 				c.Note += fmt.Sprintf("; %.4g uF in each side of the delta", 1e6*part.Value/3)
 			}
 		case "reactor":
@@ -84,11 +80,11 @@ func (m *model) bears(r *MeasureResult, element string, b *filter.Branch, ratedK
 	}
 }
 
-// needsV returns the line-to-line capacitor voltage that keeps the rms and
-// peak duty within the rating itself and the current within 1.3 times its
-// rated value (IEC 60831-1, from memory).
-func (m *model) needsV(b *filter.Branch, d filter.Duty) float64 {
-	return math.Sqrt(3) * math.Max(math.Max(d.Voltage, d.Peak/(math.Sqrt2*1.2)), d.Current*b.Xc/1.3)
+// needsV returns the voltage across one capacitor that its rating must have to
+// keep rms within the rating itself, the crest within 1.2 times and the current
+// within 1.3 times it (IEEE 18-2012, found; IEC 60831-1, from memory).
+func needsV(b *filter.Branch, d filter.Duty, across float64) float64 {
+	return max(d.Voltage, d.Peak/(math.Sqrt2*1.2), d.Current*b.Xc*math.Sqrt(3)/across/1.3)
 }
 
 func (m *model) lineReactor(x *Measure, l *NonlinearLoad, o *Outcome) Component {
@@ -143,4 +139,12 @@ func (m *model) response(r *MeasureResult, x *Measure, o *Outcome) {
 	r.Duty = d
 	g1 := r.Response[0]
 	r.Notes = append(r.Notes, fmt.Sprintf("At order 1 the outlet has %.3g %% of the bus voltage and lags it by %.3g degrees.", 100*g1.Ratio, g1.LagDeg))
+}
+
+// connection returns how the bank's capacitors are connected.
+func (b *Bank) connection() string {
+	if b.Connection == "" {
+		return "delta"
+	}
+	return b.Connection
 }

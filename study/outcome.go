@@ -79,7 +79,7 @@ type Component struct {
 type Duty struct {
 	CurrentA1  float64 // fundamental rms current in a line
 	CurrentA   float64 // total rms current
-	VoltageV1  float64 // across the capacitor of one phase, fundamental rms
+	VoltageV1  float64 // across one capacitor as connected (delta: between phases), fundamental rms
 	VoltageV   float64 // total rms
 	PeakV      float64 // crest of the synthesised waveform
 	RatedV     float64 // capacitor rating on the same footing; 0 when there is none

@@ -211,3 +211,59 @@ func TestDemandDistortion(t *testing.T) {
 		t.Errorf("state %v", v.State)
 	}
 }
+
+// A 7 % detuned bank: 50 kvar at 440 V on 400 V gives 44.4326 kvar at the bus,
+// its capacitors see 430.1075 V, and it draws 64.13293 A (derived; detuning
+// order 3.779645, IEC 60831-1 practice).
+func TestDetunedBank(t *testing.T) {
+	s := &Study{Format: 1, Title: Title{Study: "detuned"}, FrequencyHz: 50,
+		Supplies: []Supply{{Named: Named{"S"}, Bus: "A", FaultMVA: 1e6, XOverR: 10}},
+		Buses:    []Bus{{Named: Named{"A"}, NominalKV: 0.4}},
+		Banks:    []Bank{{Named: Named{"C"}, Bus: "A", Kvar: 50, AtKV: 0.44, RatedKV: 0.44, LossWPerKvar: 1e-9}},
+		Measures: []Measure{{Named: Named{"D"}, Kind: DetuneBank, Target: "C", Percent: 7}}}
+	s.Banks[0].ReactorQ = 1000
+	o := solve(t, s, "D")
+	d := o.Measures[0].Duty
+	near(t, "output", d.KvarOutput, 44.4326, 1e-4)
+	near(t, "capacitor voltage", d.VoltageV1, 430.1075, 1e-4)
+	near(t, "current", d.CurrentA1, 64.13293, 1e-4)
+	near(t, "nameplate", d.KvarRated, 50, 1e-6)
+	near(t, "rating", d.RatedV, 440, 1e-9)
+	for _, c := range o.Measures[0].Components {
+		switch c.Part {
+		case "capacitor":
+			near(t, "C", c.Value, 822.0813e-6, 1e-6)
+		case "reactor":
+			near(t, "L", c.Value, 0.8627471e-3, 1e-6)
+		}
+	}
+}
+
+// The single-tuned filter of 10 Mvar at 33 kV, 50 Hz, order 4.8, Q 50:
+// C 27.960914 uF, L 15.7277435 mH, R 0.474337568 ohm; with 500 MVA behind it the
+// parallel resonance lies at 3.99889 (derived).
+func TestTunedFilter(t *testing.T) {
+	s := &Study{Format: 1, Title: Title{Study: "tuned"}, FrequencyHz: 50,
+		Supplies: []Supply{{Named: Named{"S"}, Bus: "A", FaultMVA: 500, XOverR: 1000}},
+		Buses:    []Bus{{Named: Named{"A"}, NominalKV: 33}},
+		Measures: []Measure{{Named: Named{"F"}, Kind: SingleTuned, Bus: "A", Kvar: 10000, Order: 4.8, Q: 50}}}
+	o := solve(t, s, "F")
+	want := map[string]float64{"capacitor": 27.960914e-6, "reactor": 15.7277435e-3}
+	for _, c := range o.Measures[0].Components {
+		if v, ok := want[c.Part]; ok {
+			near(t, c.Part, c.Value, v, 1e-8)
+			delete(want, c.Part)
+		}
+	}
+	if len(want) > 0 {
+		t.Errorf("components missing: %v", want)
+	}
+	scan, err := Impedance(context.Background(), s, []string{"F"}, "A", phasor.Positive, 2, 10)
+	if err != nil {
+		t.Fatal(err)
+	}
+	near(t, "parallel resonance", scan.Peaks[0].Order, 3.99888935, 5e-4) // the damping moves the peak a little
+	if w := scan.Peaks[0].Words(); w != "F against S and F" && w != "F against S" {
+		t.Errorf("the resonance is %q", w)
+	}
+}
