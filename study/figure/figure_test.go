@@ -90,10 +90,13 @@ func TestTextsKeepApart(t *testing.T) {
 			if f.Key == "single-line" {
 				continue // fits itself by scaling: see below
 			}
-			for _, size := range []vg.Point{f.Size, {X: 330, Y: 200}, {X: 250, Y: 150}} {
+			for _, size := range []vg.Point{f.Size, {X: 330, Y: 200}, {X: 250, Y: 150}, {X: 200, Y: 110}} {
 				st := Light()
 				if size == (vg.Point{X: 250, Y: 150}) { // a quarter of the window's evidence
 					st = st.Scaled(1.3)
+				}
+				if size.X == 200 { // type at 200 %
+					st = st.Scaled(2.3)
 				}
 				hots, texts := recordIn(st, f, size.X, size.Y)
 				for i, a := range texts {

@@ -17,7 +17,13 @@ type pen struct {
 	hots []Hot
 }
 
+// newPen starts a figure on its ground. Where the canvas is too small for the
+// type asked for, the type gives way, so that no two texts meet.
 func newPen(c draw.Canvas, st *Style) *pen {
+	w, h := c.Max.X-c.Min.X, c.Max.Y-c.Min.Y
+	if k := min(w/(30*st.Small), h/(17*st.Small)); k < 1 && k > 0 {
+		st = st.Scaled(float64(k))
+	}
 	p := &pen{c: c, st: st}
 	p.fill(c.Rectangle, st.Ground)
 	return p
