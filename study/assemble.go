@@ -253,6 +253,17 @@ func (m *model) warn(o *Outcome, sol *solution) {
 			o.Warnings = append(o.Warnings, fmt.Sprintf("Bus %s has no supply; it and what stands on it are left out.", b.Name))
 		}
 	}
+	for _, x := range m.plan.study.Supplies {
+		var unknown []string
+		for _, b := range x.Background {
+			if b.AngleDeg == nil && b.Percent > 0 {
+				unknown = append(unknown, fmt.Sprint(b.Order))
+			}
+		}
+		if unknown != nil {
+			o.Warnings = append(o.Warnings, fmt.Sprintf("%s: the angle of its background is unknown at order %s and counts as zero; the background may add to or take from the site's own distortion.", x.Name, join(unknown)))
+		}
+	}
 	for _, l := range m.plan.study.NonlinearLoads {
 		if d, ok := sol.drawn[l.Name]; ok {
 			if dc := cmplx.Abs(d[0].At(0)) + cmplx.Abs(d[1].At(0)) + cmplx.Abs(d[2].At(0)); dc > 0 {
