@@ -71,7 +71,7 @@ func (w *Window) choose(title, text, yes string, onYes func(), no string, onNo f
 	body := container.NewBorder(nil, container.NewCenter(row), nil, nil, container.NewVScroll(label))
 	d = dialog.NewCustomWithoutButtons(title, body, w.win)
 	lines := 1 + len(text)/80 + strings.Count(text, "\n")
-	d.Resize(fyne.NewSize(620, min(160+float32(lines)*24, 560)))
+	d.Resize(fyne.NewSize(620, min(130+float32(lines)*20, 560)))
 	w.dialog = title
 	d.Show()
 	w.win.Canvas().Focus(first)

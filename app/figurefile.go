@@ -18,7 +18,6 @@ import (
 	"github.com/google/renameio/v2/maybe"
 	"gonum.org/v1/plot/vg/draw"
 	"gonum.org/v1/plot/vg/vgimg"
-	"gonum.org/v1/plot/vg/vgpdf"
 	"gonum.org/v1/plot/vg/vgsvg"
 
 	"quietbus/study/figure"
@@ -65,9 +64,9 @@ func (w *Window) saveFigure(f *figure.Figure) {
 		}
 		w.status.Say("Figure saved as " + path)
 	}, w.win)
-	d.SetFilter(storage.NewExtensionFileFilter([]string{".pdf", ".svg", ".png"}))
-	d.SetFileName(f.Key + ".pdf")
-	w.place(d)
+	d.SetFilter(storage.NewExtensionFileFilter([]string{".svg", ".png"}))
+	d.SetFileName(f.Key + ".svg")
+	w.place(d, "Save the figure as (.svg or .png)")
 	d.Show()
 }
 
@@ -78,10 +77,6 @@ func encodeFigure(f *figure.Figure, ext string) ([]byte, error) {
 	var out bytes.Buffer
 	var err error
 	switch strings.ToLower(ext) {
-	case ".pdf":
-		c := vgpdf.New(w, h)
-		f.Draw(draw.NewCanvas(c, w, h), figure.Print())
-		_, err = c.WriteTo(&out)
 	case ".svg":
 		c := vgsvg.New(w, h)
 		f.Draw(draw.NewCanvas(c, w, h), figure.Print())
@@ -91,7 +86,7 @@ func encodeFigure(f *figure.Figure, ext string) ([]byte, error) {
 		f.Draw(draw.New(c), figure.Print())
 		err = png.Encode(&out, c.Image())
 	default:
-		return nil, errors.New("a figure is saved as .pdf, .svg or .png: give the file name one of these endings")
+		return nil, errors.New("a figure is saved as .svg or .png: give the file name one of these endings; as PDF it is in the handout")
 	}
 	if err != nil {
 		return nil, fmt.Errorf("figure %s: %w", f.Key, err)

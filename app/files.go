@@ -153,7 +153,7 @@ func (w *Window) saveAs(next func()) {
 	}, w.win)
 	d.SetFilter(storage.NewExtensionFileFilter([]string{".json"}))
 	d.SetFileName(fileName(w.project))
-	w.place(d)
+	w.place(d, "Save the study as")
 	d.Show()
 }
 
@@ -195,12 +195,14 @@ func (w *Window) openDialog() {
 		w.open(f.URI().Path())
 	}, w.win)
 	d.SetFilter(storage.NewExtensionFileFilter([]string{".json"}))
-	w.place(d)
+	w.place(d, "Open a study")
 	d.Show()
 }
 
-// place gives a file dialog the folder to start in and room to work.
-func (w *Window) place(d *dialog.FileDialog) {
+// place gives a file dialog its title, the folder to start in and room to work.
+func (w *Window) place(d *dialog.FileDialog, title string) {
+	d.SetTitleText(title)
+	d.SetView(dialog.ListView)
 	if dir, err := storage.ListerForURI(storage.NewFileURI(w.folder())); err == nil {
 		d.SetLocation(dir)
 	}
@@ -270,7 +272,7 @@ func (w *Window) export() {
 		w.writeHandout(p, filepath.Join(dir.Path(), strings.TrimSuffix(fileName(w.project), suffix)+"-handout"))
 	}, w.win)
 	d.SetConfirmText("Write it here")
-	w.place(d)
+	w.place(d, "Folder for the handout")
 	d.Show()
 }
 

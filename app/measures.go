@@ -166,29 +166,6 @@ func placeOf(m *study.Measure) string {
 	return m.Target
 }
 
-// kindWord returns what a kind of measure is called.
-func kindWord(kind string) string {
-	switch kind {
-	case study.SingleTuned:
-		return "Single-tuned filter"
-	case study.HighPass:
-		return "High-pass filter"
-	case study.DetuneBank:
-		return "Detuning reactor"
-	case study.RemoveBank:
-		return "Bank taken out"
-	case study.ActiveFilter:
-		return "Active filter"
-	case study.LineReactor:
-		return "Line reactor"
-	case study.LowPassRC:
-		return "R-C low-pass"
-	case study.LowPassLC:
-		return "L-C low-pass"
-	}
-	return kind
-}
-
 // facts says what a measure is made of: its components when it is on, else its
 // ratings.
 func facts(s *study.Study, m *study.Measure, p *Picture) string {
@@ -220,16 +197,23 @@ func componentText(r *study.MeasureResult) string {
 		parts = append(parts, c.Symbol+" "+engineering(c))
 	}
 	if d := r.Duty; d != nil && d.CurrentA > 0 {
-		text := short(d.CurrentA) + " A rms"
-		if d.RatedA > 0 {
-			text = fmt.Sprintf("%s of %s A", short(d.CurrentA), short(d.RatedA))
-		}
-		if r.Saturated {
-			text += ", saturated"
-		}
-		parts = append(parts, text)
+		parts = append(parts, dutyText(r.Kind, d, r.Saturated))
 	}
 	return strings.Join(parts, ", ")
+}
+
+// dutyText sets a measure's current against its rating: an active filter's own,
+// else that of its capacitors, which standards allow to be passed for a part.
+func dutyText(kind string, d *study.Duty, saturated bool) string {
+	switch {
+	case saturated:
+		return fmt.Sprintf("all of its %s A: saturated", short(d.RatedA))
+	case d.RatedA <= 0:
+		return short(d.CurrentA) + " A"
+	case kind == study.ActiveFilter:
+		return fmt.Sprintf("%s of its %s A", short(d.CurrentA), short(d.RatedA))
+	}
+	return fmt.Sprintf("%s A (%s %% of rated)", short(d.CurrentA), short(100*d.CurrentA/d.RatedA))
 }
 
 // engineering prints a component value in the unit of its size.

@@ -13,8 +13,6 @@ import (
 	"fyne.io/fyne/v2/widget"
 
 	"quietbus/study"
-	"quietbus/study/converter"
-	"quietbus/study/limits"
 	"quietbus/widgets"
 )
 
@@ -101,10 +99,13 @@ func (d *draft) fields() []widgets.SheetField {
 	word := d.word()
 	var out []widgets.SheetField
 	for _, f := range study.Describe(d.kind) {
-		if !f.Applies(word) {
+		if !f.Applies(word) || d.idle(f.Key) {
 			continue
 		}
-		s := fieldOf(f, toSheet(f, study.GetField(item, f.Key)))
+		s := fieldOf(f, toSheet(f, titleOf(d.kind, f.Key, study.GetField(item, f.Key))))
+		if named := titles(d.kind, f.Key); named != nil {
+			s.Choices = named
+		}
 		s.Choices = append(s.Choices, d.choices(f)...)
 		if s.Kind == widgets.FieldText && len(s.Choices) > 0 {
 			s.Kind = widgets.FieldChoice
@@ -121,6 +122,13 @@ func (d *draft) fields() []widgets.SheetField {
 		out = append(out, s)
 	}
 	return out
+}
+
+// idle reports whether a field has no effect as the item is now: the lines of a
+// spectrum that is not typed.
+func (d *draft) idle(key string) bool {
+	load, ok := d.item().(*study.NonlinearLoad)
+	return ok && key == "lines" && load.Spectrum != study.Typed && len(load.Lines) == 0
 }
 
 // fieldOf translates a field's description.
@@ -155,21 +163,9 @@ func fieldOf(f study.Field, text string) widgets.SheetField {
 	return s
 }
 
-// choices returns the names and words that a field may hold beyond its own.
+// choices returns the names of items that a field may hold.
 func (d *draft) choices(f study.Field) []string {
 	var out []string
-	switch {
-	case d.kind == study.KindNonlinearLoad && f.Key == "spectrum":
-		for _, m := range converter.Typical() {
-			out = append(out, m.Name)
-		}
-		return append(out, study.Typed)
-	case d.kind == study.KindAssessment && f.Key == "set":
-		for _, set := range limits.Sets() {
-			out = append(out, set.ID)
-		}
-		return out
-	}
 	if len(f.Ref) > 0 && !f.Need && f.Type == study.Text {
 		out = append(out, "")
 	}
@@ -220,7 +216,7 @@ func (d *draft) set(key, text string) error {
 		d.name = text
 		return nil
 	}
-	if err := study.SetField(d.item(), key, fromSheet(study.FieldOf(d.kind, key), text)); err != nil || key != "kind" {
+	if err := study.SetField(d.item(), key, fromSheet(study.FieldOf(d.kind, key), wordOf(d.kind, key, text))); err != nil || key != "kind" {
 		return err
 	}
 	return d.clearOthers()

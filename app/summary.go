@@ -37,7 +37,7 @@ func summary(item any) string {
 		if i.KW == 0 {
 			size = short(i.CurrentA) + " A"
 		}
-		return fmt.Sprintf("on %s, %s, %s", i.Bus, size, i.Spectrum)
+		return fmt.Sprintf("on %s, %s, %s", i.Bus, size, titleOf(study.KindNonlinearLoad, "spectrum", i.Spectrum))
 	case *study.Bank:
 		text := fmt.Sprintf("on %s, %s kvar", i.Bus, short(i.Kvar))
 		if i.DetuningPercent > 0 {
@@ -49,7 +49,7 @@ func summary(item any) string {
 	case *study.Measure:
 		return measureSummary(i)
 	case *study.Assessment:
-		return fmt.Sprintf("%s at %s", i.Set, i.Bus)
+		return fmt.Sprintf("%s at %s", titleOf(study.KindAssessment, "set", i.Set), i.Bus)
 	case *study.ScanRequest:
 		return "at " + i.Bus
 	}

@@ -5,10 +5,9 @@ package main
 import (
 	"fmt"
 	"strconv"
+	"time"
 
 	"quietbus/study"
-	"quietbus/study/converter"
-	"quietbus/study/limits"
 	"quietbus/widgets"
 )
 
@@ -108,8 +107,15 @@ func (w *Window) sheet(s *widgets.Sheet, title string, apply func()) {
 	s.Reload()
 	pop.Show()
 	w.dialog = title
-	s.FocusField("")
 	w.report()
+	go func() { // a field takes the focus only once it has been painted
+		time.Sleep(80 * time.Millisecond)
+		w.post(func() {
+			if pop.Visible() {
+				s.FocusField("")
+			}
+		})
+	}()
 }
 
 // An answer is one field of the New study sheet: a field of an item as the
@@ -159,8 +165,10 @@ func (w *Window) newStudy() {
 			return "", ""
 		}
 		sheet.OnChanged = func(key, text, problem string) {
-			if problem == "" {
-				given[key] = text
+			for _, a := range answers {
+				if a.key == key && problem == "" {
+					given[key] = wordOf(a.kind, a.field, text)
+				}
 			}
 		}
 		w.sheet(sheet, "New study", func() { w.adopt(NewProject(fromAnswers(given))) })
@@ -183,17 +191,10 @@ func (a answer) describe() study.Field {
 func (a answer) sheetField(text string) widgets.SheetField {
 	f := fieldOf(a.describe(), text)
 	f.Key, f.Label, f.Sourced, f.Default = a.key, a.label, false, ""
+	if named := titles(a.kind, a.field); named != nil {
+		f.Kind, f.Choices, f.Text = widgets.FieldChoice, named, titleOf(a.kind, a.field, text)
+	}
 	switch a.key {
-	case "spectrum":
-		f.Kind = widgets.FieldChoice
-		for _, m := range converter.Typical() {
-			f.Choices = append(f.Choices, m.Name)
-		}
-	case "set":
-		f.Kind = widgets.FieldChoice
-		for _, set := range limits.Sets() {
-			f.Choices = append(f.Choices, set.ID)
-		}
 	case "drives", "linear":
 		f.Help, f.Default = "Active power in kW; leave empty for none.", "none"
 	}

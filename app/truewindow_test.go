@@ -92,7 +92,7 @@ func (d *desk) open(theme string, args ...string) {
 	d.cmd.Dir = ".." // FyneApp.toml, as under make run
 	d.cmd.Env = append(os.Environ(), "DISPLAY="+d.display, "LANG=C", "LIBGL_ALWAYS_SOFTWARE=1",
 		"FYNE_SCALE=1", "FYNE_THEME="+theme, "QUIETBUS_TIMING=1",
-		"QUIETBUS_HOME="+filepath.Join(d.dir, "home"), "QUIETBUS_STATE="+d.stateFile())
+		"XDG_CONFIG_HOME="+filepath.Join(d.dir, "config"), "QUIETBUS_HOME="+filepath.Join(d.dir, "home"), "QUIETBUS_STATE="+d.stateFile())
 	d.cmd.Stderr = os.Stderr
 	d.start(d.cmd)
 	d.until("the window", func() bool {
@@ -192,7 +192,7 @@ func TestTrueWindow(t *testing.T) {
 	}
 	d := newDesk(t, 1280, 800)
 	d.open("light", demo)
-	d.xdo("windowmove", d.window, "0", "0", "windowsize", d.window, "1280", "778")
+	d.xdo("windowmove", d.window, "0", "20", "windowsize", d.window, "1280", "778")
 
 	on := s.OnMeasures()
 	before := expected(t, s, on)
@@ -250,7 +250,7 @@ func TestTrueWindow(t *testing.T) {
 		t.Fatalf("after a crash %d unsaved studies are found", len(left))
 	}
 	d.open("dark", demo)
-	d.xdo("windowmove", d.window, "0", "0", "windowsize", d.window, "1280", "778")
+	d.xdo("windowmove", d.window, "0", "20", "windowsize", d.window, "1280", "778")
 	d.until("the offer to recover", func() bool { return d.state().Dialog == recoverTitle })
 	time.Sleep(time.Second)
 	d.xdo("key", "Return")
@@ -265,6 +265,7 @@ func TestTrueWindow(t *testing.T) {
 // look takes a picture and checks that something is drawn on it.
 func (d *desk) look(name string) {
 	d.t.Helper()
+	time.Sleep(500 * time.Millisecond) // the report is written before the frame is painted
 	f, err := os.Open(d.shot(name))
 	if err != nil {
 		d.t.Error(err)

@@ -211,7 +211,7 @@ func TestWindowBuildFromNothing(t *testing.T) {
 	add(study.KindBus, "name", "Board", "nominalKV", "0.4")
 	add(study.KindSupply, "bus", "Intake", "faultMVA", "200")
 	add(study.KindTransformer, "hvBus", "Intake", "lvBus", "Board", "ratedKVA", "1000")
-	add(study.KindNonlinearLoad, "name", "Drives", "bus", "Board", "kW", "300", "spectrum", "six-pulse")
+	add(study.KindNonlinearLoad, "name", "Drives", "bus", "Board", "kW", "300", "spectrum", titleOf(study.KindNonlinearLoad, "spectrum", "six-pulse"))
 	add(study.KindBank, "name", "C1", "bus", "Board", "kvar", "250")
 	add(study.KindAssessment, "bus", "Board")
 	if b.picture.Err != nil {
@@ -220,7 +220,7 @@ func TestWindowBuildFromNothing(t *testing.T) {
 	if v := b.verdict.Verdicts(); len(v) != 1 || v[0].State != widgets.Fails {
 		t.Fatalf("verdict %+v", v)
 	}
-	add(study.KindMeasure, "name", "Detune", "kind", study.DetuneBank, "target", "C1", "percent", "7")
+	add(study.KindMeasure, "name", "Detune", "kind", kindWord(study.DetuneBank), "target", "C1", "percent", "7")
 	b.flip("Detune")
 	b.settle()
 	if b.picture.Err != nil {
@@ -464,6 +464,63 @@ func TestSelectionTurnsEvidence(t *testing.T) {
 				t.Errorf("%s: no %s", option, name)
 			}
 		}
+	}
+}
+
+func TestTypedSpectrumInSheet(t *testing.T) {
+	b := newBed(t)
+	b.adopt(NewProject(small()))
+	b.settle()
+	b.edit("Drives")
+	s := b.sheet()
+	if _, shown := s.Text("lines"); shown {
+		t.Error("lines are asked for though the spectrum is a typical one")
+	}
+	s.SetText("spectrum", titleOf(study.KindNonlinearLoad, "spectrum", study.Typed))
+	s.SetText("lines", "5\t20\t180\n5\t4\t0")
+	if s.Problem("lines") == "" {
+		t.Error("an order that stands twice is taken")
+	}
+	s.SetText("lines", "5\t20\t180\n7\t11\t0")
+	s.Apply()
+	b.settle()
+	l := b.project.Study().NonlinearLoads[0]
+	if b.overlay() != nil || l.Spectrum != study.Typed || len(l.Lines) != 2 || l.Lines[1].Percent != 11 {
+		t.Errorf("typed %+v; %v", l.Lines, s.Problems())
+	}
+}
+
+func TestHandoutFromWindow(t *testing.T) {
+	b := newBed(t)
+	dir := filepath.Join(t.TempDir(), "handout")
+	b.writeHandout(b.picture, dir)
+	for b.dialog != "Handout written" {
+		select {
+		case f := <-b.queue:
+			f()
+		case <-time.After(20 * time.Second):
+			t.Fatalf("no word of the handout; said %q", b.said())
+		}
+	}
+	if _, err := os.Stat(filepath.Join(dir, "handout.pdf")); err != nil {
+		t.Error(err)
+	}
+	if !strings.Contains(b.said(), dir) {
+		t.Errorf("said %q", b.said())
+	}
+}
+
+func TestSavedFigures(t *testing.T) {
+	b := newBed(t)
+	f := b.evidence.figure("Spectrum")
+	for ext, head := range map[string]string{".svg": "<?xml", ".png": "\x89PNG"} {
+		data, err := encodeFigure(f, ext)
+		if err != nil || !strings.HasPrefix(string(data), head) {
+			t.Errorf("%s: %v, begins %q", ext, err, data[:min(len(data), 8)])
+		}
+	}
+	if _, err := encodeFigure(f, ".gif"); err == nil || !strings.Contains(err.Error(), ".svg") {
+		t.Errorf("a form that is not known: %v", err)
 	}
 }
 
