@@ -105,7 +105,7 @@ type Section struct {
 	LeakageOhm float64
 	ChokeH     float64 // own choke or half interphase reactor in its direct current
 	ChokeOhm   float64
-	Share      float64 // SeparateLink: share of PowerW on this bridge; all zero: equal
+	Share      float64 // SeparateLink: relative share of PowerW on this bridge; all zero: equal
 }
 
 // phases reports whether the kind has a three-phase unit by nature.
@@ -173,16 +173,19 @@ func (n Nameplate) withDefaults() Nameplate {
 				sections[i].Ratio = 1
 			}
 		}
-		if len(n.Sections) == 0 || own {
-			n.Sections = sections
+		if len(n.Sections) > 0 && !own {
+			return n // refused by check
 		}
+		n.Sections = sections
 		var total float64
 		for _, s := range n.Sections {
 			total += s.Share
 		}
-		if total == 0 {
-			for i := range n.Sections {
-				n.Sections[i].Share = 1 / float64(len(n.Sections))
+		for i := range n.Sections {
+			if s := &n.Sections[i]; total == 0 {
+				s.Share = 1 / float64(len(n.Sections))
+			} else {
+				s.Share /= total
 			}
 		}
 	}

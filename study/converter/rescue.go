@@ -60,18 +60,23 @@ func alternates(n Nameplate, r *Result) bool {
 	return false
 }
 
-// rescue tries again from a direct voltage found with an endless capacitor,
-// and says whether the supply is too weak for the power.
+// rescue tries again from a direct voltage found with the direct side held, and
+// says whether the supply is too weak for the power.
 func rescue(ctx context.Context, n Nameplate, t Terminal, o Options, cause error) (*Result, error) {
 	var named *ConditionError
 	if !errors.As(cause, &named) {
 		return nil, cause
 	}
-	if named.Condition != NotSettled && named.Condition != WeakSupply || n.Load != ConstantPower && n.Load != TightPower && n.Load != Motor {
+	if named.Condition != NotSettled && named.Condition != WeakSupply || n.Kind == KindControlledReactor || n.Kind == KindControlledResistor {
 		return nil, cause
 	}
-	if n.Smoothing != ByCapacitor {
+	switch {
+	case n.Load == Resistive:
+		return nil, cause
+	case n.Smoothing != ByCapacitor:
 		return rescueChoke(ctx, n, t, o, cause)
+	case n.Load == FixedCurrent:
+		return nil, cause
 	}
 	volts, most, err := holding(ctx, n, t)
 	if err != nil {
@@ -117,7 +122,7 @@ func holding(ctx context.Context, n Nameplate, t Terminal) (volts, most float64,
 		top = math.Max(top, crest(r.legs, n.Kind == KindHalfWave, t.Voltage)-2*n.DropV)
 	}
 	deliver := func(v float64) (float64, error) {
-		w, err := held(ctx, n, t, v)
+		w, _, _, err := held(ctx, n, t, v)
 		most = math.Max(most, w)
 		return w, err
 	}
@@ -153,9 +158,12 @@ func holding(ctx context.Context, n Nameplate, t Terminal) (volts, most float64,
 	return 0, most, nil
 }
 
-// held returns the power into a direct side held at v.
-func held(ctx context.Context, n Nameplate, t Terminal, v float64) (float64, error) {
-	n.Load, n.Smoothing = FixedCurrent, ByChoke
+// held returns the power and the direct current of links held at v, and the
+// orbit.
+func held(ctx context.Context, n Nameplate, t Terminal, v float64) (watts, amps float64, o *piecewise.Orbit, err error) {
+	if n.Smoothing == ByCapacitor {
+		n.Load, n.Smoothing = FixedCurrent, ByChoke
+	}
 	p := buildRectifier(n, t, nil)
 	c := p.c
 	// the back EMF takes the voltage; its parameter is not free any more
@@ -171,37 +179,89 @@ func held(ctx context.Context, n Nameplate, t Terminal, v float64) (float64, err
 	c.Controls = nil
 	s := piecewise.NewSolver(c)
 	s.Start(p.start[:nb+1])
-	o, err := s.Solve(ctx, t.Voltage, 1)
+	o, err = s.Solve(ctx, t.Voltage, 1)
 	if err != nil {
-		return 0, err
+		return 0, 0, nil, err
 	}
-	var amps float64
 	for _, l := range p.links {
 		for _, d := range l.direct {
 			amps += o.Moments[d][nb]
 		}
 	}
-	return v * amps, nil
+	return v * amps, amps, o, nil
 }
 
-// rescueChoke says whether a load that holds its power by its back EMF asks
-// more than the rectifier can give.
+// rescueChoke finds the back EMF at which a rectifier without capacitor gives
+// the power or current asked for, coming down from the highest, and says
+// whether it can give that much.
 func rescueChoke(ctx context.Context, n Nameplate, t Terminal, o Options, cause error) (*Result, error) {
-	probe := n
-	if n.Load != Motor {
-		probe.ArmatureOhm = 0
+	s := &State{plate: n, source: t}
+	s.source.Voltage = [3]phasor.Spectrum{}
+	s.build(t, nil)
+	target, most := 0.0, 0.0
+	var crest float64
+	for _, l := range s.plant.links {
+		crest = math.Max(crest, l.crest)
+		target += l.watts
 	}
-	top, most := n.idealDirect()*math.Cos(n.FiringDeg*math.Pi/180), 0.0
-	for i := 1; i < 20; i++ {
-		w, err := held(ctx, probe, t, top*float64(i)/20)
-		if ctx.Err() != nil {
+	if n.Load == FixedCurrent {
+		target = 0
+		for _, c := range s.plant.c.Controls {
+			target += c.Target
+		}
+	}
+	var orbit *piecewise.Orbit
+	deliver := func(e float64) (float64, error) {
+		watts, amps, found, err := held(ctx, n, t, e)
+		if err != nil {
+			return 0, err
+		}
+		orbit = found
+		if n.Load == FixedCurrent {
+			watts = amps
+		}
+		most = math.Max(most, watts)
+		return watts, nil
+	}
+	const steps = 40
+	above, low := crest, 0.0
+	if n.Load == FixedCurrent {
+		low = -crest
+	}
+	for i := 1; i < steps; i++ {
+		e := crest - (crest-low)*float64(i)/steps
+		x, err := deliver(e)
+		switch {
+		case ctx.Err() != nil:
 			return nil, ctx.Err()
+		case err != nil:
+			continue
+		case x < target:
+			above = e
+			continue
 		}
-		if err == nil {
-			most = math.Max(most, w)
+		below := e
+		for j := 0; j < 30; j++ {
+			if x, err = deliver((above + below) / 2); err != nil {
+				return nil, cause
+			}
+			if x < target {
+				above = (above + below) / 2
+			} else {
+				below = (above + below) / 2
+			}
 		}
+		parameters := make([]float64, len(s.plant.c.Controls))
+		for k := range parameters {
+			parameters[k] = (above + below) / 2
+		}
+		s.solver.Continue(orbit, parameters)
+		if r, err := s.run(ctx, t, o.Order); err == nil || ctx.Err() != nil {
+			return r, err
+		}
+		return nil, cause
 	}
-	if most > 0 && most < n.PowerW {
+	if most > 0 && n.Load != FixedCurrent {
 		return nil, &ConditionError{
 			Condition: WeakSupply, Field: "PowerW", AvailableW: most,
 			Reason: "at this firing angle and reactance the rectifier can deliver " + power(most) + " at most, not " + power(n.PowerW),

@@ -69,6 +69,18 @@ func (s *Solver) Start(full []float64) {
 	s.at, s.ok = start{sample: quiet, key: 0, x: x}, false
 }
 
+// Continue sets the next start to that of an orbit of a circuit that differs
+// only in having fixed EMFs where this one has free parameters, whose values
+// are given.
+func (s *Solver) Continue(o *Orbit, parameters []float64) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
+	first := o.segs[0]
+	x := append(append([]float64(nil), first.xa[:first.m.n]...), 1)
+	s.at = start{sample: int(math.Round(first.a / cell)), key: first.m.key, x: append(x, parameters...)}
+	s.ok = true
+}
+
 // Warm reports whether the solver holds a periodic state to start from.
 func (s *Solver) Warm() bool {
 	s.mu.Lock()
