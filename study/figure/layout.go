@@ -18,6 +18,7 @@ const (
 	linkHeight   = 1.6
 	supplyHeight = 3.2
 	rakeTop      = 0.5
+	feederPitch  = 7.0 // between parallel feeders
 )
 
 // Layout places everything on the single-line, in steps from the top left.
@@ -99,12 +100,12 @@ func Tidy(s *study.Study) *Layout {
 	x := 1.0
 	for _, sup := range s.Supplies {
 		if !t.placed[sup.Bus] {
-			x += t.place(sup.Bus, x, supplyHeight) + 2*columnGap
+			x += t.place(sup.Bus, x, supplyHeight, columnWidth) + 2*columnGap
 		}
 	}
 	for _, b := range s.Buses {
 		if !t.placed[b.Name] {
-			x += t.place(b.Name, x, supplyHeight) + 2*columnGap
+			x += t.place(b.Name, x, supplyHeight, columnWidth) + 2*columnGap
 		}
 	}
 	t.finish()
@@ -151,8 +152,8 @@ func rowsOf(s *study.Study) map[string][]Row {
 }
 
 // place puts a bus and all below it, from x on and with its place's top at
-// top, and returns the width taken.
-func (t *tidy) place(bus string, x, top float64) float64 {
+// top, at least as wide as least, and returns the width taken.
+func (t *tidy) place(bus string, x, top, least float64) float64 {
 	t.placed[bus] = true
 	at := len(t.lay.Buses)
 	t.ofIndex[bus] = at
@@ -185,11 +186,29 @@ func (t *tidy) place(bus string, x, top float64) float64 {
 			f.X += columnGap
 			t.lay.Feeders[len(t.lay.Feeders)-1].X = f.X
 		}
-		width += t.place(e.other, x+width, childTop)
+		need := columnWidth
+		for k, p := range t.parallel(bus, e.other) {
+			p.Tree, p.X = true, f.X+feederPitch*float64(k+1)
+			t.lay.Feeders = append(t.lay.Feeders, p)
+			need = max(need, feederPitch*float64(k+2)+0.6)
+		}
+		width += t.place(e.other, x+width, childTop, need)
 	}
-	width = max(width, columnWidth)
+	width = max(width, least)
 	t.lay.Buses[at].W = width
 	return width
+}
+
+// parallel returns the further ways between a bus and one that was just hung
+// under it, and takes them.
+func (t *tidy) parallel(bus, child string) (list []Feeder) {
+	for _, e := range t.near[bus] {
+		if e.other == child && !*e.used && e.Kind != study.KindCoupler {
+			*e.used = true
+			list = append(list, e.Feeder)
+		}
+	}
+	return list
 }
 
 // fedOtherwise reports whether a transformer or cable leads to the bus from a

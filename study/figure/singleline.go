@@ -475,6 +475,14 @@ func (d *diagram) device(f *Feeder, q vg.Point) {
 		}
 	}
 	x := q.X + 14
+	if f.Kind == study.KindCoupler {
+		w := d.width(d.st.Small, words[0])
+		d.patch(q.X-w/2, q.Y+14, d.st.Small, d.st.Ink, false, words[0])
+		r := rect(q.X-max(w/2, 8), q.Y-9, q.X+max(w/2, 8), q.Y+18)
+		d.frame(f.Name, r)
+		d.hot(r, "item", f.Name, f.Name+"\n"+study.InfoOf(f.Kind).Singular)
+		return
+	}
 	if f.Kind == study.KindCable {
 		x = q.X + 6
 		words[0], words[1] = words[0]+"  "+words[1], ""
@@ -516,8 +524,8 @@ func (d *diagram) tie(f *Feeder, a, b *PlacedBus) {
 		a, b = b, a
 	}
 	start := at2(a.X+a.W, a.Y)
-	end := at2(b.X+0.3, b.Y)
-	mid := vg.Point{X: start.X + 6, Y: start.Y}
+	end := at2(b.X, b.Y)
+	mid := vg.Point{X: (start.X + end.X) / 2, Y: start.Y}
 	if b.X < a.X+a.W {
 		end = at2(b.X+b.W, b.Y)
 		mid.X = max(start.X, end.X) + 8
