@@ -1,6 +1,7 @@
 package study
 
 import (
+	"errors"
 	"fmt"
 	"math"
 	"reflect"
@@ -382,23 +383,33 @@ func (c *checker) senses(m *Measure) {
 	c.add(m.Name, "senses", "there is no non-linear load for it to sense", "name the loads it senses, or put it on their bus")
 }
 
-// wiring builds the network once: vector groups that disagree and the like.
+// wiring builds the network without measures and with each by itself: vector
+// groups that disagree, a neutral without earth, a low-pass between phases and
+// the like.
 func (c *checker) wiring() {
 	if len(c.found) > 0 {
 		return
 	}
-	p, err := c.study.apply(nil)
-	if err == nil {
-		_, err = p.build()
+	sets := [][]string{nil}
+	for i := range c.study.Measures {
+		sets = append(sets, []string{c.study.Measures[i].Name})
 	}
-	if err == nil {
+	for _, on := range sets {
+		p, err := c.study.apply(on)
+		if err == nil {
+			_, err = p.build()
+		}
+		if err == nil {
+			continue
+		}
+		var f *FieldError
+		if errors.As(err, &f) {
+			c.found = append(c.found, f)
+		} else {
+			c.add("study", "", err.Error(), "correct the connections")
+		}
 		return
 	}
-	if f, ok := err.(*FieldError); ok {
-		c.found = append(c.found, f)
-		return
-	}
-	c.add("study", "", err.Error(), "correct the connections")
 }
 
 // Warnings returns values that are possible but unusual, in plain sentences
