@@ -1,10 +1,11 @@
 # Quietbus. On a fresh Debian or Ubuntu machine Go and make are enough:
 #
-#   make run     install what is missing and open the demo study
+#   make run     install what is missing and open the demo study; without a
+#                display write the demo's handout to ./demo-handout
 #   make test    install what is missing and run every check
 #
 #   make build   ./quietbus
-#   make bench   the speed figures of the README
+#   make bench   the speed figures
 #   make shots   pictures of the window, in ./shots
 
 SHELL := /bin/bash
@@ -13,18 +14,23 @@ GO ?= go
 BUILD := -buildvcs=false
 DEMO := testdata/demo.study.json
 
-.PHONY: run test build bench shots go-here packages test-packages first-build fmt vet unit race window
+.NOTPARALLEL:
+.PHONY: run test build bench shots demo-handout go-here packages test-packages first-build fmt vet unit race window
 
-run: go-here
 ifeq ($(DISPLAY),)
-	@echo "quietbus: there is no display here, so the demo's handout is written instead of opening the window"
-	@$(GO) run $(BUILD) -tags headless ./app handout $(DEMO) -o demo-handout; \
-	  rc=$$?; [ $$rc -le 1 ] || exit $$rc; \
-	  echo "quietbus: the demo's handout is in $(CURDIR)/demo-handout (start with handout.pdf)"
+run: demo-handout
 else
-	@$(MAKE) --no-print-directory build
+run: build
 	./quietbus $(DEMO)
 endif
+
+# A build without the window: no C compiler, no graphics packages.
+demo-handout: go-here
+	@echo "quietbus: there is no display here, so the demo's handout is written instead of opening the window"
+	@.ci/packages handout
+	$(GO) build $(BUILD) -tags headless -o .build/quietbus ./app
+	@.build/quietbus handout $(DEMO) -o demo-handout; rc=$$?; [ $$rc -le 1 ] || exit $$rc
+	@echo "quietbus: the handout is in $(CURDIR)/demo-handout; begin with handout.pdf"
 
 build: packages first-build
 	$(GO) build $(BUILD) -o quietbus ./app
@@ -33,7 +39,7 @@ test: test-packages fmt first-build vet unit race window
 	@echo "quietbus: all checks passed"
 
 go-here:
-	@command -v $(GO) >/dev/null || { echo "quietbus: Go is missing; install Go 1.26 or newer (https://go.dev/dl) and make, then start again" >&2; exit 1; }
+	@command -v $(GO) >/dev/null || { echo "quietbus: Go is missing; install Go 1.26 or newer (https://go.dev/dl) and start again" >&2; exit 1; }
 
 packages: go-here
 	@.ci/packages run
@@ -47,23 +53,27 @@ first-build:
 	  echo "quietbus: the first build of the graphics library takes some minutes (over three on two cores); later ones are quick"; fi
 
 fmt:
-	@bad=$$(gofmt -l app assets study widgets testdata); [ -z "$$bad" ] || { echo "quietbus: gofmt these files:" >&2; echo "$$bad" >&2; exit 1; }
+	@bad=$$("$$($(GO) env GOROOT)/bin/gofmt" -l app assets study widgets testdata) || exit 1; \
+	  [ -z "$$bad" ] || { echo "quietbus: gofmt these files:" >&2; echo "$$bad" >&2; exit 1; }
 
 vet:
 	$(GO) vet $(BUILD) ./...
+	$(GO) vet $(BUILD) -tags headless ./app
 
 unit:
 	$(GO) test $(BUILD) ./...
 
-# The parts that work in several goroutines, without the graphics driver.
+# What works on several goroutines, without the toolkit.
 race:
-	$(GO) test $(BUILD) -race -short -tags headless -run 'Race|Evaluator|Project' ./app
+	$(GO) test $(BUILD) -race -tags headless -run Race ./app
 
+# A true window under a virtual display, driven by mouse and keyboard.
 window:
-	QUIETBUS_WINDOW_TEST=1 LANG=C.UTF-8 $(GO) test $(BUILD) -count=1 -run TrueWindow -v ./app
+	QUIETBUS_WINDOW_TEST=1 LANG=C $(GO) test $(BUILD) -count=1 -run TrueWindow -v ./app
 
-bench: go-here
-	$(GO) test $(BUILD) -tags headless -run '^$$' -bench . -benchmem ./study/... ./widgets/... ./app | tee bench.txt
+bench: packages first-build
+	$(GO) test $(BUILD) -run '^$$' -bench . -benchmem ./study/... ./widgets/... ./app | tee bench.txt
 
-shots: test-packages build
-	.ci/shots
+shots: test-packages first-build
+	QUIETBUS_SHOTS=$(CURDIR)/shots QUIETBUS_WINDOW_TEST=1 LANG=C $(GO) test $(BUILD) -count=1 -run TrueWindow ./app
+	@ls shots/*.png

@@ -3,7 +3,6 @@ package main
 import (
 	"os"
 	"path/filepath"
-	"strings"
 
 	"github.com/BurntSushi/toml"
 )
@@ -16,14 +15,15 @@ type Meta struct {
 	Icon    string // path of the icon
 }
 
-// readMeta reads FyneApp.toml from where the toolkit looks for it: the working
-// directory under "go run", else the folder of the executable. Without the file
-// the version is unknown.
+// readMeta reads FyneApp.toml. Without the file the version is unknown.
 func readMeta() Meta {
 	m := Meta{Name: "Quietbus", ID: "app.quietbus.workbench", Version: "unknown"}
 	var file struct{ Details Meta }
-	dir := homeDir()
-	if _, err := toml.DecodeFile(filepath.Join(dir, "FyneApp.toml"), &file); err != nil {
+	dir, found := homeDir()
+	if !found {
+		return m
+	}
+	if _, err := toml.DecodeFile(filepath.Join(dir, metaFile), &file); err != nil {
 		return m
 	}
 	d := file.Details
@@ -38,12 +38,17 @@ func readMeta() Meta {
 	return m
 }
 
-// homeDir returns the folder that FyneApp.toml is looked for in.
-func homeDir() string {
-	exe, err := os.Executable()
+const metaFile = "FyneApp.toml"
+
+// homeDir returns the folder that holds FyneApp.toml: that of the executable,
+// else the working directory, as under "go run".
+func homeDir() (dir string, found bool) {
 	work, _ := os.Getwd()
-	if err != nil || strings.HasPrefix(exe, os.TempDir()) || strings.Contains(exe, "go-build") {
-		return work
+	exe, _ := os.Executable()
+	for _, dir := range []string{filepath.Dir(exe), work} {
+		if _, err := os.Stat(filepath.Join(dir, metaFile)); err == nil {
+			return dir, true
+		}
 	}
-	return filepath.Dir(exe)
+	return "", false
 }
