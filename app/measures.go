@@ -191,7 +191,7 @@ func facts(s *study.Study, m *study.Measure, p *Picture) string {
 func componentText(r *study.MeasureResult) string {
 	var parts []string
 	for _, c := range r.Components {
-		if c.Symbol == "R" && len(r.Components) > 2 && r.Kind != study.HighPass {
+		if c.Part == "reactor resistance" {
 			continue // the winding's own resistance: it follows from Q
 		}
 		parts = append(parts, c.Symbol+" "+engineering(c))

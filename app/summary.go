@@ -64,8 +64,12 @@ func measureSummary(m *study.Measure) string {
 	}
 	var parts []string
 	switch m.Kind {
-	case study.SingleTuned, study.HighPass:
-		parts = append(parts, fmt.Sprintf("%s kvar at order %s", short(m.Kvar), short(m.Order)))
+	case study.SingleTuned, study.DoubleTuned, study.FirstOrder, study.HighPass, study.ThirdOrder, study.CType:
+		text := fmt.Sprintf("%s kvar at order %s", short(m.Kvar), short(m.Order))
+		if m.Order2 > 0 {
+			text += " and " + short(m.Order2)
+		}
+		parts = append(parts, text)
 	case study.DetuneBank:
 		parts = append(parts, short(m.Percent)+" % detuning")
 	case study.RemoveBank:

@@ -61,24 +61,4 @@ func titles(kind study.Kind, key string) []string {
 }
 
 // kindWord returns what a kind of measure is called.
-func kindWord(kind string) string {
-	switch kind {
-	case study.SingleTuned:
-		return "Single-tuned filter"
-	case study.HighPass:
-		return "High-pass filter"
-	case study.DetuneBank:
-		return "Detuning reactor"
-	case study.RemoveBank:
-		return "Bank taken out"
-	case study.ActiveFilter:
-		return "Active filter"
-	case study.LineReactor:
-		return "Line reactor"
-	case study.LowPassRC:
-		return "R-C low-pass"
-	case study.LowPassLC:
-		return "L-C low-pass"
-	}
-	return kind
-}
+func kindWord(kind string) string { return study.KindTitle(kind) }

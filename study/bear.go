@@ -12,9 +12,11 @@ import (
 // measure tells what a measure that is on is made of and bears.
 func (m *model) measure(x *Measure, sol *solution, o *Outcome) MeasureResult {
 	r := MeasureResult{Name: x.Name, Kind: x.Kind, Bus: x.Bus, Notes: m.plan.notes[x.Name]}
-	switch x.Kind {
-	case SingleTuned, HighPass:
+	if IsFilter(x.Kind) {
 		m.bears(&r, x.Name, m.branch[x.Name], x.RatedKV, "", o)
+		return r
+	}
+	switch x.Kind {
 	case DetuneBank:
 		for i := range m.plan.banks {
 			if b := &m.plan.banks[i]; b.Name == x.Target {

@@ -292,27 +292,20 @@ func (m *model) addShunts() error {
 		}
 	}
 	for _, f := range m.plan.filters {
-		branch, err := passiveFilter(f.Kind, 1000*f.Kvar, 1000*or(f.AtKV, m.volts[f.Bus]/1000), f1, f.Order, f.Q)
+		branch, err := passiveFilter(f.Kind, 1000*f.Kvar, 1000*or(f.AtKV, m.volts[f.Bus]/1000), f1, f.Order, f.Order2, f.Q)
 		if err := m.addBranch(f.Name, f.Bus, f.Connection, branch, err); err != nil {
 			return err
 		}
 	}
 	for _, x := range m.plan.chosen {
-		if x.Kind == SingleTuned || x.Kind == HighPass {
-			branch, err := passiveFilter(x.Kind, 1000*x.Kvar, m.volts[x.Bus], f1, x.Order, x.Q)
+		if IsFilter(x.Kind) {
+			branch, err := passiveFilter(x.Kind, 1000*x.Kvar, m.volts[x.Bus], f1, x.Order, x.Order2, x.Q)
 			if err := m.addBranch(x.Name, x.Bus, "", branch, err); err != nil {
 				return err
 			}
 		}
 	}
 	return nil
-}
-
-func passiveFilter(kind string, output, v, f1, order, q float64) (*filter.Branch, error) {
-	if kind == HighPass {
-		return filter.HighPass(output, v, f1, order, or(q, 3))
-	}
-	return filter.SingleTuned(output, v, f1, order, or(q, 40))
 }
 
 func (m *model) addBranch(name, bus, connection string, b *filter.Branch, err error) error {

@@ -267,11 +267,12 @@ type Bank struct {
 type Filter struct {
 	Named
 	Bus        string  `json:"bus" label:"Bus" ref:"bus" need:"yes" help:"Bus it stands on."`
-	Kind       string  `json:"kind" label:"Kind" choices:"single-tuned|high-pass" need:"yes" help:"Single-tuned, or second-order high-pass."`
+	Kind       string  `json:"kind" label:"Kind" choices:"single-tuned|double-tuned|first-order|high-pass|third-order|c-type" need:"yes" help:"Single- or double-tuned; first-, second- (high-pass) or third-order high-pass; C-type."`
 	Kvar       float64 `json:"kvar" label:"Output" unit:"kvar" range:"(0,1e6]" typical:"20..20000" need:"yes" help:"Output of the whole branch at order 1 and the stated voltage."`
 	AtKV       float64 `json:"atKV,omitempty" label:"At voltage" unit:"kV" range:"[0.01,1200]" default:"bus nominal" help:"Line-to-line voltage at which the output is stated."`
 	Order      float64 `json:"order" label:"Tuned order" range:"(1,100]" typical:"2.5..25" need:"yes" help:"Order of lowest impedance of the tuned branch."`
-	Q          float64 `json:"q,omitempty" label:"Quality factor" range:"[0.1,500]" typical:"0.5..100" default:"40 tuned, 3 high-pass" help:"Single-tuned: X/R of the reactor at the tuned order. High-pass: R over reactance at the tuned order."`
+	Order2     float64 `json:"order2,omitempty" label:"Second order" range:"(1,100]" typical:"5..25" for:"double-tuned" help:"Higher tuned order of a double-tuned filter."`
+	Q          float64 `json:"q,omitempty" label:"Quality factor" range:"[0.1,500]" typical:"0.5..100" for:"single-tuned|double-tuned|high-pass|third-order|c-type" default:"40 tuned, 3 high-pass, 2 C-type" help:"Tuned: X/R of the reactor at the tuned order. High-pass and C-type: R over reactance at the tuned order."`
 	RatedKV    float64 `json:"ratedKV,omitempty" label:"Capacitor rating" unit:"kV" range:"[0.01,1200]" default:"next preferred voltage above the duty" help:"Rated line-to-line voltage of the capacitors."`
 	Connection string  `json:"connection,omitempty" label:"Connection" choices:"star|earthed-star|delta" default:"star" help:"Only an earthed star passes the zero sequence."`
 	Noted
@@ -280,7 +281,11 @@ type Filter struct {
 // The kinds of measure.
 const (
 	SingleTuned  = "single-tuned"
+	DoubleTuned  = "double-tuned"
+	FirstOrder   = "first-order"
 	HighPass     = "high-pass"
+	ThirdOrder   = "third-order"
+	CType        = "c-type"
 	DetuneBank   = "detune-bank"
 	RemoveBank   = "remove-bank"
 	ActiveFilter = "active-filter"
@@ -292,14 +297,15 @@ const (
 // Measure is a change to the study that can be flipped.
 type Measure struct {
 	Named
-	Kind     string   `json:"kind" label:"Kind" choices:"single-tuned|high-pass|detune-bank|remove-bank|active-filter|line-reactor|low-pass-rc|low-pass-lc" need:"yes" help:"What the measure does."`
+	Kind     string   `json:"kind" label:"Kind" choices:"single-tuned|double-tuned|first-order|high-pass|third-order|c-type|detune-bank|remove-bank|active-filter|line-reactor|low-pass-rc|low-pass-lc" need:"yes" help:"What the measure does."`
 	On       bool     `json:"on" label:"On" help:"Position of its switch."`
-	Bus      string   `json:"bus,omitempty" label:"Bus" ref:"bus" for:"single-tuned|high-pass|active-filter" help:"Bus where it stands."`
+	Bus      string   `json:"bus,omitempty" label:"Bus" ref:"bus" for:"single-tuned|double-tuned|first-order|high-pass|third-order|c-type|active-filter" help:"Bus where it stands."`
 	Target   string   `json:"target,omitempty" label:"Acts on" ref:"bank|nonlinearLoad|load" for:"detune-bank|remove-bank|line-reactor|low-pass-rc|low-pass-lc" help:"Bank or load that it changes."`
-	Kvar     float64  `json:"kvar,omitempty" label:"Output" unit:"kvar" range:"(0,1e6]" for:"single-tuned|high-pass" help:"Output of the whole branch at order 1 and the bus's nominal voltage."`
-	Order    float64  `json:"order,omitempty" label:"Tuned order" range:"(1,100]" typical:"2.5..25" for:"single-tuned|high-pass" help:"Order of lowest impedance of the tuned branch."`
-	Q        float64  `json:"q,omitempty" label:"Quality factor" range:"[0.1,500]" typical:"0.5..100" default:"40 tuned, 3 high-pass" for:"single-tuned|high-pass" help:"Single-tuned: X/R of the reactor at the tuned order. High-pass: R over reactance at the tuned order."`
-	RatedKV  float64  `json:"ratedKV,omitempty" label:"Capacitor rating" unit:"kV" range:"[0.01,1200]" default:"next preferred voltage above the duty" for:"single-tuned|high-pass|detune-bank" help:"Rated line-to-line voltage of the capacitors."`
+	Kvar     float64  `json:"kvar,omitempty" label:"Output" unit:"kvar" range:"(0,1e6]" for:"single-tuned|double-tuned|first-order|high-pass|third-order|c-type" help:"Output of the whole branch at order 1 and the bus's nominal voltage."`
+	Order    float64  `json:"order,omitempty" label:"Tuned order" range:"(1,100]" typical:"2.5..25" for:"single-tuned|double-tuned|first-order|high-pass|third-order|c-type" help:"Order of lowest impedance of the tuned branch."`
+	Order2   float64  `json:"order2,omitempty" label:"Second order" range:"(1,100]" typical:"5..25" for:"double-tuned" help:"Higher tuned order of a double-tuned filter."`
+	Q        float64  `json:"q,omitempty" label:"Quality factor" range:"[0.1,500]" typical:"0.5..100" default:"40 tuned, 3 high-pass, 2 C-type" for:"single-tuned|double-tuned|high-pass|third-order|c-type" help:"Tuned: X/R of the reactor at the tuned order. High-pass and C-type: R over reactance at the tuned order."`
+	RatedKV  float64  `json:"ratedKV,omitempty" label:"Capacitor rating" unit:"kV" range:"[0.01,1200]" default:"next preferred voltage above the duty" for:"single-tuned|double-tuned|first-order|high-pass|third-order|c-type|detune-bank" help:"Rated line-to-line voltage of the capacitors."`
 	Percent  float64  `json:"percent,omitempty" label:"Reactor" unit:"%" range:"(0,50]" for:"detune-bank|line-reactor" help:"Detuning p of the bank, or reactance of the line reactor on the load's own rating."`
 	RatedA   float64  `json:"ratedA,omitempty" label:"Rated current" unit:"A" range:"(0,1e5]" for:"active-filter" help:"Rated rms current in each line."`
 	MaxOrder int      `json:"maxOrder,omitempty" label:"Order ceiling" range:"[2,100]" default:"25" for:"active-filter" help:"Highest order that it compensates."`

@@ -267,3 +267,42 @@ func TestTunedFilter(t *testing.T) {
 		t.Errorf("the resonance is %q", w)
 	}
 }
+
+// Every kind of passive filter takes the worst of its order from a bus that
+// resonates without it, keeps its output, and a C-type burns nothing to speak
+// of at order 1 in its resistor (design: Arrillaga and Watson, Power System
+// Harmonics, 2nd ed.; derived).
+func TestFilterKinds(t *testing.T) {
+	s := small()
+	s.Banks, s.Measures = nil, nil
+	for _, kind := range []string{SingleTuned, DoubleTuned, FirstOrder, HighPass, ThirdOrder, CType} {
+		m := Measure{Named: Named{kind}, Kind: kind, Bus: "LV", Kvar: 250, Order: 4.8}
+		if kind == DoubleTuned {
+			m.Order2 = 6.8
+		}
+		s.Measures = append(s.Measures, m)
+	}
+	before := solve(t, s)
+	for _, m := range s.Measures {
+		o := solve(t, s, m.Name)
+		was, now := cmplx.Abs(before.Bus("LV").Phase[0].At(5)), cmplx.Abs(o.Bus("LV").Phase[0].At(5))
+		if now >= was && m.Kind != FirstOrder && m.Kind != ThirdOrder && m.Kind != HighPass {
+			t.Errorf("%s: the fifth goes from %.3g to %.3g V", m.Kind, was, now)
+		}
+		d := o.Measures[0].Duty
+		v := cmplx.Abs(o.Bus("LV").Seq[phasor.Positive][1]) * math.Sqrt(3) / 400
+		if want := 250 * v * v; math.Abs(d.KvarOutput-want) > 0.06*want {
+			t.Errorf("%s: output %.4g kvar, want about %.4g", m.Kind, d.KvarOutput, want)
+		}
+		if len(o.Measures[0].Components) < 2 || d.LossW <= 0 || d.RatedV < d.VoltageV {
+			t.Errorf("%s: %+v %+v", m.Kind, d, o.Measures[0].Components)
+		}
+		if m.Kind == CType && d.LossW1 > 0.001*1000*d.KvarOutput {
+			t.Errorf("C-type: %.4g W at order 1", d.LossW1)
+		}
+	}
+	s.Measures[1].Order2 = 0
+	if problems := s.Validate(); len(problems) != 1 || problems[0].Field != "order2" {
+		t.Errorf("%v", FieldErrors(problems))
+	}
+}

@@ -325,8 +325,10 @@ func (c *checker) measures() {
 		needs := map[string]float64{}
 		target := []Kind(nil)
 		switch m.Kind {
-		case SingleTuned, HighPass:
+		case SingleTuned, FirstOrder, HighPass, ThirdOrder, CType:
 			needs["kvar"], needs["order"] = m.Kvar, m.Order
+		case DoubleTuned:
+			needs["kvar"], needs["order"], needs["order2"] = m.Kvar, m.Order, m.Order2
 		case DetuneBank:
 			needs["percent"], target = m.Percent, []Kind{KindBank}
 		case RemoveBank:
@@ -346,7 +348,7 @@ func (c *checker) measures() {
 				c.add(m.Name, f.Key, "is missing", f.remedy())
 			}
 		}
-		if (m.Kind == SingleTuned || m.Kind == HighPass || m.Kind == ActiveFilter) && m.Bus == "" {
+		if (IsFilter(m.Kind) || m.Kind == ActiveFilter) && m.Bus == "" {
 			c.add(m.Name, "bus", "is missing", "name the bus where it stands")
 		}
 		if target != nil && !slices.Contains(target, c.kind[m.Target]) {

@@ -347,10 +347,12 @@ func phaseWords(c study.Connection) string {
 // MeasureWords says what a measure is in a few words.
 func MeasureWords(m *study.Measure) string {
 	switch m.Kind {
-	case study.SingleTuned:
-		return fmt.Sprintf("tuned filter, %s kvar, order %s", plain(m.Kvar), plain(m.Order))
-	case study.HighPass:
-		return fmt.Sprintf("high-pass, %s kvar, order %s", plain(m.Kvar), plain(m.Order))
+	case study.SingleTuned, study.DoubleTuned, study.FirstOrder, study.HighPass, study.ThirdOrder, study.CType:
+		text := fmt.Sprintf("%s, %s kvar, order %s", strings.TrimSuffix(study.KindTitle(m.Kind), " filter"), plain(m.Kvar), plain(m.Order))
+		if m.Order2 > 0 {
+			text += " and " + plain(m.Order2)
+		}
+		return text
 	case study.DetuneBank:
 		return fmt.Sprintf("detune %s, %s %%", m.Target, plain(m.Percent))
 	case study.RemoveBank:

@@ -79,8 +79,11 @@ func (p *printer) costTable() {
 func describe(m *study.Measure) string {
 	text := kindWords(m.Kind)
 	switch m.Kind {
-	case study.SingleTuned, study.HighPass:
+	case study.SingleTuned, study.DoubleTuned, study.FirstOrder, study.HighPass, study.ThirdOrder, study.CType:
 		text += fmt.Sprintf(", %s kvar at order %s", short(m.Kvar), short(m.Order))
+		if m.Order2 > 0 {
+			text += " and " + short(m.Order2)
+		}
 	case study.DetuneBank, study.LineReactor:
 		text += fmt.Sprintf(", %s %%", short(m.Percent))
 	case study.ActiveFilter:
@@ -97,20 +100,13 @@ func describe(m *study.Measure) string {
 }
 
 func kindWords(kind string) string {
-	words := map[string]string{
-		study.SingleTuned:  "Single-tuned filter",
-		study.HighPass:     "Second-order high-pass filter",
-		study.DetuneBank:   "Detuning reactor before a bank",
-		study.RemoveBank:   "Bank taken out",
-		study.ActiveFilter: "Active filter",
-		study.LineReactor:  "Line reactor before a load",
-		study.LowPassRC:    "R-C low-pass before a load",
-		study.LowPassLC:    "L-C low-pass before a load",
+	switch kind { // with what they stand before
+	case study.DetuneBank:
+		return "Detuning reactor before a bank"
+	case study.LineReactor, study.LowPassRC, study.LowPassLC:
+		return study.KindTitle(kind) + " before a load"
 	}
-	if w, ok := words[kind]; ok {
-		return w
-	}
-	return kind
+	return study.KindTitle(kind)
 }
 
 // lowerFirst lowers the first letter of a phrase, but not of a symbol such as
