@@ -18,8 +18,16 @@ import (
 	"quietbus/widgets"
 )
 
-// evidenceNames are the figures of the evidence, the first for four at once.
-var evidenceNames = []string{"All four", "Spectrum", "Waveform", "Impedance", "Margins"}
+// The pages of the evidence: four figures at once, each alone, and the duties.
+const (
+	allFour  = "All four"
+	dutyName = "Duty"
+)
+
+var (
+	figureNames   = []string{"Spectrum", "Waveform", "Impedance", "Margins"}
+	evidenceNames = append(append([]string{allFour}, figureNames...), dutyName)
+)
 
 // evidencePart is the figure side: four panels at once, or one alone.
 type evidencePart struct {
@@ -32,15 +40,16 @@ type evidencePart struct {
 	body   *fyne.Container
 	panels map[string]*panel // small ones, in the grid
 	single *panel            // the one shown alone
+	duty   *dutyPage
 }
 
 func newEvidencePart(w *Window) *evidencePart {
-	e := &evidencePart{w: w, turned: evidenceNames[0], panels: map[string]*panel{}}
+	e := &evidencePart{w: w, turned: allFour, panels: map[string]*panel{}}
 	e.about = widget.NewSelect(nil, e.chosen)
 	e.tabs = newTabRow(evidenceNames...)
 	e.tabs.turned = e.turn
 	e.grid = container.New(layout.NewGridLayoutWithColumns(2))
-	for _, name := range evidenceNames[1:] {
+	for _, name := range figureNames {
 		p := newPanel(func(c draw.Canvas) []widgets.Hot { return e.draw(name, c) })
 		e.wire(p.picture, name)
 		p.picture.OnDoubleTapped = func(widgets.Hot) { e.turn(name) }
@@ -49,9 +58,10 @@ func newEvidencePart(w *Window) *evidencePart {
 	}
 	e.single = newPanel(func(c draw.Canvas) []widgets.Hot { return e.draw(e.turned, c) })
 	e.wire(e.single.picture, "")
-	e.single.picture.OnDoubleTapped = func(widgets.Hot) { e.turn(evidenceNames[0]) }
+	e.single.picture.OnDoubleTapped = func(widgets.Hot) { e.turn(allFour) }
+	e.duty = newDutyPage()
 	head := container.NewBorder(nil, nil, e.tabs.row(), nil, e.about)
-	e.body = container.NewBorder(head, nil, nil, nil, container.NewStack(e.grid, e.single.body))
+	e.body = container.NewBorder(head, nil, nil, nil, container.NewStack(e.grid, e.single.body, e.duty.body))
 	e.single.body.Hide()
 	return e
 }
@@ -103,13 +113,19 @@ func (e *evidencePart) wire(p *widgets.Picture, name string) {
 func (e *evidencePart) turn(name string) {
 	e.turned = name
 	e.tabs.show(name)
-	if name == evidenceNames[0] {
-		e.single.body.Hide()
-		e.grid.Show()
-	} else {
-		e.grid.Hide()
-		e.single.body.Show()
+	page := e.single.body
+	switch name {
+	case allFour:
+		page = e.grid
+	case dutyName:
+		page = e.duty.body
 	}
+	for _, other := range []*fyne.Container{e.grid, e.single.body, e.duty.body} {
+		if other != page {
+			other.Hide()
+		}
+	}
+	page.Show()
 	e.refresh()
 }
 
@@ -117,11 +133,16 @@ func (e *evidencePart) turn(name string) {
 // the drawing took.
 func (e *evidencePart) refresh() time.Duration {
 	e.offer()
-	if e.turned != evidenceNames[0] {
+	switch e.turned {
+	case allFour:
+	case dutyName:
+		e.duty.show(e.w.picture)
+		return 0
+	default:
 		return e.single.show(e.title(e.turned))
 	}
 	var took time.Duration
-	for _, name := range evidenceNames[1:] {
+	for _, name := range figureNames {
 		took += e.panels[name].show(e.title(name))
 	}
 	return took

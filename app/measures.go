@@ -215,14 +215,3 @@ func dutyText(kind string, d *study.Duty, saturated bool) string {
 	}
 	return fmt.Sprintf("%s A (%s %% of rated)", short(d.CurrentA), short(100*d.CurrentA/d.RatedA))
 }
-
-// engineering prints a component value in the unit of its size.
-func engineering(c study.Component) string {
-	switch c.Symbol {
-	case "C":
-		return short(c.Value*1e6) + " uF"
-	case "L":
-		return short(c.Value*1e3) + " mH"
-	}
-	return short(c.Value) + " ohm"
-}

@@ -63,6 +63,7 @@ func (m *menuPart) file(recent []string) *fyne.Menu {
 	paper.ChildMenu = fyne.NewMenu("", m.paper("A4", "a4"), m.paper("Letter", "letter"))
 	return fyne.NewMenu("File",
 		item("New study...", ctrl(fyne.KeyN), w.newStudy),
+		item("Empty study", nil, func() { w.guard(func() { w.adopt(NewProject(blankStudy())) }) }),
 		item("Open...", ctrl(fyne.KeyO), w.openDialog),
 		files,
 		item("Demo study", nil, func() { w.guard(func() { w.adopt(w.demo()) }) }),

@@ -112,11 +112,15 @@ func gap(height float32) fyne.CanvasObject {
 // Start opens the study named on the command line, else the demo, and offers
 // what a crash left unsaved.
 func (w *Window) Start(path string) {
-	w.adopt(w.demo())
+	nothing := w.project
 	if path != "" {
 		w.open(path)
-	} else if !w.app.Preferences().Bool("guided") {
-		w.app.Preferences().SetBool("guided", true)
+	}
+	if w.project == nothing {
+		w.adopt(w.demo())
+	}
+	if prefs := w.app.Preferences(); path == "" && !prefs.Bool("guided") {
+		prefs.SetBool("guided", true)
 		w.guide()
 	}
 	w.offerRecovery()

@@ -442,7 +442,7 @@ func TestSelectionTurnsEvidence(t *testing.T) {
 	b := newBed(t)
 	for _, name := range evidenceNames {
 		b.evidence.turn(name)
-		if name != evidenceNames[0] && len(b.evidence.single.picture.Hots()) == 0 {
+		if slices.Contains(figureNames, name) && len(b.evidence.single.picture.Hots()) == 0 {
 			t.Errorf("%s has no value to read out", name)
 		}
 	}
@@ -459,10 +459,29 @@ func TestSelectionTurnsEvidence(t *testing.T) {
 	for _, option := range options { // every one of them can be looked at
 		b.evidence.chosen(option)
 		b.settle()
-		for _, name := range evidenceNames[1:] {
+		for _, name := range figureNames {
 			if b.evidence.figure(name) == nil {
 				t.Errorf("%s: no %s", option, name)
 			}
+		}
+	}
+}
+
+func TestDutyPage(t *testing.T) {
+	b := newBed(t)
+	b.adopt(NewProject(small()))
+	b.settle()
+	b.evidence.turn(dutyName)
+	if !b.evidence.duty.empty.Visible() {
+		t.Error("with no measure on the page does not say so")
+	}
+	b.flip("Detune C1")
+	b.settle()
+	d := b.picture.After.Measures[0].Duty
+	text := strings.Join(b.evidence.duty.shown, "\n")
+	for _, want := range []string{"Detune C1: detuning reactor at LV", "Current " + short(d.CurrentA) + " A rms", short(d.PeakV) + " V crest", "of " + short(d.RatedV) + " V rms rated"} {
+		if !strings.Contains(text, want) {
+			t.Errorf("the duty page does not say %q:\n%s", want, text)
 		}
 	}
 }
