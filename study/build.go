@@ -145,8 +145,16 @@ func (m *model) transformer(t *Transformer) (*grid.Transformer, error) {
 	}
 	return &grid.Transformer{Name: t.Name, HV: m.bus[t.HVBus], LV: m.bus[t.LVBus], Group: group,
 		Ratio: t.HVKV / t.LVKV * (1 + t.TapPercent/100), R: r, X: math.Sqrt(z*z - r*r),
-		Exponent: t.EddyExponent, ZeroRatio: t.ZeroRatio,
+		Exponent: t.EddyExponent, ZeroRatio: t.ZeroRatio, Shift: radians(t.PhaseShiftDeg), NoLoad: t.noLoad(),
 		HVN: complex(t.HVNeutralOhm, t.HVNeutralXOhm), LVN: complex(t.LVNeutralOhm, t.LVNeutralXOhm)}, nil
+}
+
+// noLoad returns conductance and susceptance of the magnetising branch, siemens
+// a phase on the low-voltage side.
+func (t *Transformer) noLoad() [2]float64 {
+	v2 := 1e6 * t.LVKV * t.LVKV
+	loss, power := 1000*t.NoLoadLossKW, 10*t.RatedKVA*t.NoLoadPercent
+	return [2]float64{loss / v2, math.Sqrt(math.Max(0, power*power-loss*loss)) / v2}
 }
 
 func (m *model) cable(c *Cable) *grid.Cable {
@@ -156,7 +164,7 @@ func (m *model) cable(c *Cable) *grid.Cable {
 	if !known {
 		skin = c.skin(m.plan.study)
 	}
-	return &grid.Cable{Name: c.Name, From: m.bus[c.From], To: m.bus[c.To], Skin: skin,
+	return &grid.Cable{Name: c.Name, From: m.bus[c.From], To: m.bus[c.To], Skin: skin, Exact: c.Form == "exact",
 		R: c.ROhmPerKm * km / n, X: c.XOhmPerKm * km / n, C: 1e-9 * c.CNFPerKm * km * n,
 		R0: r0 * km / n, X0: x0 * km / n, C0: 1e-9 * or(c.C0NFPerKm, c.CNFPerKm) * km * n}
 }

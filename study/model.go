@@ -149,6 +149,9 @@ type Transformer struct {
 	LoadLossKW       float64 `json:"loadLossKW,omitempty" label:"Load loss" unit:"kW" range:"(0,1e5]" help:"Copper loss at rated current; state this or X/R."`
 	XOverR           float64 `json:"xOverR,omitempty" label:"X/R" range:"[0.1,200]" typical:"1.5..45" help:"Short-circuit reactance over resistance; state this or the load loss."`
 	VectorGroup      string  `json:"vectorGroup" label:"Vector group" need:"yes" help:"IEC 60076 vector group such as Dyn11, YNd5, Yzn11, Dd0: high-voltage letter first, clock number last."`
+	PhaseShiftDeg    float64 `json:"phaseShiftDeg,omitempty" label:"Extra phase shift" unit:"deg" range:"[-60,60]" typical:"-30..30" default:"0" help:"Phase-shifting types: degrees by which the low-voltage positive sequence lags beyond the clock number, such as +20 and -20 for 18 pulses."`
+	NoLoadLossKW     float64 `json:"noLoadLossKW,omitempty" label:"No-load loss" unit:"kW" range:"(0,1e4]" default:"no magnetising branch" help:"Iron loss at rated voltage; with the no-load current it makes the magnetising branch, which is linear here."`
+	NoLoadPercent    float64 `json:"noLoadCurrentPercent,omitempty" label:"No-load current" unit:"%" range:"(0,20]" typical:"0.2..3" default:"no magnetising branch" help:"At rated voltage, of rated current."`
 	TapPercent       float64 `json:"tapPercent,omitempty" label:"Tap" unit:"%" range:"[-30,30]" typical:"-5..5" default:"0" help:"Tap position of the high-voltage winding: +5 means 5 % more turns there."`
 	EddyExponent     float64 `json:"eddyExponent,omitempty" label:"R(h) exponent" range:"[0,2]" typical:"0..1.5" default:"0, constant R" help:"Resistance rises as h to this exponent."`
 	ZeroRatio        float64 `json:"zeroSequenceRatio,omitempty" label:"Z0/Z1" range:"(0,20]" typical:"0.8..1" default:"1" help:"Zero-sequence over positive-sequence short-circuit impedance."`
@@ -174,6 +177,7 @@ type Cable struct {
 	X0OhmPerKm   float64 `json:"x0OhmPerKm,omitempty" label:"X0'" unit:"ohm/km" range:"(0,40]" default:"3 x X'" help:"Zero-sequence reactance with its return path."`
 	C0NFPerKm    float64 `json:"c0NFPerKm,omitempty" label:"C0'" unit:"nF/km" range:"[0,5000]" default:"C'" help:"Zero-sequence shunt capacitance."`
 	Skin         string  `json:"skin,omitempty" label:"Skin effect" choices:"none|round|iec60287" default:"round" help:"Law for the rise of R with frequency: round conductor (Bessel functions), the IEC 60287-1-1 form, or none."`
+	Form         string  `json:"form,omitempty" label:"Form" choices:"pi|exact" default:"pi" help:"Nominal pi, or the exact hyperbolic form for long cables and lines at high orders."`
 	ConductorMM2 float64 `json:"conductorMM2,omitempty" label:"Conductor" unit:"mm2" range:"(0,3000]" typical:"1.5..1000" help:"Cross-section; informative."`
 	AmpacityA    float64 `json:"ampacityA,omitempty" label:"Ampacity" unit:"A" range:"(0,20000]" help:"Permissible current of one circuit as installed."`
 	Noted

@@ -306,3 +306,41 @@ func TestFilterKinds(t *testing.T) {
 		t.Errorf("%v", FieldErrors(problems))
 	}
 }
+
+// Three equal six-pulse loads behind transformers that turn by 0, +20 and -20
+// degrees are an 18-pulse set: orders 5, 7, 11 and 13 cancel upstream, 17 and
+// 19 add (derived: orders 18 k +- 1).
+func TestEighteenPulse(t *testing.T) {
+	s := twins("Dyn11", "Dyn11")
+	s.Buses = append(s.Buses, Bus{Named: Named{"C"}, NominalKV: 0.4})
+	third, load := s.Transformers[0], s.NonlinearLoads[0]
+	third.Name, third.LVBus, load.Name, load.Bus = "TC", "C", "DC", "C"
+	s.Transformers, s.NonlinearLoads = append(s.Transformers, third), append(s.NonlinearLoads, load)
+	same := solve(t, s)
+	s = s.Clone()
+	s.Transformers[1].PhaseShiftDeg, s.Transformers[2].PhaseShiftDeg = 20, -20
+	apart := solve(t, s)
+	current := func(o *Outcome, h int) float64 { return cmplx.Abs(o.Element("SUP").Ends[0].Phase[0].At(h)) }
+	for _, h := range []int{5, 7, 11, 13} {
+		if current(apart, h) > 1e-9*current(same, h) {
+			t.Errorf("order %d: %g A left of %g", h, current(apart, h), current(same, h))
+		}
+	}
+	for _, h := range []int{17, 19} {
+		near(t, Ordinal(h), current(apart, h), current(same, h), 1e-9)
+	}
+}
+
+// The magnetising branch draws the no-load loss and current that it was stated
+// by.
+func TestNoLoad(t *testing.T) {
+	s := twins("Dyn11", "Dyn11")
+	s.NonlinearLoads = nil
+	s.Supplies[0].FaultMVA = 1e6
+	s.Transformers[0].NoLoadLossKW, s.Transformers[0].NoLoadPercent = 1.5, 0.9
+	o := solve(t, s)
+	e := o.Element("TA").Ends[0]
+	power := 3 * o.Bus("HV").Phase[0].At(1) * cmplx.Conj(e.Phase[0].At(1))
+	near(t, "no-load loss", real(power), 1500, 2e-3)
+	near(t, "no-load power", cmplx.Abs(power), 9000, 2e-3)
+}

@@ -461,6 +461,9 @@ func (d *diagram) device(f *Feeder, q vg.Point) {
 		for _, t := range d.s.Transformers {
 			if t.Name == f.Name {
 				words[1] = plain(t.RatedKVA) + " kVA  " + t.VectorGroup
+				if t.PhaseShiftDeg != 0 {
+					words[1] += fmt.Sprintf(" %+g°", t.PhaseShiftDeg)
+				}
 			}
 		}
 	case study.KindReactor:

@@ -2,6 +2,7 @@ package grid
 
 import (
 	"math"
+	"math/cmplx"
 
 	"quietbus/study/phasor"
 )
@@ -72,6 +73,8 @@ type Transformer struct {
 	Exponent  float64 // R(h) = R h^Exponent
 	ZeroRatio float64 // Z0/Z1, 0 means 1
 	Group     VectorGroup
+	Shift     float64    // rad by which the LV positive sequence lags beyond the clock number (phase-shifting types)
+	NoLoad    [2]float64 // no-load conductance and susceptance at order 1 on the LV side, siemens a phase; not in the zero sequence
 	HVN, LVN  complex128 // neutral impedance at order 1, ohm
 }
 
@@ -96,7 +99,9 @@ func (e *Transformer) admit(_, h float64, q phasor.Sequence) primitive {
 		return primitive{y / (n * n), -y / n, y}
 	}
 	if q != phasor.Zero {
-		return through(z)
+		p := through(z)
+		p.y11 += complex(e.NoLoad[0], -e.NoLoad[1]/h)
+		return p
 	}
 	if e.ZeroRatio > 0 {
 		z *= complex(e.ZeroRatio, 0)
@@ -130,13 +135,14 @@ func power(h, exponent float64) float64 {
 	return math.Pow(h, exponent)
 }
 
-// Cable is a cable or line as a nominal pi.
+// Cable is a cable or line as a nominal pi or in its exact form.
 type Cable struct {
 	Name       string
 	From, To   BusID
 	R, X, C    float64                 // total, ohm and farad
 	R0, X0, C0 float64                 // zero sequence; R0 and X0 both zero: no way through
 	Skin       func(h float64) float64 // R(h)/R(1), nil for none
+	Exact      bool                    // hyperbolic form of the evenly spread line instead of the nominal pi
 }
 
 func (e *Cable) label() string { return e.Name }
@@ -158,7 +164,16 @@ func (e *Cable) admit(f1, h float64, q phasor.Sequence) primitive {
 	if r == 0 && x == 0 { // no zero-sequence way through is stated
 		return primitive{y00: half, y11: half}
 	}
-	y := 1 / complex(r*k, x*h)
+	z := complex(r*k, x*h)
+	if e.Exact && half != 0 {
+		// y11 = coth(gl)/Zc, y12 = -1/(Zc sinh gl), with gl and Zc from the whole
+		// series impedance and shunt admittance (Arrillaga and Watson)
+		shunt := 2 * half
+		gl, zc := cmplx.Sqrt(z*shunt), cmplx.Sqrt(z/shunt)
+		own := 1 / (zc * cmplx.Tanh(gl))
+		return primitive{own, -1 / (zc * cmplx.Sinh(gl)), own}
+	}
+	y := 1 / z
 	return primitive{y + half, -y, y + half}
 }
 

@@ -520,3 +520,26 @@ func TestParticipants(t *testing.T) {
 		t.Errorf("%+v", list)
 	}
 }
+
+// The open-end impedance of a 100 km line, 1 mH/km and 11.6 nF/km, at 250 Hz:
+// -495.4231 ohm in the exact form, -506.5137 ohm as a nominal pi; the first
+// series resonance lies at 734.0253 Hz (derived).
+func TestLongLine(t *testing.T) {
+	open := func(exact bool, hz float64) float64 {
+		const f1 = 50.
+		l := &Cable{X: 2 * math.Pi * f1 * 0.1, C: 1.16e-6, Exact: exact}
+		p := l.admit(f1, hz/f1, phasor.Positive)
+		return imag(1 / (p.y00 - p.y01*p.y01/p.y11))
+	}
+	for _, c := range []struct {
+		exact bool
+		want  float64
+	}{{true, -495.4231}, {false, -506.5137}} {
+		if got := open(c.exact, 250); math.Abs(got-c.want) > 1e-3 {
+			t.Errorf("exact %v: %.4f ohm, want %.4f", c.exact, got, c.want)
+		}
+	}
+	if a, b := open(true, 734.02), open(true, 734.03); a > 0 || b < 0 {
+		t.Errorf("no series resonance at 734.0253 Hz: %g, %g", a, b)
+	}
+}

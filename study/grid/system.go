@@ -184,7 +184,7 @@ func (s *System) reach() error {
 			b := e.ends()
 			from, to, turn := s.node[b[0]], s.node[b[1]], 0.0
 			if t, ok := e.(*Transformer); ok {
-				turn = float64(t.Group.Clock) * math.Pi / 6
+				turn = float64(t.Group.Clock)*math.Pi/6 + t.Shift
 			}
 			if to == k {
 				from, to, turn = to, from, -turn
