@@ -150,7 +150,7 @@ func (e *evidencePart) refresh() time.Duration {
 
 // title returns what stands above a figure.
 func (e *evidencePart) title(name string) string {
-	if f := e.figure(name); f != nil {
+	if f := e.figure(name); f != nil && e.w.picture != nil && e.w.picture.After != nil {
 		return f.Title
 	}
 	return name
@@ -179,7 +179,9 @@ func subjects(s *study.Study, p *Picture, sel selection) (options []string, curr
 	for i := range s.Buses {
 		options = append(options, voltageOf+s.Buses[i].Name)
 	}
-	current = voltageOf + sel.Bus
+	if sel.Bus != "" {
+		current = voltageOf + sel.Bus
+	}
 	if p != nil && p.After != nil {
 		for i := range p.After.Buses[min(len(s.Buses), len(p.After.Buses)):] {
 			options = append(options, voltageOf+p.After.Buses[len(s.Buses)+i].Name)
@@ -208,22 +210,25 @@ func (e *evidencePart) chosen(option string) {
 	}
 }
 
-// figure returns a figure of the newest picture, nil when there is none.
+// figure returns a figure of the newest picture; without one the figure says in
+// a sentence that there is nothing to show yet.
 func (e *evidencePart) figure(name string) *figure.Figure {
-	p := e.w.picture
-	if p == nil || p.After == nil {
-		return nil
+	var before, after *study.Outcome
+	var scanBefore, scanAfter []*study.ScanResult
+	if p := e.w.picture; p != nil && p.After != nil {
+		before, after = beforeOf(p), p.After
+		scanBefore, scanAfter = e.scanBefore(), scans(p.ScanAfter)
 	}
-	before, sel := beforeOf(p), figure.Selection{Bus: e.w.sel.Bus, Element: e.w.sel.Element}
+	sel := figure.Selection{Bus: e.w.sel.Bus, Element: e.w.sel.Element}
 	switch name {
 	case "Spectrum":
-		return figure.Spectrum(before, p.After, sel)
+		return figure.Spectrum(before, after, sel)
 	case "Waveform":
-		return figure.Waveform(before, p.After, sel)
+		return figure.Waveform(before, after, sel)
 	case "Impedance":
-		return figure.Impedance(e.scanBefore(), scans(p.ScanAfter), nil)
+		return figure.Impedance(scanBefore, scanAfter, nil)
 	case "Margins":
-		return figure.Margins(before, p.After)
+		return figure.Margins(before, after)
 	}
 	return nil
 }

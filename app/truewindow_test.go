@@ -64,6 +64,10 @@ func newDesk(t *testing.T, width, height int) *desk {
 		t.Fatalf("Xvfb gave no display: %v", err)
 	}
 	d.display = ":" + strings.TrimSpace(string(number[:n]))
+	d.until("the display to answer", func() bool {
+		_, err := d.xdo("getdisplaygeometry")
+		return err == nil
+	})
 	wm := exec.Command("openbox")
 	wm.Env = append(os.Environ(), "DISPLAY="+d.display)
 	d.start(wm)

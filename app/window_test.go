@@ -467,6 +467,28 @@ func TestSelectionTurnsEvidence(t *testing.T) {
 	}
 }
 
+func TestEmptyStudySaysWhatToDo(t *testing.T) {
+	b := newBed(t)
+	b.adopt(NewProject(blankStudy()))
+	b.settle()
+	for _, name := range figureNames {
+		p := b.evidence.panels[name].picture
+		p.OnFault = func(err error) { t.Errorf("%s of an empty study: %v", name, err) }
+		p.Refresh()
+		p.Hots()
+	}
+	if b.picture.Err == nil {
+		t.Error("an empty study is solved")
+	}
+	if text := unsolved(b.project.Study(), b.picture.Err); !strings.Contains(text, "Add a bus") {
+		t.Errorf("the verdict line says %q", text)
+	}
+	b.export()
+	if !strings.Contains(b.said(), "must be solved first") {
+		t.Errorf("export of nothing says %q", b.said())
+	}
+}
+
 func TestDutyPage(t *testing.T) {
 	b := newBed(t)
 	b.adopt(NewProject(small()))
