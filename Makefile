@@ -49,6 +49,7 @@ test-packages: go-here
 
 # The toolkit's OpenGL package is large C code; everything else is quick.
 first-build:
+	@[ -d "$$($(GO) env GOMODCACHE)/fyne.io" ] || echo "quietbus: fetching the Go modules"
 	@if [ "$$($(GO) list $(BUILD) -f '{{.Stale}}' fyne.io/fyne/v2/app 2>/dev/null)" != false ]; then \
 	  echo "quietbus: the first build of the graphics library takes some minutes (over three on two cores); later ones are quick"; fi
 

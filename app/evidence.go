@@ -220,6 +220,9 @@ func (e *evidencePart) figure(name string) *figure.Figure {
 		scanBefore, scanAfter = e.scanBefore(), scans(p.ScanAfter)
 	}
 	sel := figure.Selection{Bus: e.w.sel.Bus, Element: e.w.sel.Element}
+	if sel.Bus == "" && (name == "Spectrum" || name == "Waveform") {
+		return nil
+	}
 	switch name {
 	case "Spectrum":
 		return figure.Spectrum(before, after, sel)

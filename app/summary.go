@@ -30,6 +30,8 @@ func summary(item any) string {
 		return fmt.Sprintf("%s to %s", i.From, i.To)
 	case *study.Load:
 		return fmt.Sprintf("on %s, %s kW", i.Bus, short(i.KW))
+	case *study.Generator:
+		return fmt.Sprintf("on %s, %s kVA", i.Bus, short(i.RatedKVA))
 	case *study.Motor:
 		return fmt.Sprintf("on %s, %s kW", i.Bus, short(i.KW))
 	case *study.NonlinearLoad:
