@@ -94,6 +94,8 @@ func busOf(s *study.Study, name string) string {
 		return i.Bus
 	case *study.Motor:
 		return i.Bus
+	case *study.Generator:
+		return i.Bus
 	case *study.NonlinearLoad:
 		return i.Bus
 	case *study.Bank:

@@ -123,7 +123,7 @@ func (b *BusResult) THD() float64 {
 // measures last.
 func (m *model) elements(o *Outcome, sol *solution) {
 	s := m.plan.study
-	for _, kind := range []Kind{KindSupply, KindTransformer, KindCable, KindReactor, KindLoad, KindMotor} {
+	for _, kind := range []Kind{KindSupply, KindTransformer, KindCable, KindReactor, KindLoad, KindMotor, KindGenerator} {
 		for _, item := range s.Items(kind) {
 			m.passive(o, sol, kind, NameOf(item))
 		}

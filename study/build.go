@@ -203,6 +203,13 @@ func (m *model) addLoads() error {
 		r := z / math.Hypot(1, xr)
 		m.add(x.Name, &grid.Motor{Name: x.Name, Bus: m.bus[x.Bus], P: 1000 * x.KW, Q: 1000 * x.Kvar, R: r, X: r * xr, Exponent: or(x.ResistanceExp, 0.5)})
 	}
+	for _, g := range s.Generators {
+		v := m.volts[g.Bus]
+		percent := v * v / (1000 * g.RatedKVA) / 100
+		m.add(g.Name, &grid.Generator{Name: g.Name, Bus: m.bus[g.Bus], P: 1000 * g.KW, Q: 1000 * g.Kvar,
+			R: percent * g.Subtransient / or(g.XOverR, 30), X: percent * g.Subtransient, X2: percent * or(g.Negative, g.Subtransient),
+			X0: percent * g.ZeroPercent, Earthed: g.ZeroPercent > 0, NeutralOhm: complex(g.NeutralOhm, 0)})
+	}
 	for _, l := range s.NonlinearLoads {
 		pf := or(l.Displacement, 1)
 		e := &grid.PowerLoad{Name: l.Name, Bus: m.bus[l.Bus], P: 1000 * l.KW, Q: 1000 * l.KW * math.Tan(math.Acos(pf)), Weight: l.Connection.conductors()}

@@ -82,6 +82,7 @@ var kinds = []KindInfo{
 	{Kind: KindCoupler, Key: "couplers", Singular: "coupler", Plural: "Couplers"},
 	{Kind: KindLoad, Key: "loads", Singular: "linear load", Plural: "Linear loads"},
 	{Kind: KindMotor, Key: "motors", Singular: "motor group", Plural: "Motor groups"},
+	{Kind: KindGenerator, Key: "generators", Singular: "generator", Plural: "Generators"},
 	{Kind: KindNonlinearLoad, Key: "nonlinearLoads", Singular: "non-linear load", Plural: "Non-linear loads"},
 	{Kind: KindBank, Key: "banks", Singular: "capacitor bank", Plural: "Capacitor banks"},
 	{Kind: KindFilter, Key: "filters", Singular: "filter", Plural: "Filters"},

@@ -13,6 +13,7 @@ const (
 	KindCoupler       Kind = "coupler"
 	KindLoad          Kind = "load"
 	KindMotor         Kind = "motor"
+	KindGenerator     Kind = "generator"
 	KindNonlinearLoad Kind = "nonlinearLoad"
 	KindBank          Kind = "bank"
 	KindFilter        Kind = "filter"

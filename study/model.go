@@ -34,6 +34,7 @@ type Study struct {
 	Couplers       []Coupler       `json:"couplers,omitempty" help:"Bus couplers and tie switches."`
 	Loads          []Load          `json:"loads,omitempty" help:"Linear loads."`
 	Motors         []Motor         `json:"motors,omitempty" help:"Groups of directly connected induction motors."`
+	Generators     []Generator     `json:"generators,omitempty" help:"Synchronous generators in parallel with a supply."`
 	NonlinearLoads []NonlinearLoad `json:"nonlinearLoads,omitempty" help:"Loads that draw harmonic current."`
 	Banks          []Bank          `json:"banks,omitempty" help:"Capacitor banks, plain or detuned."`
 	Filters        []Filter        `json:"filters,omitempty" help:"Passive filters that stand already."`
@@ -225,6 +226,21 @@ type Motor struct {
 	LockedRotorRatio float64 `json:"lockedRotorRatio,omitempty" label:"Locked-rotor current" unit:"x rated" range:"[1,15]" typical:"4..8" default:"6" help:"Locked-rotor current over rated current."`
 	LockedRotorXR    float64 `json:"lockedRotorXOverR,omitempty" label:"Locked-rotor X/R" range:"[0.1,50]" typical:"2..10" default:"5" help:"Reactance over resistance with the rotor locked."`
 	ResistanceExp    float64 `json:"resistanceExponent,omitempty" label:"R(h) exponent" range:"[0,2]" typical:"0..1" default:"0.5" help:"Locked-rotor resistance rises as h to this exponent."`
+	Noted
+}
+
+// Generator is a synchronous generator in parallel with a supply.
+type Generator struct {
+	Named
+	Bus          string  `json:"bus" label:"Bus" ref:"bus" need:"yes" help:"Bus it feeds."`
+	RatedKVA     float64 `json:"ratedKVA" label:"Rated power" unit:"kVA" range:"(0,2e6]" typical:"20..50000" need:"yes" help:"Nameplate power."`
+	KW           float64 `json:"kW,omitempty" label:"Active power" unit:"kW" range:"[0,2e6]" default:"0" help:"Delivered in the state studied."`
+	Kvar         float64 `json:"kvar,omitempty" label:"Reactive power" unit:"kvar" range:"[-2e6,2e6]" default:"0" help:"Delivered in the state studied."`
+	Subtransient float64 `json:"subtransientPercent" label:"X\"d" unit:"%" range:"[1,100]" typical:"9..25" need:"yes" help:"Subtransient reactance on own rating and the bus's nominal voltage."`
+	Negative     float64 `json:"negativePercent,omitempty" label:"X2" unit:"%" range:"[1,100]" typical:"9..25" default:"X\"d" help:"Negative-sequence reactance."`
+	ZeroPercent  float64 `json:"zeroPercent,omitempty" label:"X0" unit:"%" range:"(0,100]" typical:"2..12" default:"star point not earthed" help:"Zero-sequence reactance; stated only when the star point is earthed."`
+	NeutralOhm   float64 `json:"neutralOhm,omitempty" label:"Neutral resistance" unit:"ohm" range:"[0,1e6]" default:"0, solidly earthed" help:"Between an earthed star point and earth."`
+	XOverR       float64 `json:"xOverR,omitempty" label:"X\"d/R" range:"[1,500]" typical:"10..60" default:"30" help:"Subtransient reactance over armature resistance at order 1."`
 	Noted
 }
 

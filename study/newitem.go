@@ -25,6 +25,8 @@ func NewItem(kind Kind) any {
 		item = &Load{KW: 50, Kvar: 20}
 	case KindMotor:
 		item = &Motor{RatedKVA: 100, KW: 70, Kvar: 45, LockedRotorRatio: 6}
+	case KindGenerator:
+		item = &Generator{RatedKVA: 500, Subtransient: 15}
 	case KindNonlinearLoad:
 		item = &NonlinearLoad{KW: 100, Displacement: 0.95, Spectrum: "six-pulse-3pct"}
 	case KindBank:

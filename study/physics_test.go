@@ -344,3 +344,32 @@ func TestNoLoad(t *testing.T) {
 	near(t, "no-load loss", real(power), 1500, 2e-3)
 	near(t, "no-load power", cmplx.Abs(power), 9000, 2e-3)
 }
+
+// A generator beside a 50 MVA supply at 480 V: 100 A of the fifth, a negative
+// sequence, meet both negative-sequence reactances in parallel; what it
+// delivers at order 1 is taken off the supply (derived).
+func TestGenerator(t *testing.T) {
+	s := &Study{Format: 1, Title: Title{Study: "generator"}, FrequencyHz: 60,
+		Supplies:       []Supply{{Named: Named{"S"}, Bus: "A", FaultMVA: 50, XOverR: 1000}},
+		Buses:          []Bus{{Named: Named{"A"}, NominalKV: 0.48}},
+		NonlinearLoads: []NonlinearLoad{{Named: Named{"I"}, Bus: "A", CurrentA: 100, Spectrum: Typed, Lines: []SpectrumLine{{Order: 5, Percent: 100}}}},
+		Generators:     []Generator{{Named: Named{"G"}, Bus: "A", RatedKVA: 2000, KW: 50, Subtransient: 12, Negative: 16, XOverR: 500}}}
+	o := solve(t, s)
+	supply, machine := 0.48*0.48/50, 0.48*0.48/2*0.16
+	near(t, "V5", cmplx.Abs(o.Bus("A").Phase[0].At(5)), 500*supply*machine/(supply+machine), 1e-4)
+	share := cmplx.Abs(o.Element("G").Ends[0].Phase[0].At(5))
+	near(t, "its share of the fifth", share, 100*supply/(supply+machine), 1e-3)
+	var p float64
+	for i := range 3 {
+		p += real(o.Bus("A").Phase[i].At(1) * cmplx.Conj(o.Element("S").Ends[0].Phase[i].At(1)))
+	}
+	drawn := math.Sqrt(3) * 480 * 100
+	near(t, "from the supply", -p, drawn-50e3, 1e-2)
+	if n := o.Element("G").Ends[0].Neutral; n != nil {
+		t.Error("an unearthed star point carries current")
+	}
+	s.Generators[0].KW = 3000
+	if f := s.Validate(); len(f) != 1 || f[0].Item != "G" {
+		t.Errorf("%v", FieldErrors(f))
+	}
+}

@@ -265,6 +265,11 @@ func (c *checker) items() {
 			c.add(l.Name, "kW", "is zero, and so is kvar", "state what the load draws, or remove it")
 		}
 	}
+	for _, g := range s.Generators {
+		if p := math.Hypot(g.KW, g.Kvar); p > 1.2*g.RatedKVA {
+			c.add(g.Name, "kW", fmt.Sprintf("with its kvar makes %.4g kVA, more than the rating of %g kVA", p, g.RatedKVA), "correct what it delivers, or the rating")
+		}
+	}
 	for i := range s.NonlinearLoads {
 		c.nonlinear(&s.NonlinearLoads[i])
 	}

@@ -131,6 +131,9 @@ func rowsOf(s *study.Study) map[string][]Row {
 	for _, x := range s.NonlinearLoads {
 		add(study.KindNonlinearLoad, x.Name, x.Bus)
 	}
+	for _, x := range s.Generators {
+		add(study.KindGenerator, x.Name, x.Bus)
+	}
 	for _, x := range s.Motors {
 		add(study.KindMotor, x.Name, x.Bus)
 	}

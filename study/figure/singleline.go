@@ -325,6 +325,8 @@ func (d *diagram) rating(row Row) string {
 		return plain(x.KW) + " kW" + phaseWords(x.Connection)
 	case *study.Motor:
 		return plain(x.KW) + " kW"
+	case *study.Generator:
+		return plain(x.RatedKVA) + " kVA"
 	case *study.Bank:
 		text := plain(x.Kvar) + " kvar"
 		if x.DetuningPercent > 0 {

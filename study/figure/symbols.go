@@ -15,9 +15,9 @@ import (
 // symbol draws the symbol of a kind of item with its middle at q.
 func (p *pen) symbol(kind study.Kind, q vg.Point, u, line vg.Length, ink color.Color) {
 	switch kind {
-	case study.KindMotor:
+	case study.KindMotor, study.KindGenerator:
 		p.strokePath(line, ink, nil, circle(q, u))
-		p.writeBold(q.X, q.Y, centre, 1.2*u, ink, "M")
+		p.writeBold(q.X, q.Y, centre, 1.2*u, ink, map[study.Kind]string{study.KindMotor: "M", study.KindGenerator: "G"}[kind])
 	case study.KindNonlinearLoad:
 		p.converter(q, u, line, ink)
 	case study.KindBank:
