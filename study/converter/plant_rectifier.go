@@ -202,7 +202,8 @@ func (p *plant) directSide(n Nameplate, i int, w float64, at []float64) {
 			c.EMF[m][1+l.param] = -1
 			c.Units = append(c.Units, piecewise.Always{Branch: m})
 			control([]int{m}, true, l.watts, l.ideal)
-			p.start[nb+nv+1+l.param] = volts - n.ArmatureOhm*amps
+			amps = l.watts / at[i]
+			p.start[nb+nv+1+l.param] = at[i] - n.ArmatureOhm*amps
 			p.start[m] = amps
 		}
 		p.start[nb+v] = volts

@@ -44,15 +44,16 @@ func alternates(n Nameplate, r *Result) bool {
 	if n.Kind == KindHalfWave {
 		return false
 	}
-	for q := range r.Current {
-		first := absolute(r.Current[q].At(1))
-		for h := 2; h <= r.State.voltage[q].Order(); h += 2 {
-			if absolute(r.State.voltage[q][h]) > 1e-6*absolute(r.State.voltage[q][1]) {
+	for _, v := range r.State.voltage {
+		for h := 2; h <= v.Order(); h += 2 {
+			if absolute(v[h]) > 0 {
 				return false
 			}
 		}
-		for h := 2; h < len(r.Current[q]); h += 2 {
-			if absolute(r.Current[q][h]) > 1e-3*first {
+	}
+	for _, i := range r.Current {
+		for h := 2; h <= i.Order(); h += 2 {
+			if absolute(i[h]) > 1e-3*absolute(i[1]) {
 				return true
 			}
 		}

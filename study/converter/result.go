@@ -140,7 +140,7 @@ func (r *Result) Norton(ctx context.Context, order int) (*Norton, error) {
 func (n *Norton) Blocks(k, h int) (direct, mirror [3][3]complex128) {
 	if n.linear == nil {
 		if k == h {
-			direct = n.front.admittance(h)
+			return n.front.blocks(h)
 		}
 		return direct, mirror
 	}
@@ -150,19 +150,9 @@ func (n *Norton) Blocks(k, h int) (direct, mirror [3][3]complex128) {
 // Admittance returns the diagonal part Direct(h, h) in symmetrical components,
 // S: what the converter adds to each sequence network at order h.
 func (n *Norton) Admittance(h int) (seq [3]complex128) {
-	d, _ := n.Blocks(h, h)
+	direct, _ := n.Sequences(h, h)
 	for s := range seq {
-		// column: unit voltage of the sequence; row: its component of the current
-		unit := [3]complex128{}
-		unit[s] = 1
-		v := phasor.ToPhase(unit)
-		var i [3]complex128
-		for p := range i {
-			for q := range v {
-				i[p] += d[p][q] * v[q]
-			}
-		}
-		seq[s] = phasor.ToSequence(i)[s]
+		seq[s] = direct[s][s]
 	}
 	return seq
 }

@@ -456,3 +456,17 @@ func rowTimes(row []float64, x []complex128) complex128 {
 	}
 	return complex(re, im)
 }
+
+// Sequences returns Direct and Mirror of current order k and voltage order h in
+// symmetrical components (zero, positive, negative), row by current.
+func (l *Linearisation) Sequences(k, h int) (direct, mirror [3][3]complex128) {
+	i := l.index(k, h)
+	for s := 0; s < 3; s++ {
+		for t := 0; t < 3; t++ {
+			direct[s][t] = l.up[i+s*3+t]
+			// the conjugate of a set turns the other way round
+			mirror[(3-s)%3][t] = conj(l.down[i+s*3+t])
+		}
+	}
+	return direct, mirror
+}
