@@ -74,45 +74,22 @@ func selectionOf(s *study.Study, name string) selection {
 }
 
 // busOf returns the bus that an item stands on, the lower-voltage or far side
-// of a branch.
+// of a branch; a measure stands where what it acts on does.
 func busOf(s *study.Study, name string) string {
-	_, found := s.Find(name)
-	switch i := found.(type) {
-	case *study.Bus:
-		return i.Name
-	case *study.Supply:
-		return i.Bus
-	case *study.Transformer:
-		return i.LVBus
-	case *study.Cable:
-		return i.To
-	case *study.Reactor:
-		return i.To
-	case *study.Coupler:
-		return i.To
-	case *study.Load:
-		return i.Bus
-	case *study.Motor:
-		return i.Bus
-	case *study.Generator:
-		return i.Bus
-	case *study.NonlinearLoad:
-		return i.Bus
-	case *study.Bank:
-		return i.Bus
-	case *study.Filter:
-		return i.Bus
-	case *study.Assessment:
-		return i.Bus
-	case *study.ScanRequest:
-		return i.Bus
-	case *study.Measure:
-		if i.Bus != "" {
-			return i.Bus
+	kind, found := s.Find(name)
+	if kind == study.KindBus {
+		return name
+	}
+	if found == nil {
+		return ""
+	}
+	for _, key := range []string{"bus", "lvBus", "to"} {
+		if bus := study.GetField(found, key); bus != "" {
+			return bus
 		}
-		if i.Target != name {
-			return busOf(s, i.Target)
-		}
+	}
+	if target := study.GetField(found, "target"); target != "" && target != name {
+		return busOf(s, target)
 	}
 	return ""
 }

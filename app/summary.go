@@ -55,7 +55,7 @@ func summary(item any) string {
 	case *study.ScanRequest:
 		return "at " + i.Bus
 	}
-	return ""
+	return "on " + study.GetField(item, "bus")
 }
 
 // measureSummary says what a measure does and where.
