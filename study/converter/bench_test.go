@@ -62,13 +62,56 @@ func BenchmarkSixPulse(b *testing.B) {
 			s = r.State
 		}
 	})
-	b.Run("linearise", func(b *testing.B) {
-		r, err := Solve(ctx, n, two[0], Options{Order: 50})
+	// unbalanced, with even orders: no symmetry shortens the period
+	var skew [2]Terminal
+	for i := range skew {
+		skew[i] = two[i]
+		skew[i].Voltage = clone(two[i].Voltage, 50)
+		skew[i].Voltage[1][1] *= complex(0.985, 0.01)
+		skew[i].Voltage[2][2] += 0.3
+	}
+	b.Run("cold-unbalanced", func(b *testing.B) {
+		for b.Loop() {
+			if _, err := Solve(ctx, n, skew[0], Options{Order: 50}); err != nil {
+				b.Fatal(err)
+			}
+		}
+	})
+	b.Run("warm-unbalanced", func(b *testing.B) {
+		var s *State
+		for i := 0; b.Loop(); i++ {
+			r, err := Solve(ctx, n, skew[i%2], Options{Order: 50, Warm: s})
+			if err != nil {
+				b.Fatal(err)
+			}
+			s = r.State
+		}
+	})
+	for name, term := range map[string]Terminal{"linearise": two[0], "linearise-unbalanced": skew[0]} {
+		b.Run(name, func(b *testing.B) {
+			r, err := Solve(ctx, n, term, Options{Order: 50})
+			if err != nil {
+				b.Fatal(err)
+			}
+			for b.Loop() {
+				if _, err := r.Norton(ctx, 50); err != nil {
+					b.Fatal(err)
+				}
+			}
+		})
+	}
+	b.Run("meet", func(b *testing.B) {
+		bus, z := behind(two[0])
+		r, err := Solve(ctx, n, bus, Options{Order: 50})
+		if err != nil {
+			b.Fatal(err)
+		}
+		norton, err := r.Norton(ctx, 50)
 		if err != nil {
 			b.Fatal(err)
 		}
 		for b.Loop() {
-			if _, err := r.Norton(ctx, 50); err != nil {
+			if _, err := norton.Meet(bus.Voltage, func(h int, _ phasor.Sequence) complex128 { return z(h) }); err != nil {
 				b.Fatal(err)
 			}
 		}

@@ -103,6 +103,10 @@ type variation struct {
 	home   []float64 // d0 x dEnd, nil without symmetry
 	n0, d0 int
 	np     int
+
+	states   []complex128 // the variation, in the order of the weights
+	turns    []complex128 // integrals of e^jk theta by k = -order..2 order and place
+	up, down reading
 }
 
 // A place is one segment in a linearisation.
@@ -116,16 +120,13 @@ type place struct {
 	xa, xb []complex128    // variation at both ends, d
 	X      []complex128    // driven part, n
 	xi     []complex128
-	up     reading // at +k
-	down   reading // at -k
 }
 
-// A reading turns the variation over one segment into Fourier integrals of the
-// line currents, by order (from 1) and sequence of the current.
+// A reading turns the variation into Fourier integrals of the line currents at
+// +k, or at -k, by order (from 1) and sequence of the current.
 type reading struct {
-	start, end []complex128 // 3 x n: weights of the states at both ends
-	force      []complex128 // 3 x 3: weight of the integral of the driving
-	held       []complex128 // 3 x nc: weight of the integral of the constants
+	weights []complex128 // 3 order x states: of the states at both ends of every place, then of the parameters
+	force   []complex128 // 3 order x 3 x places: of the integral of the driving
 }
 
 func newVariation(o *Orbit, order int) *variation {
@@ -134,9 +135,20 @@ func newVariation(o *Orbit, order int) *variation {
 	for _, k := range e.c.K {
 		v.zero = v.zero || math.Abs(k[0]+k[1]+k[2]) > 1e-9
 	}
+	wide := v.np
 	for i := range o.segs {
 		v.at = append(v.at, newPlace(&o.segs[i], &o.links[i], order))
+		wide += 2 * o.segs[i].m.n
 	}
+	v.states = make([]complex128, wide)
+	v.turns = make([]complex128, (3*order+1)*len(v.at))
+	for i := range v.at {
+		for k, z := range v.at[i].turns {
+			v.turns[k*len(v.at)+i] = z
+		}
+	}
+	v.fill(&v.up, false)
+	v.fill(&v.down, true)
 	// derivative works on the engine's pass: lend it that of the orbit
 	segs, links, sym, parts := e.segs, e.links, e.sym, e.parts
 	e.segs, e.links, e.sym, e.parts = o.segs, o.links, o.sym, o.parts
@@ -151,7 +163,7 @@ func newVariation(o *Orbit, order int) *variation {
 
 func newPlace(s *segment, l *link, order int) place {
 	m := s.m
-	n, nc := m.n, m.d-m.n
+	n := m.n
 	p := place{
 		segment: s, link: l, inv: m.inverse(order),
 		za: make([]complex128, 2*order+1), zb: make([]complex128, 2*order+1), turns: make([]complex128, 3*order+1),
@@ -174,10 +186,18 @@ func newPlace(s *segment, l *link, order int) place {
 			}
 		}
 	}
-	outs := m.outputs(order)
-	fill := func(r *reading, down bool) {
-		r.start, r.end = make([]complex128, order*3*n), make([]complex128, order*3*n)
-		r.force, r.held = make([]complex128, order*9), make([]complex128, order*3*nc)
+	return p
+}
+
+// fill makes the reading at +k, or at -k.
+func (v *variation) fill(r *reading, down bool) {
+	order, places, wide := v.order, len(v.at), len(v.states)
+	r.weights, r.force = make([]complex128, 3*order*wide), make([]complex128, 9*order*places)
+	col := 0
+	for i := range v.at {
+		p := &v.at[i]
+		m := p.m
+		n, outs := m.n, m.outputs(order)
 		for k := 1; k <= order; k++ {
 			za, zb, one := conj(p.za[k]), conj(p.zb[k]), p.turns[order-k]
 			if down {
@@ -185,8 +205,9 @@ func newPlace(s *segment, l *link, order int) place {
 			}
 			for s := 0; s < 3; s++ {
 				row := (k-1)*3 + s
+				weights := r.weights[row*wide : (row+1)*wide]
 				for j := 0; j < n; j++ {
-					// component of the sequence in (jkI - A)^-1, or its conjugate
+					// component of the sequence in out (jkI - A)^-1, or in its conjugate
 					var g complex128
 					for q := 0; q < 3; q++ {
 						z := outs[(k*3+q)*n+j]
@@ -196,20 +217,18 @@ func newPlace(s *segment, l *link, order int) place {
 						g += conj(sequence[s][q]) * z
 					}
 					g /= 3
-					r.start[row*n+j], r.end[row*n+j] = g*za, -g*zb
-					for t := range p.B[j] {
-						r.force[row*3+t] += g * p.B[j][t]
+					weights[col+j], weights[col+n+j] = g*za, -g*zb
+					for t, b := range p.B[j] {
+						r.force[(row*3+t)*places+i] += g * b
 					}
-					for c := 0; c < nc; c++ {
-						r.held[row*nc+c] += g * complex(m.A[j*m.d+n+c], 0) * one
+					for c := 0; c < v.np; c++ {
+						weights[wide-v.np+c] += g * complex(m.A[j*m.d+n+1+c], 0) * one
 					}
 				}
 			}
 		}
+		col += 2 * n
 	}
-	fill(&p.up, false)
-	fill(&p.down, true)
-	return p
 }
 
 // factor is what the variation under e^jht of a sequence is multiplied by from
@@ -298,6 +317,13 @@ func (v *variation) drive(h, s int) bool {
 		xa[v.n0+1+c] = complex(b[2*(v.n0+c)], b[2*(v.n0+c)+1])
 	}
 	v.run(h, s)
+	col := 0
+	for i := range v.at {
+		p := &v.at[i]
+		col += copy(v.states[col:], p.xa[:p.m.n])
+		col += copy(v.states[col:], p.xb[:p.m.n])
+	}
+	copy(v.states[col:], xa[v.n0+1:])
 	return true
 }
 
@@ -415,26 +441,19 @@ func (v *variation) read(l *Linearisation, h, s int) {
 // coefficient returns the integral of sequence q of the line currents at +k or
 // -k over the part; turn is the order of the driving in that frame.
 func (v *variation) coefficient(k, q, s, turn int, down bool) (sum complex128) {
-	row := (k-1)*3 + q
-	for i := range v.at {
-		p := &v.at[i]
-		r := &p.up
-		if down {
-			r = &p.down
-		}
-		n := p.m.n
-		sum += r.force[row*3+s] * p.turns[v.order+turn]
-		start, end := r.start[row*n:(row+1)*n], r.end[row*n:(row+1)*n]
-		xa, xb := p.xa[:n], p.xb[:n]
-		for j, g := range start {
-			sum += g*xa[j] + end[j]*xb[j]
-		}
-		nc := p.m.d - n
-		for c, x := range p.xa[n:] {
-			if x != 0 {
-				sum += r.held[row*nc+c] * x
-			}
-		}
+	r := &v.up
+	if down {
+		r = &v.down
+	}
+	row, wide, places := (k-1)*3+q, len(v.states), len(v.at)
+	weights := r.weights[row*wide : (row+1)*wide]
+	for i, x := range v.states {
+		sum += weights[i] * x
+	}
+	at := v.order + turn
+	turns := v.turns[at*places : (at+1)*places]
+	for i, g := range r.force[(row*3+s)*places : (row*3+s+1)*places] {
+		sum += g * turns[i]
 	}
 	return sum
 }
