@@ -163,8 +163,14 @@ func TestEmptyStates(t *testing.T) {
 		Spectrum(nil, nil, Selection{Bus: "x"}), Waveform(nil, nil, Selection{Element: "x"}), Impedance(nil, nil, nil),
 		Margins(nil, &study.Outcome{Study: s}), Margins(nil, nil), SingleLine(s, nil, nil, nil, View{}),
 	} {
-		if _, texts := record(f, 300, 200); len(texts) == 0 {
+		_, texts := record(f, 200, 160)
+		if len(texts) == 0 {
 			t.Errorf("%s: nothing is said", f.Key)
+		}
+		for _, w := range texts {
+			if w.box.Min.X < 0 || w.box.Max.X > 200 {
+				t.Errorf("%s: %q leaves the canvas", f.Key, w.text)
+			}
 		}
 	}
 	whole, _, a := demo(t)

@@ -193,11 +193,27 @@ func (p *pen) patch(x, y vg.Length, size vg.Length, ink color.Color, bold bool, 
 // empty says in the middle of the canvas why there is nothing to see.
 func (p *pen) empty(words string) []Hot {
 	r := p.c.Rectangle
-	lines := strings.Split(words, "\n")
+	var lines []string
+	for _, sentence := range strings.Split(words, "\n") {
+		lines = append(lines, p.wrap(p.st.Head, r.Max.X-r.Min.X-2*p.st.Head, sentence)...)
+	}
 	y := (r.Min.Y+r.Max.Y)/2 + p.st.Head*vg.Length(len(lines)-1)*0.7
 	for _, l := range lines {
 		p.write((r.Min.X+r.Max.X)/2, y, centre, p.st.Head, p.st.Muted, l)
 		y -= 1.4 * p.st.Head
 	}
 	return p.hots
+}
+
+// wrap breaks a sentence into lines of at most a width.
+func (p *pen) wrap(size, width vg.Length, sentence string) (lines []string) {
+	line := ""
+	for _, word := range strings.Fields(sentence) {
+		next := strings.TrimSpace(line + " " + word)
+		if line != "" && p.width(size, next) > width {
+			lines, next = append(lines, line), word
+		}
+		line = next
+	}
+	return append(lines, line)
 }

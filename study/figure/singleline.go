@@ -199,11 +199,11 @@ func (d *diagram) over(bus string) (bool, float64) {
 
 func (d *diagram) busText(name string, was, now *study.BusResult) string {
 	text := name + "\n" + d.voltage(name)
-	if was != nil && was.Live {
+	if was != nil && was.Live && d.before != d.after {
 		text += "\nTHD before\t" + number(100*was.THD()) + " %"
 	}
 	if now != nil && now.Live {
-		text += "\nTHD after\t" + number(100*now.THD()) + " %"
+		text += map[bool]string{true: "\nTHD\t", false: "\nTHD after\t"}[was == nil || d.before == d.after] + number(100*now.THD()) + " %"
 	}
 	return text
 }
