@@ -20,6 +20,7 @@ import (
 	"fyne.io/fyne/v2/widget"
 
 	"quietbus/study"
+	"quietbus/study/handout"
 	"quietbus/widgets"
 )
 
@@ -554,13 +555,13 @@ func TestHandoutFromWindow(t *testing.T) {
 func TestSavedFigures(t *testing.T) {
 	b := newBed(t)
 	f := b.evidence.figure("Spectrum")
-	for ext, head := range map[string]string{".svg": "<?xml", ".png": "\x89PNG"} {
-		data, err := encodeFigure(f, ext)
+	for ext, head := range map[string]string{".svg": "<?xml", ".png": "\x89PNG", ".pdf": "%PDF"} {
+		data, err := handout.EncodeFigure(f, ext, time.Now())
 		if err != nil || !strings.HasPrefix(string(data), head) {
 			t.Errorf("%s: %v, begins %q", ext, err, data[:min(len(data), 8)])
 		}
 	}
-	if _, err := encodeFigure(f, ".gif"); err == nil || !strings.Contains(err.Error(), ".svg") {
+	if _, err := handout.EncodeFigure(f, ".gif", time.Now()); err == nil || !strings.Contains(err.Error(), ".svg") {
 		t.Errorf("a form that is not known: %v", err)
 	}
 }

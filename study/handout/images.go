@@ -72,19 +72,29 @@ func fileStems(list []drawn) []string {
 	return stems
 }
 
-// draws draws one figure three times.
-func draws(f *figure.Figure, date time.Time, name string, out []file) (err error) {
+// FigureForms are the endings of the files that a figure can be written as.
+var FigureForms = []string{".svg", ".png", ".pdf"}
+
+// EncodeFigure draws a figure as on paper, at its own size, in the form that a
+// file name's ending asks for; the date goes into a PDF.
+func EncodeFigure(f *figure.Figure, ext string, date time.Time) ([]byte, error) {
 	st := figure.Print()
-	for i, make := range []struct {
-		ext  string
-		draw func() ([]byte, error)
-	}{
-		{".svg", func() ([]byte, error) { return asSVG(f, st) }},
-		{".png", func() ([]byte, error) { return asPNG(f, st) }},
-		{".pdf", func() ([]byte, error) { return asPDF(f, st, date) }},
-	} {
-		out[i].name = name + make.ext
-		if out[i].data, err = make.draw(); err != nil {
+	switch strings.ToLower(ext) {
+	case ".svg":
+		return asSVG(f, st)
+	case ".png":
+		return asPNG(f, st)
+	case ".pdf":
+		return asPDF(f, st, date)
+	}
+	return nil, fmt.Errorf("a figure is saved as %s: give the file name one of these endings", strings.Join(FigureForms, ", "))
+}
+
+// draws draws one figure in every form.
+func draws(f *figure.Figure, date time.Time, name string, out []file) (err error) {
+	for i, ext := range FigureForms {
+		out[i].name = name + ext
+		if out[i].data, err = EncodeFigure(f, ext, date); err != nil {
 			return err
 		}
 	}
