@@ -246,3 +246,51 @@ func TestControlledResistor(t *testing.T) {
 		}
 	}
 }
+
+// The direct voltage of a thyristor bridge with ripple-free current and no
+// overlap is the line-to-line voltage from 60 degrees + alpha on; its mean is
+// 1.35 V cos alpha (mark: derived).
+func TestDirectVoltageWaveform(t *testing.T) {
+	for _, alpha := range []float64{20, 50, 100} {
+		n, term := smooth(KindThyristorBridge, alpha, 100, 1e-8)
+		wave := mustSolve(t, n, term, 25).Waveform()
+		var mean float64
+		for i, v := range wave.DirectV {
+			mean += v / float64(len(wave.DirectV))
+			// angle after firing of the valve that fired last; phase a is at
+			// its crest at sample 0, its natural commutation 60 degrees before
+			deg := math.Mod(float64(i)*360/float64(len(wave.DirectV))+60-alpha+720, 60)
+			if deg < 0.2 || deg > 59.8 {
+				continue
+			}
+			want := 400 * math.Sqrt2 * math.Sin((60+alpha+deg)*math.Pi/180)
+			if math.Abs(v-want) > 0.5 {
+				t.Fatalf("alpha %g, %g degrees after firing: %.2f V, want %.2f", alpha, deg, v, want)
+			}
+		}
+		if want := 400 * 3 * math.Sqrt2 / math.Pi * math.Cos(alpha*math.Pi/180); math.Abs(mean-want) > 3 {
+			t.Errorf("alpha %g: mean %.2f V, want %.2f", alpha, mean, want)
+		}
+	}
+}
+
+// The most that a supply can deliver through a smooth bridge with overlap of
+// 60 degrees: P = (sqrt(3)/4) Vdo (pi Vdo / 6X) at a delay of 15 degrees
+// (Kimbark's pieces above; mark: derived).
+func TestMostPower(t *testing.T) {
+	const xc, v = 0.05, 400.0
+	vdo := 3 * math.Sqrt2 / math.Pi * v
+	most := math.Sqrt(3) / 4 * vdo * math.Pi * vdo / (6 * xc)
+	n := Nameplate{Kind: KindDiodeBridge, VoltageV: v, PowerW: 1.02 * most, Smoothing: ByChoke, ChokeH: 10}
+	term := Balanced(v, 50, 0, xc/(2*math.Pi*50))
+	_, err := Solve(context.Background(), n, term, Options{})
+	expect(t, "above the most", err, WeakSupply)
+	if c, ok := err.(*ConditionError); ok && math.Abs(c.AvailableW/most-1) > 0.01 {
+		t.Errorf("says %g W, want %g", c.AvailableW, most)
+	}
+	n.PowerW = 0.98 * most
+	r := mustSolve(t, n, term, 25)
+	if math.Abs(r.Balance.LoadW/n.PowerW-1) > 1e-4 {
+		t.Errorf("load takes %g W of %g", r.Balance.LoadW, n.PowerW)
+	}
+}

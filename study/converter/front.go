@@ -169,7 +169,7 @@ func solveFront(n Nameplate, t Terminal, o Options) (*Result, error) {
 	}
 
 	r := &Result{Conduction: Modulated, DirectV: f.DirectV, DirectA: n.PowerW / f.DirectV, order: o.Order, front: m}
-	r.State = &State{plate: n, source: t, voltage: t.Voltage}
+	r.State, r.voltage = &State{plate: n, source: t}, cloned(t.Voltage)
 	r.State.source.Voltage = [3]phasor.Spectrum{}
 	for p := range r.Current {
 		r.Current[p] = phasor.New(o.Order)

@@ -85,6 +85,7 @@ func buildRectifier(n Nameplate, t Terminal, at []float64) *plant {
 			c.R[b][b] += lossFloor * c.X[b][b]
 		}
 	}
+	c.Rates = nv == 0
 	p.scale(n, t)
 	p.start = make([]float64, nb+nv+1+np)
 	p.start[nb+nv] = 1

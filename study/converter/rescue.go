@@ -44,7 +44,7 @@ func alternates(n Nameplate, r *Result) bool {
 	if n.Kind == KindHalfWave {
 		return false
 	}
-	for _, v := range r.State.voltage {
+	for _, v := range r.voltage {
 		for h := 2; h <= v.Order(); h += 2 {
 			if absolute(v[h]) > 0 {
 				return false

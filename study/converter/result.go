@@ -50,15 +50,16 @@ type Result struct {
 	Switching  []SwitchingLine // lines about the switching frequency, active front end only
 	State      *State          // to start a later solution from
 
-	plant *plant
-	orbit *piecewise.Orbit
-	front *frontState
-	order int
+	plant   *plant
+	orbit   *piecewise.Orbit
+	front   *frontState
+	order   int
+	voltage [3]phasor.Spectrum
 }
 
 // Waveform is one period of what the converter draws, sampled evenly from the
-// time origin of the phasors. DirectV (first link) is nil where no capacitor
-// holds it.
+// time origin of the phasors. DirectV, of the first link, is that of its
+// capacitor, or behind the valves where only a choke smooths.
 type Waveform struct {
 	Current [3][]float64 // A
 	DirectV []float64    // V
@@ -98,8 +99,29 @@ func (r *Result) Waveform() Waveform {
 			}
 		}
 	}
-	if v := r.plant.links[0].capacitor; v >= 0 {
-		out.DirectV = walk[len(c.X)+v]
+	first := r.plant.links[0]
+	if first.capacitor >= 0 {
+		out.DirectV = walk[len(c.X)+first.capacitor]
+		return out
+	}
+	d := first.direct[0]
+	out.DirectV = make([]float64, piecewise.Samples)
+	if len(r.plant.rectifiers[0].legs) == 0 || c.K[d] != [3]float64{} { // a single diode: at its load
+		for i, x := range walk[d] {
+			out.DirectV[i] = r.plant.load[d][d] * x
+		}
+		return out
+	}
+	// R i + X i' against the constant EMFs, seen from the valves
+	rates, one := r.orbit.WalkRates(), len(c.X)
+	for i := range out.DirectV {
+		for b := range c.X {
+			out.DirectV[i] += c.R[d][b]*walk[b][i] + c.X[d][b]*rates[b][i]
+		}
+		for k, e := range c.EMF[d] {
+			out.DirectV[i] -= e * walk[one+k][i]
+		}
+		out.DirectV[i] -= r.plant.drop[d]
 	}
 	return out
 }
@@ -122,12 +144,13 @@ type Norton struct {
 }
 
 // Norton returns the linearisation about the result, for orders 1..order
-// (zero: the result's own). It costs about as much as a few solutions.
+// (zero, or above the result's own: the result's own). It costs as much as some
+// five solutions.
 func (r *Result) Norton(ctx context.Context, order int) (*Norton, error) {
-	if order <= 0 {
+	if order <= 0 || order > r.order {
 		order = r.order
 	}
-	n := &Norton{Order: order, Current: r.Current, Voltage: r.State.voltage, front: r.front}
+	n := &Norton{Order: order, Current: r.Current, Voltage: cloned(r.voltage), front: r.front}
 	if r.orbit == nil {
 		return n, nil
 	}

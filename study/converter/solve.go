@@ -6,6 +6,8 @@ import (
 	"math"
 	"math/cmplx"
 	"reflect"
+	"slices"
+	"sync"
 
 	"quietbus/study/converter/internal/piecewise"
 	"quietbus/study/phasor"
@@ -15,13 +17,12 @@ import (
 // at a voltage nearby, or of a nameplate little changed, cheap. It serves one
 // solution at a time; others wait.
 type State struct {
-	plate   Nameplate
-	source  Terminal // without its voltages
-	solver  *piecewise.Solver
-	plant   *plant
-	at      []float64 // V, mean voltage of the links; there a tight power is linearised
-	full    []float64
-	voltage [3]phasor.Spectrum
+	mu     sync.Mutex
+	plate  Nameplate
+	source Terminal // without its voltages
+	solver *piecewise.Solver
+	plant  *plant
+	at     []float64 // V, mean voltage of the links; there a tight power is linearised
 }
 
 const (
@@ -49,7 +50,7 @@ func Solve(ctx context.Context, n Nameplate, t Terminal, o Options) (*Result, er
 	if n.Kind == KindActiveFrontEnd {
 		return solveFront(n, t, o)
 	}
-	if s := o.Warm; s != nil && s.solver != nil && s.matches(n, t) {
+	if s := o.Warm; s != nil && s.matches(n, t) {
 		if r, err := s.run(ctx, t, o.Order); err == nil || ctx.Err() != nil {
 			return r, err
 		}
@@ -104,6 +105,8 @@ func (s *State) build(t Terminal, at []float64) {
 // run solves and takes a new tangent of a tight power until it lies at
 // the mean voltage.
 func (s *State) run(ctx context.Context, t Terminal, order int) (*Result, error) {
+	s.mu.Lock()
+	defer s.mu.Unlock()
 	for try := 0; ; try++ {
 		orbit, err := s.solver.Solve(ctx, t.Voltage, max(order, highest(t.Voltage)))
 		if err != nil {
@@ -122,7 +125,6 @@ func (s *State) run(ctx context.Context, t Terminal, order int) (*Result, error)
 			s.at[i] = mean
 		}
 		if !moved || try == 8 {
-			s.full = orbit.State
 			return s.read(orbit, t, order)
 		}
 		next := &State{plate: s.plate, source: s.source}
@@ -156,8 +158,8 @@ func (s *State) named(err error) error {
 // read turns an orbit into a result and checks it.
 func (s *State) read(o *piecewise.Orbit, t Terminal, order int) (*Result, error) {
 	p := s.plant
-	s.voltage = t.Voltage
 	r := &Result{
+		voltage: cloned(t.Voltage),
 		Current: truncated(o.Lines, order), Iterations: o.Passes, Residual: o.Correction, Multiplier: cmplx.Abs(o.Multiplier),
 		State: s, plant: p, orbit: o, order: order,
 	}
@@ -184,6 +186,13 @@ func highest(v [3]phasor.Spectrum) int {
 func truncated(v [3]phasor.Spectrum, order int) [3]phasor.Spectrum {
 	for q := range v {
 		v[q] = v[q][:order+1]
+	}
+	return v
+}
+
+func cloned(v [3]phasor.Spectrum) [3]phasor.Spectrum {
+	for q := range v {
+		v[q] = slices.Clone(v[q])
 	}
 	return v
 }

@@ -22,6 +22,8 @@ type Circuit struct {
 
 	Controls []Control // one for each free parameter, in their order
 
+	Rates bool // orbits keep the derivatives of the branch currents too
+
 	Volt, Amp float64 // scale of voltages and currents, for tolerances
 }
 

@@ -41,6 +41,7 @@ type Orbit struct {
 	watts  []control
 	first  [3]complex128
 	walked []float64 // Samples x states
+	rates  []float64 // Samples x states: derivatives of the branch currents, or nil
 }
 
 // control is a Control with the averages of the orbit.
@@ -144,14 +145,30 @@ func (o *Orbit) keep(e *engine) {
 	}
 	o.sym, o.parts = e.sym, e.parts
 	o.walked = make([]float64, Samples*e.wide)
-	row := func(k int) []float64 { k %= Samples; return o.walked[k*e.wide : (k+1)*e.wide] }
+	if e.c.Rates {
+		o.rates = make([]float64, Samples*e.wide)
+	}
+	row := func(v []float64, k int) []float64 { k %= Samples; return v[k*e.wide : (k+1)*e.wide] }
+	var u [3]float64
+	slope := make([]float64, e.wide)
 	for _, k := range e.recorded() {
 		m := e.atM[k]
-		m.expand(e.atX[k*e.wide:k*e.wide+m.d], row(k))
+		x := e.atX[k*e.wide : k*e.wide+m.d]
+		m.expand(x, row(o.walked, k))
+		if o.rates != nil {
+			copy(u[:], e.s.at[3*k:])
+			m.slope(x, &u, slope)
+			for b := 0; b < e.c.nb(); b++ {
+				row(o.rates, k)[b] = dot(m.T[b*m.ny:(b+1)*m.ny], slope)
+			}
+		}
 	}
 	stride := Samples / e.parts
 	for i, k := 0, e.marks[0]; i < Samples-stride; i++ {
-		e.ahead(row(k+i), row(k+i+stride))
+		e.ahead(row(o.walked, k+i), row(o.walked, k+i+stride))
+		if o.rates != nil {
+			e.ahead(row(o.rates, k+i), row(o.rates, k+i+stride))
+		}
 	}
 }
 
@@ -217,12 +234,22 @@ func (o *Orbit) yield(e *engine) []float64 {
 
 // Walk returns the full state at the samples of the period, state by state:
 // Walk()[i] has Samples values.
-func (o *Orbit) Walk() [][]float64 {
-	ns := len(o.State)
-	out := rows(ns, Samples)
-	for k := 0; k < Samples; k++ {
-		for i := 0; i < ns; i++ {
-			out[i][k] = o.walked[k*ns+i]
+func (o *Orbit) Walk() [][]float64 { return transpose(o.walked, len(o.State)) }
+
+// WalkRates returns the derivatives of the branch currents by angle, A per rad,
+// at the samples; nil unless the circuit asks for Rates.
+func (o *Orbit) WalkRates() [][]float64 {
+	if o.rates == nil {
+		return nil
+	}
+	return transpose(o.rates, len(o.State))
+}
+
+func transpose(v []float64, n int) [][]float64 {
+	out := rows(n, Samples)
+	for i := range out {
+		for k := range out[i] {
+			out[i][k] = v[k*n+i]
 		}
 	}
 	return out
