@@ -13,25 +13,26 @@ type axes struct {
 	area           vg.Rectangle
 	x0, x1, y0, y1 float64
 	logY           bool
+	log0, decades  float64   // of a logarithmic y axis
 	yTitle         vg.Length // right end of the title of the y axis
 }
 
-// open lays the area out under a heading and returns it; room at the left is
-// for the tick labels, at the bottom for those of the x axis and its title.
-func (p *pen) open(heading, yTitle, xTitle string) *axes {
-	r, s := p.c.Rectangle, p.st
+// open lays the whole canvas out as one plot.
+func (p *pen) open(yTitle, xTitle string) *axes { return p.openIn(p.c.Rectangle, yTitle, xTitle) }
+
+// openIn lays a part of the canvas out as a plot. The title of the y axis
+// stands above its labels, that of the x axis left of its own: both read as the
+// heading of a column and of a row.
+func (p *pen) openIn(r vg.Rectangle, yTitle, xTitle string) *axes {
+	s := p.st
 	pad := s.Body
-	top := r.Max.Y - pad
-	if heading != "" {
-		p.writeBold(r.Min.X+pad, top-s.Head*0.5, left, s.Head, s.Ink, p.fit(s.Head, r.Max.X-r.Min.X-2*pad, heading))
-		top -= 1.6 * s.Head
-	}
-	p.write(r.Min.X+pad, top-s.Small*0.5, left, s.Small, s.Muted, yTitle)
-	top -= 1.6 * s.Small
-	bottom := r.Min.Y + pad*0.6
-	p.write(r.Max.X-pad, bottom+s.Small*0.5, right, s.Small, s.Muted, xTitle)
-	bottom += 1.5*s.Small + 1.7*s.Small
-	return &axes{pen: p, yTitle: r.Min.X + pad + p.width(s.Small, yTitle), area: rect(r.Min.X+pad+4.6*s.Small, bottom, r.Max.X-pad, top)}
+	top := r.Max.Y - 0.9*pad
+	p.write(r.Min.X+pad, top-0.5*s.Small, left, s.Small, s.Muted, yTitle)
+	gutter := max(4.6*s.Small, p.width(s.Small, xTitle)+1.2*s.Small)
+	a := &axes{pen: p, yTitle: r.Min.X + pad + p.width(s.Small, yTitle),
+		area: rect(r.Min.X+pad+gutter, r.Min.Y+0.7*pad+1.6*s.Small, r.Max.X-pad, top-2.1*s.Small)}
+	p.write(a.area.Min.X-0.9*s.Small, a.area.Min.Y-1.2*s.Small, right, s.Small, s.Muted, xTitle)
+	return a
 }
 
 func (a *axes) x(v float64) vg.Length {
@@ -39,19 +40,26 @@ func (a *axes) x(v float64) vg.Length {
 }
 
 func (a *axes) y(v float64) vg.Length {
-	lo, hi := a.y0, a.y1
+	part := (v - a.y0) / (a.y1 - a.y0)
 	if a.logY {
-		v, lo, hi = math.Log10(math.Max(v, 1e-30)), math.Log10(lo), math.Log10(hi)
+		part = (math.Log10(math.Max(v, 1e-30)) - a.log0) / a.decades
 	}
-	return a.area.Min.Y + vg.Length((v-lo)/(hi-lo))*(a.area.Max.Y-a.area.Min.Y)
+	return a.area.Min.Y + vg.Length(part)*(a.area.Max.Y-a.area.Min.Y)
 }
 
 // scaleY chooses a linear scale from 0 (or -top) to a round value above top.
 func (a *axes) scaleY(top float64, symmetric bool) {
-	if top <= 0 || math.IsNaN(top) {
+	if top <= 0 || math.IsNaN(top) || math.IsInf(top, 0) {
 		top = 1
 	}
-	step := niceStep(top / 4)
+	lines := 4.0
+	if symmetric {
+		lines = 2
+	}
+	if room := float64((a.area.Max.Y - a.area.Min.Y) / (1.8 * a.st.Small)); room < 2*lines {
+		lines = math.Max(1, lines/2)
+	}
+	step := niceStep(top / lines)
 	a.y1 = step * math.Ceil(top/step*1.0001)
 	a.y0 = 0
 	if symmetric {
@@ -62,18 +70,47 @@ func (a *axes) scaleY(top float64, symmetric bool) {
 	}
 }
 
-// scaleLog chooses whole decades around lo..hi.
+// scaleLog chooses a logarithmic scale around lo..hi that begins and ends at 1,
+// 2 or 5 times a power of ten.
 func (a *axes) scaleLog(lo, hi float64) {
+	if !(lo > 0) || !(hi > lo) {
+		lo, hi = 0.1, 10
+	}
 	a.logY = true
-	d0, d1 := math.Floor(math.Log10(lo)), math.Ceil(math.Log10(hi))
-	if d1 <= d0 {
-		d1 = d0 + 1
+	a.y0, a.y1 = roundDown(lo), roundUp(hi)
+	a.log0 = math.Log10(a.y0)
+	a.decades = math.Log10(a.y1) - a.log0
+	steps := []float64{1}
+	if a.decades < 2.4 && float64(a.area.Max.Y-a.area.Min.Y) > 6*a.decades*float64(a.st.Small) {
+		steps = []float64{1, 2, 5}
 	}
-	a.y0, a.y1 = math.Pow(10, d0), math.Pow(10, d1)
-	for d := d0; d <= d1; d++ {
-		v := math.Pow(10, d)
-		a.ruleY(v, strconv.FormatFloat(v, 'g', -1, 64))
+	for d := math.Floor(a.log0); d <= math.Ceil(a.log0+a.decades); d++ {
+		for _, m := range steps {
+			if v := m * math.Pow(10, d); v >= a.y0*0.999 && v <= a.y1*1.001 {
+				a.ruleY(v, strconv.FormatFloat(v, 'g', 3, 64))
+			}
+		}
 	}
+}
+
+func roundDown(v float64) float64 {
+	base := math.Pow(10, math.Floor(math.Log10(v)))
+	for _, m := range []float64{5, 2} {
+		if m*base <= v*1.0001 {
+			return m * base
+		}
+	}
+	return base
+}
+
+func roundUp(v float64) float64 {
+	base := math.Pow(10, math.Floor(math.Log10(v)))
+	for _, m := range []float64{1, 2, 5} {
+		if m*base >= v*0.9999 {
+			return m * base
+		}
+	}
+	return 10 * base
 }
 
 func (a *axes) ruleY(v float64, label string) {
@@ -90,7 +127,7 @@ func (a *axes) base(v float64) {
 
 // labelX writes a tick label below the area.
 func (a *axes) labelX(v float64, words string) {
-	a.write(a.x(v), a.area.Min.Y-1.1*a.st.Small, centre, a.st.Small, a.st.Ink, words)
+	a.write(a.x(v), a.area.Min.Y-1.2*a.st.Small, centre, a.st.Small, a.st.Ink, words)
 }
 
 func niceStep(raw float64) float64 {
@@ -114,54 +151,44 @@ func tick(v, step float64) string {
 	return strconv.FormatFloat(v, 'f', digits, 64)
 }
 
-// key writes the words for before and after in their colours at the right of
-// the line of the y axis's title; detail follows each word where there is room
-// for it. One outcome alone is neither before nor after and has its detail only.
-func (a *axes) key(before, after bool, detail [2]string) {
-	words := [2]string{"before", "after"}
+// key writes before and after in their colours, each behind its mark, at the
+// right of the line of the y axis's title: the first of the wordings for which
+// there is room. One outcome alone is neither before nor after and has the
+// second word of a wording only.
+func (a *axes) key(before, after bool, wordings ...[2]string) {
+	s := a.st
+	y, end := a.area.Max.Y+1.6*s.Small, a.area.Max.X
+	var words [2]string
 	switch {
 	case before && after:
-		if long := [2]string{join("before", detail[0]), join("after", detail[1])}; a.keyWidth(long, true, true) < a.area.Max.X-a.yTitle-a.st.Small {
-			words = long
+		words = [2]string{"before", "after"}
+		for _, w := range wordings {
+			if a.keyWidth(w) < end-a.yTitle-1.5*s.Small {
+				words = w
+				break
+			}
 		}
 	case before || after:
-		words = detail
+		for _, w := range wordings {
+			if w[1] != "" && a.widthBold(s.Small, w[1]) < end-a.yTitle-2.5*s.Small {
+				a.writeBold(end, y, right, s.Small, s.After, w[1])
+				break
+			}
+		}
+		return
+	default:
+		return
 	}
-	s := a.st
-	y := a.area.Max.Y + 1.1*s.Small
-	x := a.area.Max.X
-	if after && words[1] != "" {
-		a.writeBold(x, y, right, s.Small, s.After, words[1])
-		x -= a.keyWidth(words, false, true) - 1.6*s.Small
-		a.fill(rect(x-1.5*s.Small, y-0.35*s.Small, x-0.6*s.Small, y+0.35*s.Small), s.After)
-		x -= 2.4 * s.Small
-	}
-	if before && words[0] != "" {
-		a.write(x, y, right, s.Small, s.Muted, words[0])
-		x -= a.keyWidth(words, true, false) - 1.6*s.Small
-		a.box(rect(x-1.5*s.Small, y-0.35*s.Small, x-0.6*s.Small, y+0.35*s.Small), s.Line, s.Before, nil)
-	}
-}
-
-func join(word, detail string) string {
-	if detail == "" {
-		return word
-	}
-	return word + ", " + detail
+	a.writeBold(end, y, right, s.Small, s.After, words[1])
+	end -= a.widthBold(s.Small, words[1]) + 0.6*s.Small
+	a.fill(rect(end-0.9*s.Small, y-0.35*s.Small, end, y+0.35*s.Small), s.After)
+	end -= 1.8 * s.Small
+	a.write(end, y, right, s.Small, s.Muted, words[0])
+	end -= a.width(s.Small, words[0]) + 0.6*s.Small
+	a.box(rect(end-0.9*s.Small, y-0.35*s.Small, end, y+0.35*s.Small), s.Line, s.Before, nil)
 }
 
 // keyWidth returns the room that words and marks take.
-func (a *axes) keyWidth(words [2]string, before, after bool) vg.Length {
-	s := a.st
-	w := vg.Length(0)
-	if before {
-		w += a.width(s.Small, words[0]) + 1.6*s.Small
-	}
-	if after {
-		w += s.text(s.Small, s.After, true, false).Width(words[1]) + 1.6*s.Small
-	}
-	if before && after {
-		w += 0.9 * s.Small
-	}
-	return w
+func (a *axes) keyWidth(words [2]string) vg.Length {
+	return a.width(a.st.Small, words[0]) + a.widthBold(a.st.Small, words[1]) + 3.9*a.st.Small
 }

@@ -32,6 +32,9 @@ func Impedance(before, after []*study.ScanResult, sources []int) *Figure {
 		f.Title = fmt.Sprintf("Driving-point impedance at %s, %s sequence", any.Bus, any.Sequence)
 		f.Caption = "Magnitude against order, EMFs shorted and non-linear loads open." + resonances("before", b) + resonances("after", a)
 	}
+	if len(sources) > 0 {
+		f.Caption += " Dots: the orders that loads inject."
+	}
 	f.Draw = func(c draw.Canvas, st *Style) []Hot { return drawImpedance(newPen(c, st), b, a, sources) }
 	return f
 }
@@ -80,54 +83,69 @@ func drawImpedance(p *pen, b, a *study.ScanResult, sources []int) []Hot {
 		}
 	}
 	lo = math.Max(lo, hi*1e-5)
-	x := p.open("", "ohm", "harmonic order")
-	x.key(b != nil, a != nil, [2]string{})
+	x := p.open("impedance, Ω", "order")
+	x.key(b != nil, a != nil)
 	x.x0, x.x1 = any.Orders[0], any.Orders[len(any.Orders)-1]
-	x.scaleLog(lo, hi*1.3)
-	for _, h := range sources {
-		if float64(h) >= x.x0 && float64(h) <= x.x1 {
-			at := x.x(float64(h))
-			x.stroke(x.st.Thin, x.st.Muted, []vg.Length{1, 2}, vg.Point{X: at, Y: x.area.Min.Y}, vg.Point{X: at, Y: x.area.Max.Y})
-		}
-	}
+	x.scaleLog(lo, hi*1.4)
 	x.base(x.y0)
-	labels := sources
-	if len(labels) == 0 {
-		labels = []int{1, 5, 10, 15, 20, 25, 30, 35, 40, 45, 50}
-	}
 	var shown []int
-	for _, h := range labels {
+	for _, h := range sources {
 		if float64(h) >= x.x0 && float64(h) <= x.x1 {
 			shown = append(shown, h)
 		}
 	}
+	curves := [2]curve{x.curve(b), x.curve(a)}
+	x.marks(shown, b, a)
+	if len(shown) == 0 {
+		for _, h := range []int{1, 5, 10, 15, 20, 25, 30, 35, 40, 45, 50, 60, 70, 80, 90, 100} {
+			if float64(h) >= x.x0 && float64(h) <= x.x1 {
+				shown = append(shown, h)
+			}
+		}
+	}
 	x.orderLabels(shown)
-	x.curve(b, x.st.Before, x.st.Line)
-	x.curve(a, x.st.After, x.st.Bold)
-	x.peaks(b, a)
+	if a != nil {
+		x.strokePath(x.st.Bold, x.st.After, nil, curves[1].path())
+	}
+	if b != nil { // thin over bold: both are seen where they agree
+		x.strokePath(x.st.Line, x.st.Before, nil, curves[0].path())
+	}
+	x.peaks(b, a, curves)
 	x.readouts(b, a)
 	return p.hots
 }
 
-func (x *axes) curve(r *study.ScanResult, ink color.Color, width vg.Length) {
-	if r == nil {
-		return
+// A curve is a scan in the coordinates of the canvas, without points too close
+// to tell apart.
+type curve []vg.Point
+
+func (c curve) path() vg.Path {
+	path := make(vg.Path, 0, len(c))
+	for i, q := range c {
+		if i == 0 {
+			path.Move(q)
+		} else {
+			path.Line(q)
+		}
 	}
-	var path vg.Path
+	return path
+}
+
+func (x *axes) curve(r *study.ScanResult) curve {
+	if r == nil {
+		return nil
+	}
+	c := make(curve, 0, 512)
 	last := vg.Point{X: -1e9}
 	for i, z := range r.Z {
 		y := math.Min(math.Max(cmplx.Abs(z), x.y0), x.y1)
 		q := vg.Point{X: x.x(r.Orders[i]), Y: x.y(y)}
-		if i == 0 {
-			path.Move(q)
-		} else if q.X-last.X > 0.15 || abs(q.Y-last.Y) > 0.3 || i == len(r.Z)-1 {
-			path.Line(q)
-		} else {
-			continue
+		if i == 0 || i == len(r.Z)-1 || q.X-last.X > 0.15 || abs(q.Y-last.Y) > 0.3 {
+			c = append(c, q)
+			last = q
 		}
-		last = q
 	}
-	x.strokePath(width, ink, nil, path)
+	return c
 }
 
 func abs(v vg.Length) vg.Length {
@@ -137,9 +155,45 @@ func abs(v vg.Length) vg.Length {
 	return v
 }
 
+// marks shows at which impedance each order meets the network that a load
+// injects: a line from the axis up to a dot on each curve.
+func (x *axes) marks(sources []int, b, a *study.ScanResult) {
+	if len(sources) == 0 {
+		return
+	}
+	var lines, hollow, solid vg.Path
+	radius := 0.28 * x.st.Small
+	for _, h := range sources {
+		here := x.x(float64(h))
+		top := x.area.Min.Y
+		for i, r := range []*study.ScanResult{b, a} {
+			if r == nil {
+				continue
+			}
+			q := vg.Point{X: here, Y: x.y(math.Min(math.Max(at(r, float64(h)), x.y0), x.y1))}
+			top = max(top, q.Y)
+			if i == 0 {
+				hollow = append(hollow, circle(q, radius)...)
+			} else {
+				solid = append(solid, circle(q, radius)...)
+			}
+		}
+		lines.Move(vg.Point{X: here, Y: x.area.Min.Y})
+		lines.Line(vg.Point{X: here, Y: top})
+	}
+	x.strokePath(x.st.Thin, x.st.Muted, nil, lines)
+	if len(hollow) > 0 {
+		x.fillPath(x.st.Ground, hollow)
+		x.strokePath(x.st.Line, x.st.Before, nil, hollow)
+	}
+	if len(solid) > 0 {
+		x.fillPath(x.st.After, solid)
+	}
+}
+
 // peaks names the highest resonances of both scans, where there is room beside
 // the peak; one at which both have a peak is named once.
-func (x *axes) peaks(b, a *study.ScanResult) {
+func (x *axes) peaks(b, a *study.ScanResult, curves [2]curve) {
 	var taken []vg.Rectangle
 	for i, r := range []*study.ScanResult{a, b} {
 		if r == nil {
@@ -159,17 +213,32 @@ func (x *axes) peaks(b, a *study.ScanResult) {
 			if i == 1 && a != nil && hasPeak(a, k.Order) {
 				continue
 			}
-			words := fmt.Sprintf("%s Ω at order %s", number(k.Ohm), strconv.FormatFloat(k.Order, 'f', 1, 64))
-			if who := k.Words(); who != "" && x.width(x.st.Small, words+who) < 0.6*(x.area.Max.X-x.area.Min.X) {
-				words += ", " + who
-			}
-			if place, ok := x.room(k, words, taken, b, a); ok {
-				taken = append(taken, place)
-				x.write(place.Min.X, (place.Min.Y+place.Max.Y)/2, left, x.st.Small, ink, words)
+			if x.peak(k, ink, &taken, curves) {
 				named++
 			}
 		}
 	}
+}
+
+// peak names one peak in the fullest wording for which there is room.
+func (x *axes) peak(k study.Peak, ink color.Color, taken *[]vg.Rectangle, curves [2]curve) bool {
+	order := "order " + strconv.FormatFloat(k.Order, 'f', 1, 64)
+	ohm := number(k.Ohm) + " Ω"
+	wordings := [][]string{{ohm + " at " + order}, {ohm, order}, {order}}
+	if who := k.Words(); who != "" {
+		wordings = append([][]string{{ohm + " at " + order + ", " + who}}, wordings...)
+	}
+	size := x.st.Small
+	for _, lines := range wordings {
+		if place, ok := x.room(k, lines, *taken, curves); ok {
+			*taken = append(*taken, place)
+			for i, words := range lines {
+				x.patch(place.Min.X, place.Max.Y-(0.55+1.15*vg.Length(i))*size, size, ink, false, words)
+			}
+			return true
+		}
+	}
+	return false
 }
 
 func hasPeak(r *study.ScanResult, order float64) bool {
@@ -183,13 +252,17 @@ func hasPeak(r *study.ScanResult, order float64) bool {
 
 // room finds a place for a peak's words near its top that no curve and no other
 // words cross.
-func (x *axes) room(k study.Peak, words string, taken []vg.Rectangle, scans ...*study.ScanResult) (vg.Rectangle, bool) {
+func (x *axes) room(k study.Peak, lines []string, taken []vg.Rectangle, curves [2]curve) (vg.Rectangle, bool) {
 	size := x.st.Small
-	w := x.width(size, words)
+	w, h := vg.Length(0), (1.1+1.15*vg.Length(len(lines)-1))*size
+	for _, words := range lines {
+		w = max(w, x.width(size, words))
+	}
 	top := vg.Point{X: x.x(k.Order), Y: x.y(k.Ohm)}
 	for _, up := range []vg.Length{0.2, 0.9, 1.7, 2.6, -0.6} {
 		for _, from := range []vg.Length{top.X + 0.6*size, top.X - 0.6*size - w, top.X - w/2} {
-			place := rect(from, top.Y+(up-0.55)*size, from+w, top.Y+(up+0.55)*size)
+			foot := top.Y + (up-0.55)*size
+			place := rect(from, foot, from+w, foot+h)
 			if place.Min.X < x.area.Min.X || place.Max.X > x.area.Max.X || place.Max.Y > x.area.Max.Y+0.4*size {
 				continue
 			}
@@ -197,8 +270,8 @@ func (x *axes) room(k study.Peak, words string, taken []vg.Rectangle, scans ...*
 			for _, t := range taken {
 				free = free && !meet(place, t)
 			}
-			for _, r := range scans {
-				free = free && (r == nil || !x.crosses(r, place))
+			for _, c := range curves {
+				free = free && !c.crosses(place)
 			}
 			if free {
 				return place, true
@@ -209,14 +282,10 @@ func (x *axes) room(k study.Peak, words string, taken []vg.Rectangle, scans ...*
 }
 
 // crosses reports whether a curve runs through a place.
-func (x *axes) crosses(r *study.ScanResult, place vg.Rectangle) bool {
-	for i := 1; i < len(r.Orders); i++ {
-		x0, x1 := x.x(r.Orders[i-1]), x.x(r.Orders[i])
-		if x1 < place.Min.X || x0 > place.Max.X {
-			continue
-		}
-		y0, y1 := x.y(cmplx.Abs(r.Z[i-1])), x.y(cmplx.Abs(r.Z[i]))
-		if max(y0, y1) >= place.Min.Y && min(y0, y1) <= place.Max.Y {
+func (c curve) crosses(place vg.Rectangle) bool {
+	i := sort.Search(len(c), func(i int) bool { return c[i].X >= place.Min.X })
+	for i = max(i, 1); i < len(c) && c[i-1].X <= place.Max.X; i++ {
+		if max(c[i-1].Y, c[i].Y) >= place.Min.Y && min(c[i-1].Y, c[i].Y) <= place.Max.Y {
 			return true
 		}
 	}

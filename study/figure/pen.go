@@ -50,14 +50,18 @@ func (p *pen) set(ts draw.TextStyle, x, y vg.Length, align draw.XAlignment, word
 		return
 	}
 	// figures stand on the middle of their own height, whatever the letters
-	x += vg.Length(align) * ts.Width(words)
+	x += vg.Length(align) * p.st.faces.width(ts, words)
 	ts.XAlign, ts.YAlign = draw.XLeft, draw.YBottom
 	p.c.SetColor(ts.Color)
 	p.c.FillString(p.st.faces.cache.Lookup(ts.Font, ts.Font.Size), vg.Point{X: x, Y: y - 0.36*ts.Font.Size}, words)
 }
 
 func (p *pen) width(size vg.Length, words string) vg.Length {
-	return p.st.text(size, p.st.Ink, false, false).Width(words)
+	return p.st.faces.width(p.st.text(size, p.st.Ink, false, false), words)
+}
+
+func (p *pen) widthBold(size vg.Length, words string) vg.Length {
+	return p.st.faces.width(p.st.text(size, p.st.Ink, true, false), words)
 }
 
 // fit shortens a text to a width, with an ellipsis.
@@ -70,6 +74,19 @@ func (p *pen) fit(size, width vg.Length, words string) string {
 		r = r[:len(r)-1]
 	}
 	return strings.TrimRight(string(r), " ") + "…"
+}
+
+// fitTail shortens the first of two words to a width that both share, so that
+// the second stays whole.
+func (p *pen) fitTail(size, width vg.Length, words, tail string) string {
+	if whole := words + "  " + tail; p.width(size, whole) <= width {
+		return whole
+	}
+	room := width - p.width(size, "  "+tail)
+	if room < 3*size {
+		return p.fit(size, width, words+"  "+tail)
+	}
+	return p.fit(size, room, words) + "  " + tail
 }
 
 func (p *pen) stroke(width vg.Length, ink color.Color, dash []vg.Length, points ...vg.Point) {
@@ -186,7 +203,7 @@ func plain(v float64) string { return strconv.FormatFloat(v, 'g', 6, 64) }
 // do not cross it.
 func (p *pen) patch(x, y vg.Length, size vg.Length, ink color.Color, bold bool, words string) {
 	ts := p.st.text(size, ink, bold, false)
-	p.fill(rect(x-1, y-0.55*size, x+ts.Width(words)+1, y+0.55*size), p.st.Ground)
+	p.fill(rect(x-1, y-0.55*size, x+p.st.faces.width(ts, words)+1, y+0.55*size), p.st.Ground)
 	p.set(ts, x, y, left, words)
 }
 

@@ -3,7 +3,7 @@ package figure
 import (
 	"fmt"
 	"math"
-	"math/cmplx"
+	"slices"
 	"strconv"
 	"strings"
 
@@ -12,146 +12,7 @@ import (
 
 	"quietbus/study"
 	"quietbus/study/limits"
-	"quietbus/study/phasor"
 )
-
-// Selection names what a figure shows: the voltage of a bus, or the current
-// of an element at its end on the bus (its first end when Bus is empty).
-type Selection struct {
-	Bus     string
-	Element string
-}
-
-// Name returns the selection in words.
-func (s Selection) Name() string {
-	if s.Element == "" {
-		return "voltage at " + s.Bus
-	}
-	if s.Bus == "" {
-		return "current of " + s.Element
-	}
-	return "current of " + s.Element + " at " + s.Bus
-}
-
-func (s Selection) key() string {
-	parts := []string{"bus", s.Bus}
-	if s.Element != "" {
-		parts = []string{"element", s.Element, s.Bus}
-	}
-	return slug(strings.Join(parts, " "))
-}
-
-func slug(text string) string {
-	var b strings.Builder
-	for _, r := range strings.ToLower(text) {
-		switch {
-		case r >= 'a' && r <= 'z', r >= '0' && r <= '9':
-			b.WriteRune(r)
-		case !strings.HasSuffix(b.String(), "-"):
-			b.WriteByte('-')
-		}
-	}
-	return strings.Trim(b.String(), "-")
-}
-
-// phases returns the selected spectra; false when the outcome does not hold
-// the selection or it carries nothing.
-func (s Selection) phases(o *study.Outcome) ([3]phasor.Spectrum, bool) {
-	var none [3]phasor.Spectrum
-	if o == nil {
-		return none, false
-	}
-	if s.Element == "" {
-		b := o.Bus(s.Bus)
-		if b == nil || !b.Live {
-			return none, false
-		}
-		return b.Phase, true
-	}
-	e := o.Element(s.Element)
-	if e == nil || len(e.Ends) == 0 {
-		return none, false
-	}
-	for _, end := range e.Ends {
-		if end.Bus == s.Bus {
-			return end.Phase, true
-		}
-	}
-	return e.Ends[0].Phase, true
-}
-
-// series is what one outcome shows: the worst phase by order, in the unit of
-// the axis.
-type series struct {
-	ok    bool
-	value []float64 // by order, 0 and 1 unused
-	thd   float64   // per cent
-	first float64   // fundamental, V line to line or A
-}
-
-// read takes the worst phase at each order: voltages in per cent of the
-// phase's own fundamental, currents in A or, with a demand current, in per
-// cent of it.
-func (s Selection) read(o *study.Outcome, demand float64) series {
-	phase, ok := s.phases(o)
-	out := series{ok: ok}
-	if !ok {
-		return out
-	}
-	out.value = make([]float64, len(phase[0]))
-	for _, p := range phase {
-		base := cmplx.Abs(p.At(1))
-		out.first = math.Max(out.first, base)
-		if base > 0 {
-			out.thd = math.Max(out.thd, 100*phasor.THD(p))
-		}
-		switch {
-		case s.Element == "" && base == 0:
-			continue
-		case s.Element == "":
-			base = base / 100
-		case demand > 0:
-			base = demand / 100
-		default:
-			base = 1
-		}
-		for h := 2; h < len(p); h++ {
-			out.value[h] = math.Max(out.value[h], cmplx.Abs(p[h])/base)
-		}
-	}
-	return out
-}
-
-// rows returns the limit rows that belong to the selection, by order, with the
-// name of their set and the maximum demand current they refer to.
-func (s Selection) rows(o *study.Outcome) (rows map[int]limits.Row, title string, demand float64) {
-	if o == nil {
-		return nil, "", 0
-	}
-	for i := range o.Points {
-		p := &o.Points[i]
-		if p.Bus != s.Bus {
-			continue
-		}
-		quantity := "voltage"
-		if s.Element != "" {
-			quantity = "current"
-			if i >= len(o.Study.Assessments) || o.Study.Assessments[i].Current != s.Element {
-				continue
-			}
-		}
-		rows = map[int]limits.Row{}
-		for _, r := range p.Rows {
-			if r.Quantity == quantity && r.Index == "" {
-				rows[r.Order] = r
-			}
-		}
-		if len(rows) > 0 {
-			return rows, p.SetTitle, p.ILA
-		}
-	}
-	return nil, "", 0
-}
 
 // Spectrum shows a bus's voltage or an element's current by order, before
 // beside after, with the limits that apply. before may be nil.
@@ -170,22 +31,44 @@ func Spectrum(before, after *study.Outcome, sel Selection) *Figure {
 }
 
 func spectrumCaption(sel Selection, b, a series, set string, demand float64) string {
-	what := "Worst phase at each order, in per cent of the fundamental."
-	if sel.Element != "" {
-		what = "Worst phase at each order, in ampere."
-		if demand > 0 {
-			what = fmt.Sprintf("Worst phase at each order, in per cent of the maximum demand current of %s A.", number(demand))
-		}
+	what := "Worst phase at each order, "
+	if sel.phase() >= 0 {
+		what = "Phase " + sel.Phase + ", "
+	}
+	switch {
+	case sel.Element == "":
+		what += "in per cent of the fundamental."
+	case demand > 0:
+		what += fmt.Sprintf("in per cent of the maximum demand current of %s A.", number(demand))
+	default:
+		what += "in ampere."
 	}
 	if b.ok && a.ok {
 		what += fmt.Sprintf(" THD %s %% before, %s %% after.", number(b.thd), number(a.thd))
+		if demand > 0 {
+			what += fmt.Sprintf(" TDD %s %% before, %s %% after.", number(b.tdd), number(a.tdd))
+		}
 	} else if a.ok {
 		what += fmt.Sprintf(" THD %s %%.", number(a.thd))
+		if demand > 0 {
+			what += fmt.Sprintf(" TDD %s %%.", number(a.tdd))
+		}
 	}
 	if set != "" {
 		what += " Limits: " + set + "."
 	}
 	return what
+}
+
+// spectrum is one figure of this kind while it is drawn.
+type spectrum struct {
+	*axes
+	b, a    series
+	rows    map[int]limits.Row
+	carried []int
+	slot    vg.Length      // from order to order
+	bar     vg.Length      // width of one
+	taken   []vg.Rectangle // where words stand
 }
 
 func drawSpectrum(p *pen, sel Selection, b, a series, rows map[int]limits.Row, set string, demand float64) []Hot {
@@ -200,52 +83,62 @@ func drawSpectrum(p *pen, sel Selection, b, a series, rows map[int]limits.Row, s
 		}
 	}
 	carried, top, last := carrying(b, a, rows)
-	x := p.open("", unit, "harmonic order")
-	thd := thdWords(b, a)
-	x.key(b.ok, a.ok, thd)
+	x := &spectrum{axes: p.open(unit, "order"), b: b, a: a, rows: rows, carried: carried}
+	x.key(b.ok, a.ok, distortionWords(b, a, demand)...)
 	x.x0, x.x1 = 1.2, float64(last)+0.8
-	x.scaleY(top*1.12, false)
-	slot := (x.area.Max.X - x.area.Min.X) / vg.Length(x.x1-x.x0)
-	bar := min(slot*0.36, 9)
+	x.scaleY(top*1.14, false)
+	x.slot = (x.area.Max.X - x.area.Min.X) / vg.Length(x.x1-x.x0)
+	x.bar = min(0.42*x.slot*vg.Length(leastGap(carried)), 1.4*p.st.Head)
 	for _, h := range carried {
-		x.bars(h, bar, b, a, rows)
+		x.bars(h)
 	}
-	x.limits(rows, carried, last, set, b, a)
+	steps := x.limits(last)
 	x.base(0)
 	x.orderLabels(carried)
+	x.overs()
+	x.name(steps, set)
+	if top == 0 {
+		x.write((x.area.Min.X+x.area.Max.X)/2, (x.area.Min.Y+x.area.Max.Y)/2, centre, p.st.Body, p.st.Muted, "No distortion: nothing above order 1.")
+	}
 	for _, h := range carried {
-		x.hot(rect(x.x(float64(h))-max(slot, 8)/2, x.area.Min.Y, x.x(float64(h))+max(slot, 8)/2, x.area.Max.Y), "value", strconv.Itoa(h), readout(h, unit, b, a, rows))
+		at, half := x.x(float64(h)), max(x.bar, x.slot/2)
+		x.hot(rect(max(at-half, x.area.Min.X), x.area.Min.Y, min(at+half, x.area.Max.X), x.area.Max.Y), "value", strconv.Itoa(h), readout(h, unit, b, a, rows))
 	}
 	return p.hots
 }
 
-func thdWords(b, a series) (out [2]string) {
-	if b.ok {
-		out[0] = "THD " + number(b.thd) + " %"
+// distortionWords states THD (TDD where a demand current is known) before and
+// after, in full and in short.
+func distortionWords(b, a series, demand float64) [][2]string {
+	name, was, now := "THD", number(b.thd), number(a.thd)
+	if demand > 0 {
+		name, was, now = "TDD", number(b.tdd), number(a.tdd)
 	}
-	if a.ok {
-		out[1] = "THD " + number(a.thd) + " %"
+	if !a.ok {
+		now = was
 	}
-	return out
+	if !b.ok || !a.ok {
+		return [][2]string{{"", name + " " + now + " %"}}
+	}
+	return [][2]string{
+		{"before, " + name + " " + was + " %", "after, " + name + " " + now + " %"},
+		{name + " before " + was + " %", "after " + now + " %"},
+		{name + " before " + was, "after " + now + " %"},
+	}
 }
 
 // carrying returns the orders that are worth a bar, the top of the scale and
 // the last order shown.
 func carrying(b, a series, rows map[int]limits.Row) (orders []int, top float64, last int) {
-	size := func(s series, h int) float64 {
-		if h < len(s.value) {
-			return s.value[h]
-		}
-		return 0
-	}
 	n := max(len(b.value), len(a.value))
 	for h := 2; h < n; h++ {
-		top = math.Max(top, math.Max(size(b, h), size(a, h)))
+		top = math.Max(top, math.Max(b.at(h), a.at(h)))
 	}
+	least := 0.004 * top
 	for h := 2; h < n; h++ {
-		v := math.Max(size(b, h), size(a, h))
+		v := math.Max(b.at(h), a.at(h))
 		r, limited := rows[h]
-		if v > 0.004*top && v > 0 || limited && v > 0.1*r.Limit {
+		if v > 0 && (v > least || limited && v > 0.1*r.Limit) {
 			orders = append(orders, h)
 			last = h
 			if limited && r.Limit < 3*math.Max(v, 0.25*top) {
@@ -256,118 +149,210 @@ func carrying(b, a series, rows map[int]limits.Row) (orders []int, top float64, 
 	return orders, top, max(last, 13)
 }
 
-func (x *axes) bars(h int, bar vg.Length, b, a series, rows map[int]limits.Row) {
+// leastGap returns the smallest distance between two neighbours, at most 2.
+func leastGap(orders []int) int {
+	for i := 1; i < len(orders); i++ {
+		if orders[i]-orders[i-1] == 1 {
+			return 1
+		}
+	}
+	return 2
+}
+
+// place returns the bar of an order in one of the two outcomes.
+func (x *spectrum) place(h, which int) (r vg.Rectangle, v float64) {
+	s := [2]series{x.b, x.a}[which]
+	v = s.at(h)
 	at := x.x(float64(h))
-	for i, s := range []series{b, a} {
-		if !s.ok || h >= len(s.value) || s.value[h] == 0 {
+	lo, hi := at-x.bar, at
+	switch {
+	case !x.b.ok || !x.a.ok:
+		lo, hi = at-x.bar/2, at+x.bar/2
+	case which == 1:
+		lo, hi = at, at+x.bar
+	}
+	air := min(0.4, 0.1*x.bar)
+	return rect(lo+air, x.y(0), hi-air, x.y(v)), v
+}
+
+func (x *spectrum) bars(h int) {
+	limit, limited := x.rows[h]
+	for which, s := range []series{x.b, x.a} {
+		r, v := x.place(h, which)
+		if !s.ok || v == 0 {
 			continue
 		}
-		lo, hi := at-bar, at
-		if i == 1 {
-			lo, hi = at, at+bar
-		}
-		if !b.ok || !a.ok {
-			lo, hi = at-bar/2, at+bar/2
-		}
-		v := s.value[h]
-		r := rect(lo+0.4, x.y(0), hi-0.4, x.y(v))
-		limit, limited := rows[h]
 		over := limited && v > limit.Limit
-		body := r
-		if over {
-			body.Max.Y = x.y(limit.Limit)
-		}
-		if i == 0 {
+		if which == 0 {
 			x.box(r, x.st.Line, x.st.Before, nil)
 		} else {
+			body := r
+			if over {
+				body.Max.Y = x.y(limit.Limit)
+			}
 			x.fill(body, x.st.After)
 		}
 		if over {
-			x.hatch(rect(r.Min.X, body.Max.Y, r.Max.X, r.Max.Y), x.st.Over)
-			if i == 1 || !a.ok {
-				x.write(at, r.Max.Y+x.st.Small*0.8, centre, x.st.Small, x.st.Over, fmt.Sprintf("over %.2f×", v/limit.Limit))
+			x.hatch(rect(r.Min.X, x.y(limit.Limit), r.Max.X, r.Max.Y), x.st.Over)
+		}
+	}
+}
+
+// overs says at each bar that is over its limit how much, those after first and
+// the worst first, as far as words find room beside the bars and each other.
+func (x *spectrum) overs() {
+	type over struct {
+		r     vg.Rectangle
+		times float64
+		which int
+	}
+	var list []over
+	for _, h := range x.carried {
+		limit, limited := x.rows[h]
+		for which, s := range []series{x.b, x.a} {
+			if r, v := x.place(h, which); s.ok && limited && v > limit.Limit {
+				times := math.Inf(1)
+				if limit.Limit > 0 {
+					times = v / limit.Limit
+				}
+				list = append(list, over{r, times, which})
+			}
+		}
+	}
+	slices.SortStableFunc(list, func(a, b over) int {
+		if a.which != b.which {
+			return b.which - a.which
+		}
+		return int(math.Copysign(1, b.times-a.times))
+	})
+	size := x.st.Small
+	for _, o := range list {
+		ink := x.st.Over
+		if o.which == 0 {
+			ink = x.st.Muted
+		}
+		for _, words := range []string{"over " + times(o.times), times(o.times)} {
+			w := x.width(size, words)
+			middle := (o.r.Min.X + o.r.Max.X) / 2
+			found := false
+			for _, from := range []vg.Length{middle - w/2, o.r.Min.X - w - 0.3*size, o.r.Max.X + 0.3*size} {
+				y := o.r.Max.Y + 0.85*size
+				if from != middle-w/2 { // beside the bar's top
+					y = o.r.Max.Y - 0.5*size
+				}
+				place := rect(from, y-0.5*size, from+w, y+0.5*size)
+				if x.free(place, true) {
+					x.taken = append(x.taken, place)
+					x.patch(from, y, size, ink, false, words)
+					found = true
+					break
+				}
+			}
+			if found {
+				break
 			}
 		}
 	}
 }
 
-// limits draws the limit of each order as a step, joined where neighbours are
-// equal, and writes the set's name on it.
-func (x *axes) limits(rows map[int]limits.Row, carried []int, last int, set string, b, a series) {
-	if len(rows) == 0 {
-		return
+// times words a multiple of a limit; a limit of zero has none.
+func times(v float64) string {
+	if math.IsInf(v, 0) {
+		return "a limit of 0"
 	}
-	uniform := true
-	for _, h := range carried {
-		for _, g := range carried {
-			if rows[h].Limit != rows[g].Limit {
-				uniform = false
+	return number(v) + "×"
+}
+
+// free reports whether words may stand at a place: inside the area, on no other
+// words and on no bar.
+func (x *spectrum) free(place vg.Rectangle, inside bool) bool {
+	if place.Min.X < x.area.Min.X || place.Max.X > x.area.Max.X || inside && place.Max.Y > x.area.Max.Y+0.3*x.st.Small {
+		return false
+	}
+	for _, t := range x.taken {
+		if meet(place, t) {
+			return false
+		}
+	}
+	for _, h := range x.carried {
+		for which, s := range []series{x.b, x.a} {
+			if r, _ := x.place(h, which); s.ok && meet(place, r) {
+				return false
 			}
 		}
 	}
+	return true
+}
+
+// limits draws the limit of each order as a step, over all orders where they
+// are equal, and returns the steps.
+func (x *spectrum) limits(last int) (steps []vg.Rectangle) {
+	uniform := true
+	for _, h := range x.carried {
+		uniform = uniform && x.rows[h].Limit == x.rows[x.carried[0]].Limit
+	}
+	half := max(x.slot/2, x.bar+1)
 	var path vg.Path
-	var steps []vg.Rectangle
 	for h := 2; h <= last; h++ {
-		r, ok := rows[h]
-		if !ok || r.Limit > x.y1 || (!uniform && !hasOrder(carried, h)) {
+		r, ok := x.rows[h]
+		if !ok || r.Limit > x.y1 {
 			continue
 		}
-		y := x.y(r.Limit)
-		steps = append(steps, rect(x.x(float64(h)-0.5), y, x.x(float64(h)+0.5), y))
+		if uniform && len(x.carried) > 0 && r.Limit != x.rows[x.carried[0]].Limit || !uniform && !slices.Contains(x.carried, h) {
+			continue
+		}
+		y, at := x.y(r.Limit), x.x(float64(h))
+		steps = append(steps, rect(max(at-half, x.area.Min.X), y, min(at+half, x.area.Max.X), y))
 		path.Move(steps[len(steps)-1].Min)
 		path.Line(steps[len(steps)-1].Max)
 	}
-	if len(steps) == 0 {
-		return
+	if len(steps) > 0 {
+		x.strokePath(x.st.Line*1.3, x.st.Limit, nil, path)
 	}
-	x.strokePath(x.st.Line*1.3, x.st.Limit, nil, path)
-	at := x.labelPlace(steps, carried, set, b, a)
-	x.write(at.X, at.Y, left, x.st.Small, x.st.Limit, set)
+	return steps
 }
 
-// labelPlace finds room for the set's name on one of the limit's steps: above
-// it, from the last step to the first, where no bar and no other step is in the
-// way; above everything at the right when there is none.
-func (x *axes) labelPlace(steps []vg.Rectangle, carried []int, set string, b, a series) vg.Point {
+// name writes the name of the limits on one of their steps: above it, from the
+// last step to the first, where nothing is in the way; else at the top right,
+// behind a piece of the line.
+func (x *spectrum) name(steps []vg.Rectangle, set string) {
 	size := x.st.Small
+	switch {
+	case set == "" || len(x.carried) == 0:
+		return
+	case len(steps) == 0:
+		set += ": limits above this scale"
+	}
+	set = x.fit(size, 0.8*(x.area.Max.X-x.area.Min.X), set)
 	w := x.width(size, set)
 	for i := len(steps) - 1; i >= 0; i-- {
 		for _, from := range []vg.Length{steps[i].Min.X, steps[i].Max.X - w} {
 			place := rect(from, steps[i].Min.Y+0.25*size, from+w, steps[i].Min.Y+1.35*size)
-			if place.Max.X > x.area.Max.X || place.Min.X < x.area.Min.X || place.Max.Y > x.area.Max.Y {
-				continue
-			}
-			free := true
+			free := x.free(place, true)
 			for _, s := range steps {
 				free = free && !meet(place, s)
 			}
-			for _, h := range carried {
-				for _, s := range []series{b, a} {
-					if s.ok && h < len(s.value) {
-						at := x.x(float64(h))
-						free = free && !meet(place, rect(at-10, x.y(0), at+10, x.y(s.value[h])+size))
-					}
-				}
-			}
 			if free {
-				return vg.Point{X: from, Y: steps[i].Min.Y + 0.8*size}
+				x.patch(from, steps[i].Min.Y+0.85*size, size, x.st.Limit, false, set)
+				return
 			}
 		}
 	}
-	return vg.Point{X: x.area.Max.X - w, Y: x.area.Max.Y - 0.8*size}
+	y := x.area.Max.Y - 0.8*size
+	for range 4 { // lower, while words are in the way
+		if x.free(rect(x.area.Max.X-w-2.4*size, y-0.5*size, x.area.Max.X, y+0.5*size), true) {
+			break
+		}
+		y -= 0.6 * size
+	}
+	x.patch(x.area.Max.X-w, y, size, x.st.Limit, false, set)
+	if len(steps) > 0 {
+		x.stroke(x.st.Line*1.3, x.st.Limit, nil, vg.Point{X: x.area.Max.X - w - 2.2*size, Y: y}, vg.Point{X: x.area.Max.X - w - 0.6*size, Y: y})
+	}
 }
 
 func meet(a, b vg.Rectangle) bool {
 	return a.Min.X < b.Max.X && b.Min.X < a.Max.X && a.Min.Y <= b.Max.Y && b.Min.Y <= a.Max.Y
-}
-
-func hasOrder(list []int, h int) bool {
-	for _, v := range list {
-		if v == h {
-			return true
-		}
-	}
-	return false
 }
 
 // orderLabels labels the carrying orders, leaving out those that would touch.

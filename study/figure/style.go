@@ -32,7 +32,7 @@ type Figure struct {
 type Hot struct {
 	Rect vg.Rectangle
 	ID   string // what it stands for, such as an item's name
-	Role string // "value", "bus", "item", "measure", "switch"
+	Role string // "value", "bus", "item", "measure", "switch", "place"
 	Text string // read-out: lines, each of cells parted by tabs
 }
 
@@ -45,16 +45,44 @@ type Style struct {
 	faces                    *faces
 }
 
+// faces are the type family, loaded once, and the widths of texts that were
+// measured: figures are redrawn at each flip with mostly the same words.
 type faces struct {
-	mu    sync.Mutex
 	cache *font.Cache
 	plain text.Plain
+
+	mu     sync.Mutex
+	widths map[measured]vg.Length
 }
+
+type measured struct {
+	size  vg.Length
+	bold  bool
+	words string
+}
+
+// mostWidths bounds the memory for measured texts.
+const mostWidths = 4096
 
 var shared = sync.OnceValue(func() *faces {
 	cache := font.NewCache(liberation.Collection())
-	return &faces{cache: cache, plain: text.Plain{Fonts: cache}}
+	return &faces{cache: cache, plain: text.Plain{Fonts: cache}, widths: map[measured]vg.Length{}}
 })
+
+func (f *faces) width(ts draw.TextStyle, words string) vg.Length {
+	key := measured{ts.Font.Size, ts.Font.Weight == xfont.WeightBold, words}
+	f.mu.Lock()
+	defer f.mu.Unlock()
+	w, ok := f.widths[key]
+	if !ok {
+		if len(f.widths) >= mostWidths {
+			clear(f.widths)
+		}
+		w = ts.Width(words)
+		f.widths[key] = w
+	}
+	return w
+}
 
 func style(p assets.Palette) *Style {
 	return &Style{Palette: p, Small: 7.5, Body: 8.5, Head: 10, Title: 12, Thin: 0.4, Line: 0.9, Bold: 1.6, faces: shared()}

@@ -14,36 +14,50 @@ import (
 // samples of one period in a waveform figure.
 const samples = 256
 
-// Waveform shows one period of phase a (or of the first phase that carries
-// anything), synthesised from the spectrum, before beside after.
+// waveform is what one such figure shows.
+type waveform struct {
+	curves  [2][]float64 // one period, before and after; nil where there is none
+	unit    string       // "V" or "A"
+	title   string       // of the y axis, after the unit
+	period  float64      // ms
+	periods int
+}
+
+// Waveform shows a period (or two) of one phase, synthesised from the spectrum,
+// before beside after.
 func Waveform(before, after *study.Outcome, sel Selection) *Figure {
 	f := &Figure{Key: "waveform-" + sel.key(), Title: "Waveform of the " + sel.Name(), Size: vg.Point{X: 480, Y: 220}}
-	var curves [2][]float64
-	phase, hz := 0, 50.0
+	phase, hz := max(sel.phase(), 0), 50.0
 	for _, o := range []*study.Outcome{before, after} {
 		if o != nil {
 			hz = o.Study.FrequencyHz
-			if p, ok := sel.phases(o); ok {
+			if p, ok := sel.phases(o); ok && sel.phase() < 0 {
 				phase = firstCarrying(p)
 			}
 		}
 	}
+	w := &waveform{period: 1000 / hz, periods: min(max(sel.Periods, 1), 2)}
 	crest := ""
 	for i, o := range []*study.Outcome{before, after} {
-		if p, ok := sel.phases(o); ok {
-			curves[i] = phasor.Synthesize(p[phase], samples, nil)
-			crest += fmt.Sprintf(" Crest factor %.3g %s.", phasor.Crest(p[phase]), [2]string{"before", "after"}[i])
+		p, ok := sel.phases(o)
+		if !ok {
+			continue
+		}
+		w.curves[i] = phasor.Synthesize(p[phase], samples, nil)
+		if c := phasor.Crest(p[phase]); c > 0 {
+			crest += fmt.Sprintf(" Crest factor %s %s.", number(c), [2]string{"before", "after"}[i])
 		}
 	}
-	name := [3]string{"a", "b", "c"}[phase]
-	f.Caption = fmt.Sprintf("One period of phase %s, synthesised from the spectrum.%s", name, crest)
-	unit := "V, line to neutral, phase " + name
+	w.unit, w.title = "V", ", line to neutral, phase "+phaseNames[phase]
 	if sel.Element != "" {
-		unit = "A, phase " + name
+		w.unit, w.title = "A", ", phase "+phaseNames[phase]
 	}
-	f.Draw = func(c draw.Canvas, st *Style) []Hot {
-		return drawWaveform(newPen(c, st), sel, curves, unit, 1000/hz)
+	many := "One period"
+	if w.periods == 2 {
+		many = "Two periods"
 	}
+	f.Caption = fmt.Sprintf("%s of phase %s, synthesised from the spectrum.%s", many, phaseNames[phase], crest)
+	f.Draw = func(c draw.Canvas, st *Style) []Hot { return w.draw(newPen(c, st), sel) }
 	return f
 }
 
@@ -56,32 +70,39 @@ func firstCarrying(p [3]phasor.Spectrum) int {
 	return 0
 }
 
-func drawWaveform(p *pen, sel Selection, curves [2][]float64, unit string, period float64) []Hot {
-	if curves[0] == nil && curves[1] == nil {
+func (w *waveform) draw(p *pen, sel Selection) []Hot {
+	if w.curves[0] == nil && w.curves[1] == nil {
 		return p.empty("Nothing to show for the " + sel.Name() + ".\nIt has no supply or does not stand with these measures.")
 	}
 	top := 0.0
-	for _, c := range curves {
+	for _, c := range w.curves {
 		for _, v := range c {
 			top = math.Max(top, math.Abs(v))
 		}
 	}
-	x := p.open("", unit, "ms")
-	x.key(curves[0] != nil, curves[1] != nil, [2]string{})
-	x.x0, x.x1 = 0, period
-	x.scaleY(top, true)
+	unit, scale := w.unit, 1.0
+	if top >= 5000 {
+		unit, scale = "k"+unit, 1000
+	}
+	span := w.period * float64(w.periods)
+	x := p.open(unit+w.title, "time, ms")
+	x.key(w.curves[0] != nil, w.curves[1] != nil)
+	x.x0, x.x1 = 0, span
+	x.scaleY(top/scale, true)
 	x.base(0)
-	step := niceStep(period / 5)
-	for i := 0.0; i*step <= period*1.0001; i++ {
+	step := niceStep(span / 5)
+	for i := 0.0; i*step <= span*1.0001; i++ {
 		x.labelX(i*step, tick(i*step, step))
 	}
-	for i, c := range curves {
+	for _, i := range []int{1, 0} { // before, thin, over after, bold: both are seen where they agree
+		c := w.curves[i]
 		if c == nil {
 			continue
 		}
-		var path vg.Path
-		for k := 0; k <= len(c); k++ {
-			q := vg.Point{X: x.x(period * float64(k) / float64(len(c))), Y: x.y(c[k%len(c)])}
+		n := len(c) * w.periods
+		path := make(vg.Path, 0, n+1)
+		for k := 0; k <= n; k++ {
+			q := vg.Point{X: x.x(span * float64(k) / float64(n)), Y: x.y(c[k%len(c)] / scale)}
 			if k == 0 {
 				path.Move(q)
 			} else {
@@ -94,17 +115,23 @@ func drawWaveform(p *pen, sel Selection, curves [2][]float64, unit string, perio
 			x.strokePath(x.st.Bold, x.st.After, nil, path)
 		}
 	}
-	const parts = 32
+	w.readouts(x)
+	return p.hots
+}
+
+// readouts lays strips over the area that say the values in their middle.
+func (w *waveform) readouts(x *axes) {
+	parts := 32 * w.periods
+	span := w.period * float64(w.periods)
 	for k := range parts {
-		t0, t1 := period*float64(k)/parts, period*float64(k+1)/parts
-		at := (2*k + 1) * samples / (2 * parts)
-		text := fmt.Sprintf("%s ms", number((t0+t1)/2))
-		for i, c := range curves {
+		t0, t1 := span*float64(k)/float64(parts), span*float64(k+1)/float64(parts)
+		text := number((t0+t1)/2) + " ms"
+		for i, c := range w.curves {
 			if c != nil {
-				text += "\n" + [2]string{"before", "after"}[i] + "\t" + number(c[at]) + " " + unit[:1]
+				at := (2*k + 1) * samples * w.periods / (2 * parts) % samples
+				text += "\n" + [2]string{"before", "after"}[i] + "\t" + number(c[at]) + " " + w.unit
 			}
 		}
 		x.hot(rect(x.x(t0), x.area.Min.Y, x.x(t1), x.area.Max.Y), "value", fmt.Sprint("t", k), text)
 	}
-	return p.hots
 }
