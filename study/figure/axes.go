@@ -52,15 +52,23 @@ func (a *axes) scaleY(top float64, symmetric bool) {
 	if top <= 0 || math.IsNaN(top) || math.IsInf(top, 0) {
 		top = 1
 	}
-	lines := 4.0
+	most := 5 // lines above 0, as far as their labels have room
 	if symmetric {
-		lines = 2
+		most = 3
 	}
-	if room := float64((a.area.Max.Y - a.area.Min.Y) / (1.8 * a.st.Small)); room < 2*lines {
-		lines = math.Max(1, lines/2)
+	room := float64(a.area.Max.Y-a.area.Min.Y) / float64(1.7*a.st.Small)
+	if symmetric {
+		room /= 2
 	}
-	step := niceStep(top / lines)
-	a.y1 = step * math.Ceil(top/step*1.0001)
+	most = max(1, min(most, int(room)))
+	step := 0.0
+	a.y1 = math.Inf(1)
+	for lines := 1; lines <= most; lines++ {
+		s := niceStep(top / float64(lines))
+		if y1 := s * math.Ceil(top/s*0.9999); y1 <= a.y1*1.0001 && y1/s <= float64(most)+0.5 {
+			step, a.y1 = s, y1
+		}
+	}
 	a.y0 = 0
 	if symmetric {
 		a.y0 = -a.y1

@@ -9,8 +9,8 @@ import (
 
 // A barRow is one quantity as share of what is allowed, before and after.
 type barRow struct {
-	point, what   string            // what bears, and which quantity of it
-	before, after float64           // 1 is what is allowed; NaN when there is none
+	point, what   string           // what bears, and which quantity of it
+	before, after float64          // 1 is what is allowed; NaN when there is none
 	detail        func() [2]string // before and after, in the quantity's own unit; for the read-out
 	rule          string
 }

@@ -68,6 +68,7 @@ type spectrum struct {
 	carried []int
 	slot    vg.Length      // from order to order
 	bar     vg.Length      // width of one
+	steps   []vg.Rectangle // of the limit's line
 	taken   []vg.Rectangle // where words stand
 }
 
@@ -92,11 +93,11 @@ func drawSpectrum(p *pen, sel Selection, b, a series, rows map[int]limits.Row, s
 	for _, h := range carried {
 		x.bars(h)
 	}
-	steps := x.limits(last)
+	x.limits(last)
 	x.base(0)
 	x.orderLabels(carried)
 	x.overs()
-	x.name(steps, set)
+	x.name(set)
 	if top == 0 {
 		x.write((x.area.Min.X+x.area.Max.X)/2, (x.area.Min.Y+x.area.Max.Y)/2, centre, p.st.Body, p.st.Muted, "No distortion: nothing above order 1.")
 	}
@@ -241,8 +242,8 @@ func (x *spectrum) overs() {
 					y = o.r.Max.Y - 0.5*size
 				}
 				place := rect(from, y-0.5*size, from+w, y+0.5*size)
-				if x.free(place, true) {
-					x.taken = append(x.taken, place)
+				if x.free(place) {
+					x.taken = append(x.taken, rect(place.Min.X-0.4*size, place.Min.Y, place.Max.X+0.4*size, place.Max.Y))
 					x.patch(from, y, size, ink, false, words)
 					found = true
 					break
@@ -264,14 +265,16 @@ func times(v float64) string {
 }
 
 // free reports whether words may stand at a place: inside the area, on no other
-// words and on no bar.
-func (x *spectrum) free(place vg.Rectangle, inside bool) bool {
-	if place.Min.X < x.area.Min.X || place.Max.X > x.area.Max.X || inside && place.Max.Y > x.area.Max.Y+0.3*x.st.Small {
+// words, on no bar and on no step of the limit.
+func (x *spectrum) free(place vg.Rectangle) bool {
+	if place.Min.X < x.area.Min.X-0.1 || place.Max.X > x.area.Max.X+0.1 || place.Max.Y > x.area.Max.Y+0.3*x.st.Small {
 		return false
 	}
-	for _, t := range x.taken {
-		if meet(place, t) {
-			return false
+	for _, list := range [][]vg.Rectangle{x.taken, x.steps} {
+		for _, t := range list {
+			if meet(place, t) {
+				return false
+			}
 		}
 	}
 	for _, h := range x.carried {
@@ -285,14 +288,13 @@ func (x *spectrum) free(place vg.Rectangle, inside bool) bool {
 }
 
 // limits draws the limit of each order as a step, over all orders where they
-// are equal, and returns the steps.
-func (x *spectrum) limits(last int) (steps []vg.Rectangle) {
+// are equal.
+func (x *spectrum) limits(last int) {
 	uniform := true
 	for _, h := range x.carried {
 		uniform = uniform && x.rows[h].Limit == x.rows[x.carried[0]].Limit
 	}
 	half := max(x.slot/2, x.bar+1)
-	var path vg.Path
 	for h := 2; h <= last; h++ {
 		r, ok := x.rows[h]
 		if !ok || r.Limit > x.y1 {
@@ -302,53 +304,69 @@ func (x *spectrum) limits(last int) (steps []vg.Rectangle) {
 			continue
 		}
 		y, at := x.y(r.Limit), x.x(float64(h))
-		steps = append(steps, rect(max(at-half, x.area.Min.X), y, min(at+half, x.area.Max.X), y))
-		path.Move(steps[len(steps)-1].Min)
-		path.Line(steps[len(steps)-1].Max)
+		step := rect(max(at-half, x.area.Min.X), y, min(at+half, x.area.Max.X), y)
+		if n := len(x.steps); n > 0 && x.steps[n-1].Min.Y == y && step.Min.X <= x.steps[n-1].Max.X+0.01 {
+			x.steps[n-1].Max.X = step.Max.X
+		} else {
+			x.steps = append(x.steps, step)
+		}
 	}
-	if len(steps) > 0 {
+	var path vg.Path
+	for _, s := range x.steps {
+		path.Move(s.Min)
+		path.Line(s.Max)
+	}
+	if len(path) > 0 {
 		x.strokePath(x.st.Line*1.3, x.st.Limit, nil, path)
 	}
-	return steps
 }
 
 // name writes the name of the limits on one of their steps: above it, from the
 // last step to the first, where nothing is in the way; else at the top right,
 // behind a piece of the line.
-func (x *spectrum) name(steps []vg.Rectangle, set string) {
+func (x *spectrum) name(set string) {
 	size := x.st.Small
 	switch {
 	case set == "" || len(x.carried) == 0:
 		return
-	case len(steps) == 0:
+	case len(x.steps) == 0:
 		set += ": limits above this scale"
 	}
 	set = x.fit(size, 0.8*(x.area.Max.X-x.area.Min.X), set)
 	w := x.width(size, set)
-	for i := len(steps) - 1; i >= 0; i-- {
-		for _, from := range []vg.Length{steps[i].Min.X, steps[i].Max.X - w} {
-			place := rect(from, steps[i].Min.Y+0.25*size, from+w, steps[i].Min.Y+1.35*size)
-			free := x.free(place, true)
-			for _, s := range steps {
-				free = free && !meet(place, s)
-			}
-			if free {
-				x.patch(from, steps[i].Min.Y+0.85*size, size, x.st.Limit, false, set)
+	for i := len(x.steps) - 1; i >= 0; i-- {
+		s := x.steps[i]
+		for _, from := range []vg.Length{s.Max.X - w, s.Min.X} {
+			if x.free(rect(from, s.Min.Y+0.1*size, from+w, s.Min.Y+1.4*size)) {
+				x.patch(from, s.Min.Y+0.9*size, size, x.st.Limit, false, set)
 				return
 			}
 		}
 	}
-	y := x.area.Max.Y - 0.8*size
-	for range 4 { // lower, while words are in the way
-		if x.free(rect(x.area.Max.X-w-2.4*size, y-0.5*size, x.area.Max.X, y+0.5*size), true) {
-			break
+	mark := 2.4 * size // a piece of the line before the name
+	if len(x.steps) == 0 {
+		mark = 0
+	}
+	at := vg.Point{X: x.area.Max.X - w, Y: x.area.Max.Y - 0.8*size}
+	if from, y, ok := x.clearing(w+mark, size); ok {
+		at = vg.Point{X: from + mark, Y: y}
+	}
+	x.patch(at.X, at.Y, size, x.st.Limit, false, set)
+	if mark > 0 {
+		x.stroke(x.st.Line*1.3, x.st.Limit, nil, vg.Point{X: at.X - 2.2*size, Y: at.Y}, vg.Point{X: at.X - 0.6*size, Y: at.Y})
+	}
+}
+
+// clearing finds room for words of a width in the area, from the top right.
+func (x *spectrum) clearing(w, size vg.Length) (from, y vg.Length, ok bool) {
+	for y = x.area.Max.Y - 0.8*size; y > x.area.Min.Y+size; y -= 0.7 * size {
+		for from = x.area.Max.X - w; from >= x.area.Min.X; from -= size {
+			if x.free(rect(from, y-0.6*size, from+w, y+0.6*size)) {
+				return from, y, true
+			}
 		}
-		y -= 0.6 * size
 	}
-	x.patch(x.area.Max.X-w, y, size, x.st.Limit, false, set)
-	if len(steps) > 0 {
-		x.stroke(x.st.Line*1.3, x.st.Limit, nil, vg.Point{X: x.area.Max.X - w - 2.2*size, Y: y}, vg.Point{X: x.area.Max.X - w - 0.6*size, Y: y})
-	}
+	return 0, 0, false
 }
 
 func meet(a, b vg.Rectangle) bool {
