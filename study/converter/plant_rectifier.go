@@ -81,6 +81,12 @@ func buildRectifier(n Nameplate, t Terminal, at []float64) *plant {
 			c.X[b][b] += r.leakX
 			c.R[b][b] += r.leakR
 		}
+		if n.Smoothing == ByChoke && n.Load == Resistive {
+			// with neither reactor nor choke the current would follow at once
+			for b := first; b < max(r.dc, first+1); b++ {
+				c.X[b][b] += inductanceFloor * n.loadOhm(p.links[r.link].watts)
+			}
+		}
 		for b := first; b <= r.dc; b++ {
 			c.R[b][b] += lossFloor * c.X[b][b]
 		}
@@ -98,13 +104,22 @@ func buildRectifier(n Nameplate, t Terminal, at []float64) *plant {
 	return p
 }
 
+// loadOhm is the load resistance of a link of so many watts.
+func (n Nameplate) loadOhm(watts float64) float64 {
+	if n.LoadOhm > 0 {
+		return n.LoadOhm
+	}
+	return n.idealDirect() * n.idealDirect() / watts
+}
+
 // valves returns the unit of one rectifier and appends its gates.
 func (p *plant) valves(n Nameplate, r rectifier, half bool) piecewise.Unit {
 	c := p.c
 	if half {
 		return piecewise.Valve{Branch: r.dc, Diode: true}
 	}
-	b := piecewise.Bridge{DC: r.dc, Choke: r.chokeX > 0 || n.Smoothing == ByChoke}
+	smoothed := n.Smoothing == ByChoke && (n.ChokeH > 0 || n.Load == Motor && n.ArmatureH > 0)
+	b := piecewise.Bridge{DC: r.dc, Choke: r.chokeX > 0 || smoothed}
 	for x := range r.legs {
 		b.AC = append(b.AC, r.dc-len(r.legs)+x)
 	}
@@ -162,9 +177,9 @@ func (p *plant) directSide(n Nameplate, i int, w float64, at []float64) {
 	if n.Load == FixedCurrent && n.DirectA > 0 {
 		amps = n.DirectA / float64(len(p.links))
 	}
-	ohm := n.LoadOhm
-	if n.Load == Resistive && ohm == 0 {
-		ohm = l.ideal * l.ideal / l.watts
+	ohm := 0.0
+	if n.Load == Resistive {
+		ohm = n.loadOhm(l.watts)
 	}
 	control := func(states []int, power bool, target, scale float64) *piecewise.Control {
 		ctl := &c.Controls[l.param]

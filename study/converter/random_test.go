@@ -2,6 +2,7 @@ package converter
 
 import (
 	"context"
+	"errors"
 	"math"
 	"math/cmplx"
 	"math/rand/v2"
@@ -145,5 +146,63 @@ func TestThousandRandomConverters(t *testing.T) {
 	}
 	if failed > 0 {
 		t.Errorf("%d of %d failed", failed, count)
+	}
+}
+
+// wild returns a converter whose values are anything but realistic.
+func wild(r *rand.Rand) (Nameplate, Terminal) {
+	n, t := random(r)
+	pick := func(low, high float64) float64 { return low * math.Exp(r.Float64()*math.Log(high/low)) }
+	stir := func(v *float64) {
+		switch r.IntN(8) {
+		case 0:
+			*v = 0
+		case 1, 2, 3:
+			*v *= pick(1e-3, 1e3)
+		}
+	}
+	for _, v := range []*float64{&n.PowerW, &n.ReactorH, &n.ReactorOhm, &n.ChokeH, &n.CapacitorF, &n.DropV, &n.ArmatureH, &n.ArmatureOhm, &t.SourceL, &t.SourceR} {
+		stir(v)
+	}
+	if r.IntN(3) == 0 {
+		n.FiringDeg = 180 * r.Float64()
+	}
+	n.Load = []LoadKind{ConstantPower, TightPower, Resistive, FixedCurrent, Motor}[r.IntN(5)]
+	n.Smoothing = []Smoothing{ByCapacitor, ByChoke, ""}[r.IntN(3)]
+	return n, t
+}
+
+// Whatever the values: a checked result or a named condition, never a number
+// that is none.
+func TestWildConverters(t *testing.T) {
+	r := rand.New(rand.NewPCG(5, 5))
+	solved := 0
+	for i := 0; i < 200; i++ {
+		n, term := wild(r)
+		if n.Kind == KindTwentyFourPulse {
+			continue // slow to search in vain
+		}
+		got, err := Solve(context.Background(), n, term, Options{Order: 25})
+		var named *ConditionError
+		if err != nil {
+			if !errors.As(err, &named) || named.Condition == FailedItsCheck {
+				t.Errorf("%d: %v\n%+v", i, err, n)
+			}
+			continue
+		}
+		solved++
+		for q := range got.Current {
+			for h, z := range got.Current[q] {
+				if cmplx.IsNaN(z) || cmplx.IsInf(z) {
+					t.Errorf("%d: order %d is %v", i, h, z)
+				}
+			}
+		}
+		if math.Abs(got.Balance.Error) > 1e-3 || got.Multiplier > 1.001 || got.LowestV < 0 {
+			t.Errorf("%d: balance %g, multiplier %g, lowest %g V", i, got.Balance.Error, got.Multiplier, got.LowestV)
+		}
+	}
+	if solved < 50 {
+		t.Errorf("only %d solved", solved)
 	}
 }

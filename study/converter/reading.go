@@ -31,6 +31,9 @@ func (p *plant) measure(r *Result, o *piecewise.Orbit) {
 			for _, x := range walk[v] {
 				low, high = math.Min(low, x), math.Max(high, x)
 			}
+			if r.RippleV == 0 || low < r.LowestV {
+				r.LowestV = low
+			}
 			r.RippleV = math.Max(r.RippleV, high-low)
 			r.CapacitorA = math.Max(r.CapacitorA, p.capacitorCurrent(l, o))
 		case l.param >= 0:
@@ -117,8 +120,12 @@ func (p *plant) balance(o *piecewise.Orbit, t Terminal) Balance {
 			b.LoadW -= d * o.Moments[nb+v][one+k]
 		}
 	}
-	size := math.Abs(b.InputW) + b.SourceW + b.ConverterW
-	if size > 0 {
+	// of the input, or of 2 % of the apparent power where hardly any power flows
+	var apparent float64
+	for q := range t.Voltage {
+		apparent += absolute(t.Voltage[q].At(1)) * absolute(o.Lines[q].At(1))
+	}
+	if size := math.Max(math.Abs(b.InputW)+b.SourceW+b.ConverterW, 0.02*apparent); size > 0 {
 		b.Error = (b.InputW - b.SourceW - b.ConverterW - b.LoadW) / size
 	}
 	return b

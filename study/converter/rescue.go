@@ -15,11 +15,14 @@ func (p *plant) judge(n Nameplate, r *Result, o *piecewise.Orbit) error {
 	if len(p.links) == 0 {
 		return nil
 	}
-	if r.DirectA < 1e-9*p.c.Amp {
+	if r.DirectA < 1e-6*p.c.Amp {
 		return condition(NoConduction, "", "check the firing angle and the voltage of the load", "the load's voltage is above what the supply offers at this firing angle, so no valve ever conducts")
 	}
 	if n.Smoothing == ByChoke && (r.Conduction == Overlapping || r.Overlap > 0.999) && r.DirectV < 0.02*n.idealDirect() {
 		return condition(FullOverlap, "", "raise the load's resistance or lower the reactance", "commutations run into each other until the valves short the supply: the current is limited by its reactance alone and the direct voltage is %.2g V", r.DirectV)
+	}
+	if r.LowestV < 0 {
+		return tooSmall(n)
 	}
 	for _, l := range p.links {
 		if l.capacitor >= 0 && l.param >= 0 && l.armature < 0 && o.Yield[l.param] < 0 {
@@ -36,6 +39,33 @@ func (p *plant) judge(n Nameplate, r *Result, o *piecewise.Orbit) error {
 		return condition(Unstable, "CapacitorF", "use a larger capacitor, more reactance or more damping", "line reactance and capacitor swing at half the pulse frequency, so large and small current pulses alternate")
 	}
 	return nil
+}
+
+// tooSmall names a capacitor that is empty before the next crest.
+func tooSmall(n Nameplate) error {
+	return condition(NoCapacitor, "CapacitorF", "use a larger capacitor", "%.3g uF cannot carry the load from one crest of the voltage to the next: it would be empty in between", 1e6*n.CapacitorF)
+}
+
+// holdsGap reports whether the capacitor's charge lasts for the gap between
+// crests: a sixth of a period for three phases, a half for one, all of it for
+// a single diode.
+func holdsGap(n Nameplate, t Terminal) bool {
+	gap := 1 / t.FrequencyHz
+	switch {
+	case n.Kind.threePhase():
+		gap /= 6
+	case n.Kind != KindHalfWave:
+		gap /= 2
+	}
+	watts, volts := n.PowerW, math.Sqrt2*n.volts()
+	c := n.CapacitorF
+	if n.Connection == ABCN {
+		watts /= 3
+	}
+	if n.SeparateLink {
+		watts /= float64(len(n.Sections))
+	}
+	return 0.5*c*volts*volts > 0.5*watts*gap
 }
 
 // alternates reports even orders where neither the supply nor the converter
@@ -78,6 +108,9 @@ func rescue(ctx context.Context, n Nameplate, t Terminal, o Options, cause error
 		return rescueChoke(ctx, n, t, o, cause)
 	case n.Load == FixedCurrent:
 		return nil, cause
+	}
+	if !holdsGap(n, t) && !n.Kind.threePhase() {
+		return nil, tooSmall(n)
 	}
 	volts, most, err := holding(ctx, n, t)
 	if err != nil {
@@ -262,7 +295,10 @@ func rescueChoke(ctx context.Context, n Nameplate, t Terminal, o Options, cause 
 		}
 		return nil, cause
 	}
-	if most > 0 && n.Load != FixedCurrent {
+	if most < 1e-6*n.PowerW && n.Load != FixedCurrent {
+		return nil, condition(WeakSupply, "FiringDeg", "fire earlier", "at a firing angle of %.4g degrees the rectifier can deliver no power to its load", n.FiringDeg)
+	}
+	if n.Load != FixedCurrent {
 		return nil, &ConditionError{
 			Condition: WeakSupply, Field: "PowerW", AvailableW: most,
 			Reason: "at this firing angle and reactance the rectifier can deliver " + power(most) + " at most, not " + power(n.PowerW),

@@ -150,7 +150,7 @@ func (s *State) named(err error) error {
 	case errors.Is(err, piecewise.ErrInconsistent):
 		return condition(NotSettled, "", "check the nameplate values; a small line reactor usually makes the case well defined", "the valves find no order in which to conduct")
 	case errors.Is(err, piecewise.ErrDiverged), errors.Is(err, piecewise.ErrNotPeriodic):
-		return condition(NotSettled, "", "check the nameplate values", "no periodic state was found: %v", err)
+		return condition(NotSettled, "", "check the nameplate values against each other", "the search for a periodic state ended without one (%v)", err)
 	}
 	return err
 }
@@ -172,10 +172,13 @@ func (s *State) read(o *piecewise.Orbit, t Terminal, order int) (*Result, error)
 			}
 		}
 	}
+	if err := p.judge(s.plate, r, o); err != nil {
+		return nil, err
+	}
 	if !(math.Abs(r.Balance.Error) < balanceTol) {
 		return nil, condition(FailedItsCheck, "", "report the case", "the energy balance misses %.3g %% of the input", 100*r.Balance.Error)
 	}
-	return r, p.judge(s.plate, r, o)
+	return r, nil
 }
 
 // highest returns the highest order of the voltages.

@@ -38,6 +38,9 @@
 // (the saltation matrix; Leine and Nijmeijer, Dynamics and Bifurcations of
 // Non-Smooth Mechanical Systems, Springer 2004; from memory).
 //
+// Where the supply allows, only half or a sixth of the period is stepped and
+// closed upon itself with the phases exchanged (Symmetry).
+//
 // The Fourier coefficients of the currents follow from the states at the
 // switching instants by partial integration, without sampling; so does the
 // linearisation, the response of a periodically time-varying linear system

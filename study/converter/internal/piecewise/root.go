@@ -47,7 +47,8 @@ func (e *engine) root(m *mode, w *watch, a float64, xi []float64, fa, b, fb floa
 	if fa <= settleTol*w.scale {
 		rose := false
 		step := b - a
-		for i := 0; i < 12; i++ {
+		fine := math.Min((b-a)/4096, 0.02/m.steps.norm)
+		for step > fine {
 			step /= 2
 			if f, _ := e.evaluate(m, w, base, xi, a+step); f > 0 && f > fa {
 				a, fa, rose = a+step, f, true
