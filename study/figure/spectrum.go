@@ -1,6 +1,7 @@
 package figure
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
@@ -96,8 +97,9 @@ func drawSpectrum(p *pen, sel Selection, b, a series, rows map[int]limits.Row, s
 	x.limits(last)
 	x.base(0)
 	x.orderLabels(carried)
-	x.overs()
+	x.overs(1)
 	x.name(set)
+	x.overs(0)
 	if top == 0 {
 		x.write((x.area.Min.X+x.area.Max.X)/2, (x.area.Min.Y+x.area.Max.Y)/2, centre, p.st.Body, p.st.Muted, "No distortion: nothing above order 1.")
 	}
@@ -199,39 +201,31 @@ func (x *spectrum) bars(h int) {
 	}
 }
 
-// overs says at each bar that is over its limit how much, those after first and
-// the worst first, as far as words find room beside the bars and each other.
-func (x *spectrum) overs() {
+// overs says at each bar of one outcome that is over its limit how much, the
+// worst first, as far as words find room beside the bars and each other.
+func (x *spectrum) overs(which int) {
 	type over struct {
 		r     vg.Rectangle
 		times float64
-		which int
 	}
 	var list []over
 	for _, h := range x.carried {
 		limit, limited := x.rows[h]
-		for which, s := range []series{x.b, x.a} {
-			if r, v := x.place(h, which); s.ok && limited && v > limit.Limit {
-				times := math.Inf(1)
-				if limit.Limit > 0 {
-					times = v / limit.Limit
-				}
-				list = append(list, over{r, times, which})
+		if r, v := x.place(h, which); limited && v > limit.Limit {
+			times := math.Inf(1)
+			if limit.Limit > 0 {
+				times = v / limit.Limit
 			}
+			list = append(list, over{r, times})
 		}
 	}
-	slices.SortStableFunc(list, func(a, b over) int {
-		if a.which != b.which {
-			return b.which - a.which
-		}
-		return int(math.Copysign(1, b.times-a.times))
-	})
+	slices.SortStableFunc(list, func(a, b over) int { return cmp.Compare(b.times, a.times) })
+	ink := x.st.Over
+	if which == 0 {
+		ink = x.st.Muted
+	}
 	size := x.st.Small
 	for _, o := range list {
-		ink := x.st.Over
-		if o.which == 0 {
-			ink = x.st.Muted
-		}
 		for _, words := range []string{"over " + times(o.times), times(o.times)} {
 			w := x.width(size, words)
 			middle := (o.r.Min.X + o.r.Max.X) / 2
@@ -338,6 +332,7 @@ func (x *spectrum) name(set string) {
 		s := x.steps[i]
 		for _, from := range []vg.Length{s.Max.X - w, s.Min.X} {
 			if x.free(rect(from, s.Min.Y+0.1*size, from+w, s.Min.Y+1.4*size)) {
+				x.taken = append(x.taken, rect(from-0.4*size, s.Min.Y, from+w+0.4*size, s.Min.Y+1.4*size))
 				x.patch(from, s.Min.Y+0.9*size, size, x.st.Limit, false, set)
 				return
 			}
@@ -347,10 +342,18 @@ func (x *spectrum) name(set string) {
 	if len(x.steps) == 0 {
 		mark = 0
 	}
-	at := vg.Point{X: x.area.Max.X - w, Y: x.area.Max.Y - 0.8*size}
-	if from, y, ok := x.clearing(w+mark, size); ok {
-		at = vg.Point{X: from + mark, Y: y}
+	from, y, ok := x.clearing(w+mark, size)
+	for part := vg.Length(0.8); !ok && part > 0.3; part -= 0.2 {
+		short := x.fit(size, part*w, set)
+		if from, y, ok = x.clearing(x.width(size, short)+mark, size); ok {
+			set, w = short, x.width(size, short)
+		}
 	}
+	if !ok {
+		return // the caption says it
+	}
+	at := vg.Point{X: from + mark, Y: y}
+	x.taken = append(x.taken, rect(from-0.4*size, y-0.6*size, from+mark+w, y+0.6*size))
 	x.patch(at.X, at.Y, size, x.st.Limit, false, set)
 	if mark > 0 {
 		x.stroke(x.st.Line*1.3, x.st.Limit, nil, vg.Point{X: at.X - 2.2*size, Y: at.Y}, vg.Point{X: at.X - 0.6*size, Y: at.Y})
