@@ -5,6 +5,7 @@ import (
 	"context"
 	"encoding/json"
 	"errors"
+	"math"
 	"os"
 	"path/filepath"
 	"strings"
@@ -17,18 +18,27 @@ import (
 func TestBadFiles(t *testing.T) {
 	good := string(testdata.Demo)
 	for name, c := range map[string]struct{ data, want string }{
-		"empty":          {"", "the file is empty"},
-		"truncated":      {good[:len(good)/2], "ends in the middle"},
-		"binary":         {"\x00\x01\x02PK", "binary"},
-		"not utf-8":      {"{\"format\": 1, \"title\": \"\xff\"}", "binary"},
-		"not json":       {"format = 1", "not JSON"},
-		"list":           {"[1, 2]", "one JSON object"},
-		"no format":      {`{"title": {"study": "x"}}`, `"format" is missing`},
-		"newer":          {`{"format": 2}`, "newer version"},
-		"format zero":    {`{"format": 0}`, "no version"},
-		"unknown key":    {strings.Replace(good, `"faultMVA"`, `"faultGVA"`, 1), `Grid has the key "faultGVA"`},
-		"unknown at top": {`{"format": 1, "bananas": []}`, `study has the key "bananas"`},
-		"twice":          {`{"format": 1, "format": 1}`, `key "format" twice`},
+		"empty":           {"", "the file is empty"},
+		"truncated":       {good[:len(good)/2], "ends in the middle"},
+		"binary":          {"\x00\x01\x02PK", "binary"},
+		"not utf-8":       {"{\"format\": 1, \"title\": \"\xff\"}", "binary"},
+		"not json":        {"format = 1", "not JSON"},
+		"list":            {"[1, 2]", "one JSON object"},
+		"no format":       {`{"title": {"study": "x"}}`, `"format" is missing`},
+		"newer":           {`{"format": 2}`, "newer version"},
+		"newer with keys": {strings.Replace(good, `"format": 1`, `"format": 7, "phases": []`, 1), "newer version"},
+		"format zero":     {`{"format": 0}`, "no version"},
+		"format in text":  {`{"format": "1"}`, "no version"},
+		"format twice":    {`{"format": 1, "FORMAT": 1}`, `key "FORMAT"`},
+		"a number":        {"42", "one JSON object"},
+		"only a mark":     {"\xef\xbb\xbf \n", "empty"},
+		"utf-16":          {"\xff\xfe{\x00", "UTF-16"},
+		"cut in a letter": {"{\"format\": 1, \"title\": {\"study\": \"K\xc3", "ends in the middle"},
+		"huge integer":    {`{"format": 1, "maxOrder": 99999999999999999999}`, "maxOrder is 99999999999999999999, which is too large"},
+		"huge power":      {strings.Replace(good, `"xOverR": 8`, `"xOverR": 1e999`, 1), "Grid, xOverR is 1e999, which is too large"},
+		"unknown key":     {strings.Replace(good, `"faultMVA"`, `"faultGVA"`, 1), `Grid has the key "faultGVA"`},
+		"unknown at top":  {`{"format": 1, "bananas": []}`, `study has the key "bananas"`},
+		"twice":           {`{"format": 1, "format": 1}`, `key "format" twice`},
 		"text for number": {strings.Replace(good, `"xOverR": 8`, `"xOverR": "eight"`, 1),
 			"Grid, xOverR is text, but must be a number"},
 		"number for text": {`{"format": 1, "title": {"study": 3}}`, "title, study is a number, but must be text"},
@@ -57,8 +67,12 @@ func TestBadFiles(t *testing.T) {
 func TestErrorPlace(t *testing.T) {
 	_, err := Parse([]byte("{\n  \"format\": 1,\n  \"bananas\": 2\n}"))
 	var f *FileError
-	if !errors.As(err, &f) || f.Line != 3 {
-		t.Errorf("%v, want line 3", err)
+	if !errors.As(err, &f) || f.Line != 3 || f.Column != 3 {
+		t.Errorf("%v, want line 3, column 3", err)
+	}
+	_, err = Parse([]byte("{\n  \"format\": 1,\n  \"maxOrder\":   true\n}"))
+	if !errors.As(err, &f) || f.Line != 3 || f.Column != 17 {
+		t.Errorf("%v, want line 3, column 17", err)
 	}
 }
 
@@ -185,6 +199,47 @@ func TestSaveAndPrevious(t *testing.T) {
 	}
 	if err := Save(filepath.Join(t.TempDir(), "no", "such", "dir", "x"), s); err == nil {
 		t.Error("saving into a missing folder succeeds")
+	}
+}
+
+// Saving keeps a file's permissions, follows a link, and leaves alone what is
+// set read-only; a study made in code is written with the present format.
+func TestSaveIsPolite(t *testing.T) {
+	dir := t.TempDir()
+	path, link := filepath.Join(dir, "a.study.json"), filepath.Join(dir, "link.study.json")
+	s := small()
+	s.Format = 0
+	if err := Save(path, s); err != nil {
+		t.Fatal(err)
+	}
+	if back, err := Open(path); err != nil || back.Format != Format {
+		t.Errorf("what was made in code does not read back: %v", err)
+	}
+	if err := errors.Join(os.Chmod(path, 0o600), os.Symlink(path, link)); err != nil {
+		t.Fatal(err)
+	}
+	s.Title.Client = "through the link"
+	if err := Save(link, s); err != nil {
+		t.Fatal(err)
+	}
+	if back, err := Open(path); err != nil || back.Title.Client != s.Title.Client {
+		t.Errorf("the link was not followed: %v", err)
+	}
+	for _, kept := range []string{path, Previous(link)} {
+		if info, err := os.Stat(kept); err != nil || info.Mode().Perm() != 0o600 {
+			t.Errorf("%s: %v %v, want 0600", filepath.Base(kept), info.Mode(), err)
+		}
+	}
+	if err := os.Chmod(path, 0o400); err != nil {
+		t.Fatal(err)
+	}
+	s.Title.Client = "too late"
+	if err := Save(path, s); err == nil || !strings.Contains(err.Error(), "read-only") {
+		t.Errorf("a read-only file was written: %v", err)
+	}
+	s.Supplies[0].XOverR = math.NaN()
+	if err := Save(path, s); err == nil {
+		t.Error("a study with NaN was written")
 	}
 }
 

@@ -3,17 +3,12 @@ package study
 import (
 	"bytes"
 	"encoding/json"
-	"errors"
 	"fmt"
 	"io"
-	"io/fs"
 	"os"
 	"path/filepath"
-	"reflect"
-	"strings"
+	"strconv"
 	"unicode/utf8"
-
-	"github.com/google/renameio/v2"
 )
 
 // maxFile is the largest study file that is read; real ones have kilobytes.
@@ -65,19 +60,93 @@ func Read(r io.Reader) (*Study, error) {
 
 // Parse is Read from memory.
 func Parse(data []byte) (*Study, error) {
-	switch {
-	case len(data) > maxFile:
-		return nil, &FileError{Problem: "the file is larger than 64 MB", Remedy: "this is no study file; choose a .study.json"}
-	case len(bytes.TrimSpace(data)) == 0:
-		return nil, &FileError{Problem: "the file is empty", Remedy: "open the previous version that is kept beside it"}
-	case bytes.IndexByte(data, 0) >= 0 || !utf8.Valid(data):
-		return nil, &FileError{Problem: "the file is binary, not text", Remedy: "choose a .study.json"}
-	}
-	data = bytes.TrimPrefix(data, []byte("\xef\xbb\xbf"))
-	if err := scanKeys(data); err != nil {
+	data, err := asText(data)
+	if err != nil {
 		return nil, err
 	}
-	if err := format(data); err != nil {
+	version, err := versionOf(data)
+	if err != nil {
+		return nil, err
+	}
+	if version == Format {
+		return decode(data)
+	}
+	if data, err = migrate(data, version, migrations); err != nil {
+		return nil, err
+	}
+	s, err := decode(data)
+	if err != nil {
+		return nil, migrated(err, version)
+	}
+	return s, nil
+}
+
+// asText refuses what is no text and takes the byte order mark off.
+func asText(data []byte) ([]byte, error) {
+	if len(data) > maxFile {
+		return nil, &FileError{Problem: "the file is larger than 64 MB", Remedy: "this is no study file; choose a .study.json"}
+	}
+	data = bytes.TrimPrefix(data, []byte("\xef\xbb\xbf"))
+	switch {
+	case len(bytes.TrimSpace(data)) == 0:
+		return nil, &FileError{Problem: "the file is empty", Remedy: "open the previous version that is kept beside it"}
+	case bytes.HasPrefix(data, []byte("\xff\xfe")) || bytes.HasPrefix(data, []byte("\xfe\xff")):
+		return nil, &FileError{Problem: "the file is text in UTF-16", Remedy: "save it as UTF-8 in the editor that wrote it"}
+	case bytes.IndexByte(data, 0) >= 0:
+		return nil, &FileError{Problem: "the file is binary, not text", Remedy: "choose a .study.json"}
+	}
+	if at := badUTF8(data); at >= 0 {
+		line, column := place(data, int64(at))
+		return nil, &FileError{Line: line, Column: column, Problem: "the file is binary, or text that is not UTF-8", Remedy: "choose a .study.json, or save it as UTF-8"}
+	}
+	return data, nil
+}
+
+// badUTF8 returns where data stops to be UTF-8, -1 when it does not. A last
+// character that is cut off is left to the JSON reader, which calls the file
+// cut off.
+func badUTF8(data []byte) int {
+	for at := 0; at < len(data); {
+		r, n := utf8.DecodeRune(data[at:])
+		if r == utf8.RuneError && n == 1 {
+			if !utf8.FullRune(data[at:]) {
+				return -1
+			}
+			return at
+		}
+		at += n
+	}
+	return -1
+}
+
+// versionOf looks at the format before anything else is judged, since a newer
+// one may hold keys that are not known here.
+func versionOf(data []byte) (int, error) {
+	if bytes.TrimSpace(data)[0] != '{' && json.Valid(data) {
+		return 0, &FileError{Line: 1, Column: 1, Problem: "the file does not hold one JSON object", Remedy: "a study begins with {"}
+	}
+	var head struct {
+		Format json.RawMessage `json:"format"`
+	}
+	if err := json.NewDecoder(bytes.NewReader(data)).Decode(&head); err != nil {
+		return 0, located(data, err)
+	}
+	if head.Format == nil {
+		return 0, &FileError{Problem: `the key "format" is missing`, Remedy: "this is no study file, or a damaged one; a study begins with \"format\": 1"}
+	}
+	n, err := strconv.Atoi(string(head.Format))
+	switch {
+	case err != nil || n < 1:
+		return 0, &FileError{Problem: fmt.Sprintf(`"format" is %.40s, which no version of this program has written`, head.Format), Remedy: "check the file"}
+	case n > Format:
+		return 0, &FileError{Problem: fmt.Sprintf("the file has format %d; this program reads up to format %d", n, Format), Remedy: "open it with a newer version of the program"}
+	}
+	return n, nil
+}
+
+// decode reads a study of the present format, strictly.
+func decode(data []byte) (*Study, error) {
+	if err := strict(data); err != nil {
 		return nil, err
 	}
 	s := &Study{}
@@ -87,259 +156,4 @@ func Parse(data []byte) (*Study, error) {
 		return nil, located(data, err)
 	}
 	return s, nil
-}
-
-// format looks at the version before anything else is judged.
-func format(data []byte) error {
-	var head struct {
-		Format *json.Number `json:"format"`
-	}
-	if err := json.Unmarshal(data, &head); err != nil {
-		return located(data, err)
-	}
-	if head.Format == nil {
-		return &FileError{Problem: `the key "format" is missing`, Remedy: "this is no study file, or a damaged one; a study begins with \"format\": 1"}
-	}
-	n, err := head.Format.Int64()
-	switch {
-	case err != nil || n < 1:
-		return &FileError{Problem: fmt.Sprintf(`"format" is %s, which no version of this program has written`, head.Format), Remedy: "check the file"}
-	case n > Format:
-		return &FileError{Problem: fmt.Sprintf("the file has format %d; this program reads up to format %d", n, Format), Remedy: "open it with a newer version of the program"}
-	}
-	return nil
-}
-
-// scanKeys walks the document with the types beside it and refuses unknown
-// keys, by name and place, and repeated ones.
-func scanKeys(data []byte) error {
-	w := &walker{data: data, dec: json.NewDecoder(bytes.NewReader(data))}
-	w.dec.UseNumber()
-	tok, err := w.dec.Token()
-	if err != nil {
-		return located(data, err)
-	}
-	if tok != json.Delim('{') {
-		return &FileError{Line: 1, Column: 1, Problem: "the file does not hold one JSON object", Remedy: "a study begins with {"}
-	}
-	if err := w.object(reflect.TypeFor[Study](), "study"); err != nil {
-		return err
-	}
-	if _, err := w.dec.Token(); err != io.EOF {
-		return w.at("there is something after the end of the study", "remove it")
-	}
-	return nil
-}
-
-type walker struct {
-	data []byte
-	dec  *json.Decoder
-}
-
-func (w *walker) at(problem, remedy string) error {
-	line, column := place(w.data, w.dec.InputOffset())
-	return &FileError{Line: line, Column: column, Problem: problem, Remedy: remedy}
-}
-
-// object reads the rest of an object of type t; where names it in messages.
-func (w *walker) object(t reflect.Type, where string) error {
-	seen := map[string]bool{}
-	known := map[string]reflect.Type{}
-	if t != nil && t.Kind() == reflect.Struct {
-		keysOf(t, known)
-	}
-	for w.dec.More() {
-		tok, err := w.dec.Token()
-		if err != nil {
-			return located(w.data, err)
-		}
-		key := tok.(string)
-		if seen[key] {
-			return w.at(fmt.Sprintf("%s has the key %q twice", where, key), "remove one of them")
-		}
-		seen[key] = true
-		next, ok := known[key]
-		if t != nil && t.Kind() == reflect.Struct && !ok {
-			return w.at(fmt.Sprintf("%s has the key %q, which is not known", where, key), "correct or remove it; known are "+strings.Join(sortedKeys(t), ", "))
-		}
-		if t != nil && t.Kind() == reflect.Map {
-			next = t.Elem()
-		}
-		name, err := w.value(next, inside(where, key))
-		if err != nil {
-			return err
-		}
-		if key == "name" && name != "" {
-			where = name
-		}
-	}
-	_, err := w.dec.Token()
-	if err != nil {
-		return located(w.data, err)
-	}
-	return nil
-}
-
-func inside(where, key string) string {
-	if where == "study" {
-		return key
-	}
-	return where + ", " + key
-}
-
-// value reads one value and returns it when it is a string.
-func (w *walker) value(t reflect.Type, where string) (string, error) {
-	tok, err := w.dec.Token()
-	if err != nil {
-		return "", located(w.data, err)
-	}
-	for t != nil && t.Kind() == reflect.Pointer {
-		t = t.Elem()
-	}
-	switch v := tok.(type) {
-	case string:
-		return v, w.expect(t, where, "text", reflect.String)
-	case json.Number:
-		if t != nil && t.Kind() == reflect.Int && strings.ContainsAny(v.String(), ".eE") {
-			return "", w.at(fmt.Sprintf("%s is %s, but must be a whole number", where, v), "correct it")
-		}
-		return "", w.expect(t, where, "a number", reflect.Float64, reflect.Int)
-	case bool:
-		return "", w.expect(t, where, "true or false", reflect.Bool)
-	case nil:
-		if t == nil {
-			return "", nil
-		}
-		return "", w.at(fmt.Sprintf("%s is null", where), "give a value, or leave the key out")
-	case json.Delim:
-		if v == '{' {
-			if err := w.expect(t, where, "an object", reflect.Struct, reflect.Map); err != nil {
-				return "", err
-			}
-			return "", w.object(t, where)
-		}
-		if err := w.expect(t, where, "a list", reflect.Slice); err != nil {
-			return "", err
-		}
-		for i := 0; w.dec.More(); i++ {
-			var elem reflect.Type
-			if t != nil {
-				elem = t.Elem()
-			}
-			if _, err := w.value(elem, fmt.Sprintf("%s[%d]", where, i)); err != nil {
-				return "", err
-			}
-		}
-		_, err := w.dec.Token()
-		if err != nil {
-			return "", located(w.data, err)
-		}
-	}
-	return "", nil
-}
-
-func (w *walker) expect(t reflect.Type, where, found string, kinds ...reflect.Kind) error {
-	if t == nil {
-		return nil
-	}
-	for _, k := range kinds {
-		if t.Kind() == k {
-			return nil
-		}
-	}
-	want := map[reflect.Kind]string{reflect.String: "text in quotes", reflect.Float64: "a number", reflect.Int: "a whole number", reflect.Bool: "true or false", reflect.Slice: "a list", reflect.Struct: "an object", reflect.Map: "an object"}[t.Kind()]
-	return w.at(fmt.Sprintf("%s is %s, but must be %s", where, found, want), "correct it")
-}
-
-func keysOf(t reflect.Type, into map[string]reflect.Type) {
-	for i := range t.NumField() {
-		f := t.Field(i)
-		if f.Anonymous {
-			keysOf(f.Type, into)
-		} else if key := jsonKey(f); key != "" {
-			into[key] = f.Type
-		}
-	}
-}
-
-func sortedKeys(t reflect.Type) []string {
-	var keys []string
-	for i := range t.NumField() {
-		f := t.Field(i)
-		if f.Anonymous {
-			keys = append(keys, sortedKeys(f.Type)...)
-		} else if key := jsonKey(f); key != "" {
-			keys = append(keys, key)
-		}
-	}
-	return keys
-}
-
-// located turns an error of the JSON reader into one with line and column.
-func located(data []byte, err error) error {
-	var syntax *json.SyntaxError
-	var kind *json.UnmarshalTypeError
-	var already *FileError
-	switch {
-	case errors.As(err, &already):
-		return err
-	case errors.Is(err, io.EOF) || errors.Is(err, io.ErrUnexpectedEOF):
-		line, column := place(data, int64(len(data)))
-		return &FileError{line, column, "the file ends in the middle of the study", "it was cut off; open the previous version that is kept beside it"}
-	case errors.As(err, &syntax):
-		if int(syntax.Offset) >= len(data) {
-			return located(data, io.ErrUnexpectedEOF)
-		}
-		line, column := place(data, syntax.Offset)
-		return &FileError{line, column, "this is not JSON: " + syntax.Error(), "correct it there"}
-	case errors.As(err, &kind):
-		line, column := place(data, kind.Offset)
-		return &FileError{line, column, fmt.Sprintf("%s is %s, which does not fit", kind.Field, kind.Value), "correct it"}
-	}
-	return &FileError{Problem: err.Error(), Remedy: "check the file"}
-}
-
-func place(data []byte, offset int64) (line, column int) {
-	before := data[:min(int(offset), len(data))]
-	line = 1 + bytes.Count(before, []byte("\n"))
-	return line, len(before) - bytes.LastIndexByte(before, '\n')
-}
-
-// Bytes returns the study as it is written to a file: keys in fixed order,
-// indented, ending in a newline.
-func (s *Study) Bytes() ([]byte, error) {
-	var b bytes.Buffer
-	enc := json.NewEncoder(&b)
-	enc.SetEscapeHTML(false)
-	enc.SetIndent("", "  ")
-	if err := enc.Encode(s); err != nil {
-		return nil, fmt.Errorf("the study cannot be written: %w", err)
-	}
-	return b.Bytes(), nil
-}
-
-// Previous returns where Save keeps the previous version of a study file.
-func Previous(path string) string { return path + ".previous" }
-
-// Save writes the study to path so that nothing is lost whatever happens: to a
-// temporary file first, which then takes the old one's place in one step; the
-// old one is kept as Previous(path).
-func Save(path string, s *Study) error {
-	data, err := s.Bytes()
-	if err != nil {
-		return err
-	}
-	old, err := os.ReadFile(path)
-	switch {
-	case err == nil && !bytes.Equal(old, data):
-		if err := renameio.WriteFile(Previous(path), old, 0o644); err != nil {
-			return fmt.Errorf("the previous version cannot be kept, so nothing was saved: %w", err)
-		}
-	case err != nil && !errors.Is(err, fs.ErrNotExist):
-		return fmt.Errorf("the study cannot be saved: %w", err)
-	}
-	if err := renameio.WriteFile(path, data, 0o644); err != nil {
-		return fmt.Errorf("the study cannot be saved: %w", err)
-	}
-	return nil
 }
