@@ -107,11 +107,20 @@ func TestBadStudies(t *testing.T) {
 		"reactor on LED":          {func(s *Study) { s.Measures[4].Target = "LED" }, "LR", "target", "line reactor"},
 		"low-pass on a drive":     {func(s *Study) { s.Measures[3].Target = "D1" }, "LP", "target", "linear load"},
 		"low-pass between phases": {func(s *Study) { s.Loads[1].Connection = PhaseAB }, "LP", "target", "between two phases"},
-		"senses nothing":          {func(s *Study) { s.Measures[2].Bus = "HV" }, "AF", "senses", "no non-linear load"},
-		"unknown set":             {func(s *Study) { s.Assessments[0].Set = "mine" }, "PCC", "set", "no limit set"},
-		"conflict":                {func(s *Study) { s.Measures[0].On, s.Measures[1].On = true, true }, "DET", "on", "both on"},
-		"provenance key":          {func(s *Study) { SetProvenance(&s.Banks[0], "colour", Provenance{Origin: Given}) }, "C1", "provenance", `"colour"`},
-		"scan reversed":           {func(s *Study) { s.Scans = []ScanRequest{{Named: Named{"Z"}, Bus: "LV", From: 20, To: 5}} }, "Z", "fromOrder", "20 to 5"},
+		"cable of no length": {func(s *Study) {
+			s.Buses = append(s.Buses, Bus{Named: Named{"X"}, NominalKV: 0.4})
+			s.Cables = []Cable{{Named: Named{"W"}, From: "LV", To: "X", LengthM: 0.04, ROhmPerKm: 0.2, XOhmPerKm: 0.08}}
+		}, "W", "lengthM", "out of range"},
+		"cable of no resistance": {func(s *Study) {
+			s.Buses = append(s.Buses, Bus{Named: Named{"X"}, NominalKV: 0.4})
+			s.Cables = []Cable{{Named: Named{"W"}, From: "LV", To: "X", LengthM: 10, ROhmPerKm: 1e-6, XOhmPerKm: 0.08}}
+		}, "W", "rOhmPerKm", "out of range"},
+		"no zero sequence": {func(s *Study) { s.Supplies[0].ZeroSequenceRatio = 1e-300 }, "SUP", "zeroSequenceRatio", "out of range"},
+		"senses nothing":   {func(s *Study) { s.Measures[2].Bus = "HV" }, "AF", "senses", "no non-linear load"},
+		"unknown set":      {func(s *Study) { s.Assessments[0].Set = "mine" }, "PCC", "set", "no limit set"},
+		"conflict":         {func(s *Study) { s.Measures[0].On, s.Measures[1].On = true, true }, "DET", "on", "both on"},
+		"provenance key":   {func(s *Study) { SetProvenance(&s.Banks[0], "colour", Provenance{Origin: Given}) }, "C1", "provenance", `"colour"`},
+		"scan reversed":    {func(s *Study) { s.Scans = []ScanRequest{{Named: Named{"Z"}, Bus: "LV", From: 20, To: 5}} }, "Z", "fromOrder", "20 to 5"},
 		"groups that disagree": {func(s *Study) {
 			t := s.Transformers[0]
 			t.Name, t.VectorGroup = "T2", "Dyn5"

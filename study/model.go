@@ -113,7 +113,7 @@ type Supply struct {
 	FaultMVA          float64          `json:"faultMVA,omitempty" label:"Fault level" unit:"MVA" range:"(0,1e6]" typical:"20..5000" help:"Three-phase fault level; state this or the fault current."`
 	FaultKA           float64          `json:"faultKA,omitempty" label:"Fault current" unit:"kA" range:"(0,1000]" typical:"1..63" help:"Three-phase fault current; state this or the fault level."`
 	XOverR            float64          `json:"xOverR" label:"X/R" range:"[0.01,1000]" typical:"2..30" need:"yes" help:"Reactance over resistance of the fault impedance at order 1."`
-	ZeroSequenceRatio float64          `json:"zeroSequenceRatio,omitempty" label:"Z0/Z1" range:"(0,100]" typical:"0.5..5" default:"no zero-sequence path" help:"Zero-sequence over positive-sequence impedance; absent when the supply neutral is not earthed."`
+	ZeroSequenceRatio float64          `json:"zeroSequenceRatio,omitempty" label:"Z0/Z1" range:"[0.01,100]" typical:"0.5..5" default:"no zero-sequence path" help:"Zero-sequence over positive-sequence impedance; absent when the supply neutral is not earthed."`
 	VoltagePercent    float64          `json:"voltagePercent,omitempty" label:"EMF" unit:"%" range:"[50,150]" typical:"95..105" default:"100" help:"EMF behind the fault impedance, of the bus's nominal voltage."`
 	AngleDeg          float64          `json:"angleDeg,omitempty" label:"EMF angle" unit:"deg" range:"[-360,360]" default:"0" help:"Angle of the positive-sequence EMF of phase a."`
 	ResistanceLaw     string           `json:"resistanceLaw,omitempty" label:"R(h) law" choices:"constant|sqrt|linear|exponent" default:"constant" help:"How the resistance rises with the order h: as 1, sqrt(h), h, or h to the exponent."`
@@ -155,7 +155,7 @@ type Transformer struct {
 	NoLoadPercent    float64 `json:"noLoadCurrentPercent,omitempty" label:"No-load current" unit:"%" range:"(0,20]" typical:"0.2..3" default:"no magnetising branch" help:"At rated voltage, of rated current."`
 	TapPercent       float64 `json:"tapPercent,omitempty" label:"Tap" unit:"%" range:"[-30,30]" typical:"-5..5" default:"0" help:"Tap position of the high-voltage winding: +5 means 5 % more turns there."`
 	EddyExponent     float64 `json:"eddyExponent,omitempty" label:"R(h) exponent" range:"[0,2]" typical:"0..1.5" default:"0, constant R" help:"Resistance rises as h to this exponent."`
-	ZeroRatio        float64 `json:"zeroSequenceRatio,omitempty" label:"Z0/Z1" range:"(0,20]" typical:"0.8..1" default:"1" help:"Zero-sequence over positive-sequence short-circuit impedance."`
+	ZeroRatio        float64 `json:"zeroSequenceRatio,omitempty" label:"Z0/Z1" range:"[0.01,20]" typical:"0.8..1" default:"1" help:"Zero-sequence over positive-sequence short-circuit impedance."`
 	HVNeutralOhm     float64 `json:"hvNeutralOhm,omitempty" label:"HV neutral resistance" unit:"ohm" range:"[0,1e6]" default:"0, solidly earthed" help:"Resistance between an earthed high-voltage neutral and earth."`
 	HVNeutralXOhm    float64 `json:"hvNeutralReactanceOhm,omitempty" label:"HV neutral reactance" unit:"ohm" range:"[0,1e6]" default:"0" help:"Reactance at order 1 between an earthed high-voltage neutral and earth."`
 	LVNeutralOhm     float64 `json:"lvNeutralOhm,omitempty" label:"LV neutral resistance" unit:"ohm" range:"[0,1e6]" default:"0, solidly earthed" help:"Resistance between an earthed low-voltage neutral and earth."`
@@ -169,9 +169,9 @@ type Cable struct {
 	Kind         string  `json:"kind,omitempty" label:"Kind" choices:"cable|line" default:"cable" help:"Cable or overhead line."`
 	From         string  `json:"from" label:"From" ref:"bus" need:"yes" help:"Bus at one end."`
 	To           string  `json:"to" label:"To" ref:"bus" need:"yes" help:"Bus at the other end."`
-	LengthM      float64 `json:"lengthM" label:"Length" unit:"m" range:"(0,1e6]" typical:"5..20000" need:"yes" help:"Route length."`
+	LengthM      float64 `json:"lengthM" label:"Length" unit:"m" range:"[0.5,1e6]" typical:"5..20000" need:"yes" help:"Route length; two bars closer than half a metre are one bus, or joined by a closed coupler."`
 	Parallel     int     `json:"parallel,omitempty" label:"In parallel" range:"[1,50]" default:"1" help:"Number of equal circuits in parallel."`
-	ROhmPerKm    float64 `json:"rOhmPerKm" label:"R'" unit:"ohm/km" range:"(0,100]" typical:"0.02..3" need:"yes" help:"Conductor resistance at order 1 and operating temperature."`
+	ROhmPerKm    float64 `json:"rOhmPerKm" label:"R'" unit:"ohm/km" range:"[0.001,100]" typical:"0.02..3" need:"yes" help:"Conductor resistance at order 1 and operating temperature."`
 	XOhmPerKm    float64 `json:"xOhmPerKm" label:"X'" unit:"ohm/km" range:"(0,10]" typical:"0.06..0.45" need:"yes" help:"Positive-sequence reactance at order 1."`
 	CNFPerKm     float64 `json:"cNFPerKm,omitempty" label:"C'" unit:"nF/km" range:"[0,5000]" typical:"5..800" default:"0" help:"Positive-sequence shunt capacitance."`
 	R0OhmPerKm   float64 `json:"r0OhmPerKm,omitempty" label:"R0'" unit:"ohm/km" range:"(0,200]" default:"4 x R'" help:"Zero-sequence resistance with its return path."`
