@@ -257,9 +257,9 @@ func TestTidyKeepsApart(t *testing.T) {
 		var places []place
 		for _, b := range lay.Buses {
 			x, y := vg.Length(b.X), vg.Length(b.Y)
-			places = append(places, place{b.Name, rect(x, y-2.4, x+vg.Length(b.W), y)})
+			places = append(places, place{b.Name, rect(x, y-vg.Length(b.Head)+0.1, x+vg.Length(b.W), y)})
 			if len(b.Rows) > 0 {
-				places = append(places, place{b.Name, rect(x+0.8, y+0.1, x+columnWidth, y+rakeTop+vg.Length(len(b.Rows))*rowHeight)})
+				places = append(places, place{b.Name, rect(x+vg.Length(b.Stem), y+0.1, x+columnWidth, vg.Length(b.Bottom))})
 			}
 			if b.X < 0 || b.X+b.W > lay.W || b.Y < 0 || b.Y > lay.H {
 				t.Fatalf("%s leaves the layout", b.Name)

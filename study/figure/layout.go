@@ -10,15 +10,24 @@ const Step = 12
 
 // Sizes of the single-line, in steps.
 const (
-	columnWidth  = 10.4
-	columnGap    = 1.2
-	busHead      = 3.0 // from the top of a bus's place to its bar: name and distortion
-	rowHeight    = 1.75
-	feederHeight = 3.4
-	linkHeight   = 1.6
-	supplyHeight = 3.2
-	rakeTop      = 0.5
-	feederPitch  = 7.0 // between parallel feeders
+	margin       = 0.6
+	columnWidth  = 11.4
+	columnGap    = 0.9
+	tieGap       = 3.6 // more, between columns that a coupler joins
+	busHead      = 2.9 // from the top of a bus's place to its bar: name and distortion
+	briefHead    = 1.9 // the same on one line, for a long bar
+	briefFrom    = 2 * columnWidth
+	itemHeight   = 1.75
+	switchHeight = 2.0 // 24 points: a switch that can be hit
+	feederHeight = 3.3
+	linkHeight   = 1.7
+	supplyHeight = 2.2
+	supplyPitch  = 8.0 // between supplies of one bus
+	rakeTop      = 0.4
+	feederPitch  = 8.0 // between parallel feeders
+	hangIndent   = 3.0 // of a bus that hangs beside its feeder
+	hangLabel    = 0.9 // above its head, for the feeder's name
+	freeHeight   = 1.0 // empty place under a bus
 )
 
 // Layout places everything on the single-line, in steps from the top left.
@@ -33,14 +42,18 @@ type Layout struct {
 type PlacedBus struct {
 	Name    string
 	X, Y, W float64 // left end, height and length of the bar
+	Head    float64 // room above the bar for its words
+	Stem    float64 // of the trunk that its rows hang on, from the left end
 	Rows    []Row
+	Bottom  float64 // below its last row
 }
 
 // Row is one item or measure under a bus.
 type Row struct {
 	Kind  study.Kind
 	Name  string
-	Inset bool // acts on the row above it
+	Inset bool    // acts on the row above it
+	Y     float64 // of its middle, below the bar
 }
 
 // Feeder joins two buses: a transformer, cable, reactor or coupler.
@@ -48,8 +61,10 @@ type Feeder struct {
 	Kind     study.Kind
 	Name     string
 	From, To string
-	Tree     bool    // leads straight down to a bus placed under it
-	X        float64 // of its line, for a tree feeder
+	Tree     bool          // leads to a bus placed under its bus
+	Hung     bool          // leads sideways from the trunk under its bus
+	X        float64       // of its line, for a tree feeder that leads straight down
+	Way      []study.Point // of its line, for one that does not
 }
 
 // PlacedSupply stands above its bus.
@@ -58,212 +73,187 @@ type PlacedSupply struct {
 	X, Y      float64
 }
 
-// edge is a way from a bus to another.
-type edge struct {
-	Feeder
-	other string
-	used  *bool
-}
-
-// tidy is the state of one automatic layout.
-type tidy struct {
-	s       *study.Study
-	near    map[string][]edge
-	rows    map[string][]Row
-	placed  map[string]bool
-	lay     *Layout
-	ofIndex map[string]int
-}
-
 // Tidy lays a study out by itself: supplies at the top, each bus above what it
-// feeds, loads hanging below their bus, no two places overlapping. Positions
-// in study.Drawing take precedence for their bus.
+// feeds, loads hanging below their bus, no two places overlapping. Buses that
+// one bus feeds stand side by side, or, deep in a wide tree, one below the
+// other, whichever fills a page better. Positions in study.Drawing take
+// precedence for their bus.
 func Tidy(s *study.Study) *Layout {
-	t := &tidy{s: s, near: map[string][]edge{}, rows: rowsOf(s), placed: map[string]bool{}, lay: &Layout{}, ofIndex: map[string]int{}}
-	join := func(kind study.Kind, name, a, b string) {
-		used := new(bool)
-		t.near[a] = append(t.near[a], edge{Feeder{Kind: kind, Name: name, From: a, To: b}, b, used})
-		t.near[b] = append(t.near[b], edge{Feeder{Kind: kind, Name: name, From: b, To: a}, a, used})
-	}
-	for _, x := range s.Transformers {
-		join(study.KindTransformer, x.Name, x.HVBus, x.LVBus)
-	}
-	for _, x := range s.Cables {
-		join(study.KindCable, x.Name, x.From, x.To)
-	}
-	for _, x := range s.Reactors {
-		join(study.KindReactor, x.Name, x.From, x.To)
-	}
-	for _, x := range s.Couplers {
-		join(study.KindCoupler, x.Name, x.From, x.To)
-	}
-	x := 1.0
-	for _, sup := range s.Supplies {
-		if !t.placed[sup.Bus] {
-			x += t.place(sup.Bus, x, supplyHeight, columnWidth) + 2*columnGap
+	t := grow(s)
+	best, least := (*Layout)(nil), 0.0
+	for hang := t.depth(); hang >= 0; hang-- {
+		lay := t.arrange(hang)
+		if size := max(lay.W, 1.05*lay.H); best == nil || size < 0.9*least {
+			best, least = lay, size
 		}
 	}
-	for _, b := range s.Buses {
-		if !t.placed[b.Name] {
-			x += t.place(b.Name, x, supplyHeight, columnWidth) + 2*columnGap
-		}
-	}
-	t.finish()
-	return t.lay
+	t.finish(best)
+	return best
 }
 
-// rowsOf lists what hangs on each bus: items, each followed by the measures
-// that act on it, then the measures that stand there by themselves.
-func rowsOf(s *study.Study) map[string][]Row {
-	rows := map[string][]Row{}
-	acting := map[string][]string{}
-	for _, m := range s.Measures {
-		if m.Target != "" {
-			acting[m.Target] = append(acting[m.Target], m.Name)
-		}
-	}
-	add := func(kind study.Kind, name, bus string) {
-		rows[bus] = append(rows[bus], Row{Kind: kind, Name: name})
-		for _, m := range acting[name] {
-			rows[bus] = append(rows[bus], Row{Kind: study.KindMeasure, Name: m, Inset: true})
-		}
-	}
-	for _, x := range s.NonlinearLoads {
-		add(study.KindNonlinearLoad, x.Name, x.Bus)
-	}
-	for _, x := range s.Generators {
-		add(study.KindGenerator, x.Name, x.Bus)
-	}
-	for _, x := range s.Motors {
-		add(study.KindMotor, x.Name, x.Bus)
-	}
-	for _, x := range s.Loads {
-		add(study.KindLoad, x.Name, x.Bus)
-	}
-	for _, x := range s.Banks {
-		add(study.KindBank, x.Name, x.Bus)
-	}
-	for _, x := range s.Filters {
-		add(study.KindFilter, x.Name, x.Bus)
-	}
-	for _, m := range s.Measures {
-		if m.Target == "" {
-			rows[m.Bus] = append(rows[m.Bus], Row{Kind: study.KindMeasure, Name: m.Name})
-		}
-	}
-	return rows
+// arrangement is the state of one way to lay a tree out.
+type arrangement struct {
+	t    *tree
+	hang int // buses from this depth on hang what they feed below each other
+	lay  *Layout
 }
 
-// place puts a bus and all below it, from x on and with its place's top at
-// top, at least as wide as least, and returns the width taken.
-func (t *tidy) place(bus string, x, top, least float64) float64 {
-	t.placed[bus] = true
-	at := len(t.lay.Buses)
-	t.ofIndex[bus] = at
-	bar := top + busHead
-	t.lay.Buses = append(t.lay.Buses, PlacedBus{Name: bus, X: x, Y: bar, Rows: t.rows[bus]})
-	below := bar + rakeTop + rowHeight*float64(len(t.rows[bus]))
-	var children []edge
-	for _, e := range t.near[bus] {
-		if !t.placed[e.other] && !*e.used && !(e.Kind == study.KindCoupler && t.fedOtherwise(e.other)) {
-			*e.used = true
-			t.placed[e.other] = true
-			children = append(children, e)
-		}
-	}
-	width := 0.0
-	for i, e := range children {
-		drop := linkHeight
-		if e.Kind == study.KindTransformer {
-			drop = feederHeight
-		}
-		childTop := bar + drop + 0.4
-		if i == 0 && len(t.rows[bus]) > 0 {
-			childTop = below + drop*0.7
-		}
-		f := e.Feeder
-		f.Tree, f.X = true, x+width+0.6
-		t.lay.Feeders = append(t.lay.Feeders, f)
+// arrange lays the tree out; the buses that a bus at depth hang or deeper feeds
+// stand one below the other.
+func (t *tree) arrange(hang int) *Layout {
+	a := &arrangement{t, hang, &Layout{}}
+	x := margin
+	for i, root := range t.roots {
 		if i > 0 {
-			width += columnGap
-			f.X += columnGap
-			t.lay.Feeders[len(t.lay.Feeders)-1].X = f.X
+			x += 2*columnGap + t.between(t.roots[:i], root)
 		}
-		need := columnWidth
-		for k, p := range t.parallel(bus, e.other) {
-			p.Tree, p.X = true, f.X+feederPitch*float64(k+1)
-			t.lay.Feeders = append(t.lay.Feeders, p)
-			need = max(need, feederPitch*float64(k+2)+0.6)
-		}
-		width += t.place(e.other, x+width, childTop, need)
+		w := a.width(root)
+		a.place(root, x, supplyHeight, w)
+		x += w
 	}
-	width = max(width, least)
-	t.lay.Buses[at].W = width
-	return width
+	a.lay.extent()
+	return a.lay
 }
 
-// parallel returns the further ways between a bus and one that was just hung
-// under it, and takes them.
-func (t *tidy) parallel(bus, child string) (list []Feeder) {
-	for _, e := range t.near[bus] {
-		if e.other == child && !*e.used && e.Kind != study.KindCoupler {
-			*e.used = true
-			list = append(list, e.Feeder)
-		}
+// extent takes the size of the drawing.
+func (l *Layout) extent() {
+	l.W, l.H = 0, 0
+	for i := range l.Buses {
+		b := &l.Buses[i]
+		l.W = max(l.W, b.X+b.W+margin)
+		l.H = max(l.H, b.Bottom+freeHeight)
 	}
-	return list
 }
 
-// fedOtherwise reports whether a transformer or cable leads to the bus from a
-// part that will still be placed, so that a coupler is drawn as a tie.
-func (t *tidy) fedOtherwise(bus string) bool {
-	for _, e := range t.near[bus] {
-		if e.Kind != study.KindCoupler {
-			return true
+func (a *arrangement) hangs(n *node) bool { return n.depth >= a.hang && len(n.kids) > 0 }
+
+// width returns how wide a bus and all below it is.
+func (a *arrangement) width(n *node) float64 {
+	w := max(columnWidth, supplyPitch*float64(n.supplies-1)+columnWidth)
+	if a.hangs(n) {
+		for _, k := range n.kids {
+			w = max(w, hangIndent+a.width(k))
+		}
+		return w
+	}
+	sum := 0.0
+	for i, k := range n.kids {
+		if i > 0 {
+			sum += columnGap + a.t.between(n.kids[:i], k)
+		}
+		sum += a.share(k)
+	}
+	return max(w, sum)
+}
+
+// share is the width of a bus that stands beside others, and of its feeders.
+func (a *arrangement) share(k *node) float64 {
+	return max(a.width(k), feederPitch*float64(len(k.up)-1)+columnWidth)
+}
+
+// place puts a bus and all below it from x on, with the top of its place at
+// top, and returns the bottom.
+func (a *arrangement) place(n *node, x, top, width float64) float64 {
+	hangs := a.hangs(n)
+	b := PlacedBus{Name: n.bus, X: x, W: width, Head: busHead, Stem: 0.8}
+	if hangs {
+		b.W = supplyPitch*float64(max(n.supplies, 1)-1) + columnWidth
+		if n.parent != nil && !a.hangs(n.parent) {
+			b.W = max(b.W, feederPitch*float64(len(n.up)-1)+columnWidth)
 		}
 	}
-	return false
+	if b.W >= briefFrom && len(n.up) < 2 {
+		b.Head = briefHead
+	}
+	if !hangs && len(n.kids) > 0 && len(n.rows) > 0 {
+		b.Stem = 1.6 // right of the feeder that passes down
+	}
+	b.Y = top + b.Head
+	y := b.Y + rakeTop
+	for _, r := range n.rows {
+		h := itemHeight
+		if r.Kind == study.KindMeasure {
+			h = switchHeight
+		}
+		r.Y = y + h/2 - b.Y
+		y += h
+		b.Rows = append(b.Rows, r)
+	}
+	b.Bottom = y
+	a.lay.Buses = append(a.lay.Buses, b)
+	if hangs {
+		return a.hangBelow(n, x, y)
+	}
+	bottom := y + freeHeight
+	for i, k := range n.kids {
+		if i > 0 {
+			x += columnGap + a.t.between(n.kids[:i], k)
+		}
+		drop := linkHeight
+		for j, f := range k.up {
+			switch f.Kind {
+			case study.KindTransformer:
+				drop = feederHeight
+			case study.KindReactor, study.KindCoupler:
+				drop = max(drop, linkHeight+0.8)
+			}
+			f.Tree, f.X = true, x+0.6+feederPitch*float64(j)
+			a.lay.Feeders = append(a.lay.Feeders, f)
+		}
+		from := b.Y + 0.2
+		if i == 0 && len(n.rows) > 0 {
+			from = b.Bottom - 0.1*drop
+		}
+		w := a.share(k)
+		bottom = max(bottom, a.place(k, x, from+drop, w))
+		x += w
+	}
+	return bottom
+}
+
+// hangBelow puts what a bus feeds one below the other beside its trunk, from y
+// on, and returns the bottom.
+func (a *arrangement) hangBelow(n *node, x, y float64) float64 {
+	for _, k := range n.kids {
+		for _, f := range k.up {
+			f.Tree, f.Hung = true, true
+			a.lay.Feeders = append(a.lay.Feeders, f)
+		}
+		y = a.place(k, x+hangIndent, y+0.3+hangLabel*float64(len(k.up)), a.width(k))
+	}
+	return y
 }
 
 // finish moves drawn buses to their places, adds ties and supplies and takes
 // the extent.
-func (t *tidy) finish() {
-	lay := t.lay
+func (t *tree) finish(lay *Layout) {
 	for i := range lay.Buses {
 		b := &lay.Buses[i]
-		if p, ok := t.s.Drawing[b.Name]; ok {
-			dx := p.X - b.X
-			b.X, b.Y = p.X, p.Y
-			for j := range lay.Feeders {
-				if lay.Feeders[j].Tree && lay.Feeders[j].To == b.Name {
-					lay.Feeders[j].X += dx
-				}
+		p, ok := t.s.Drawing[b.Name]
+		if !ok {
+			continue
+		}
+		dx, dy := p.X-b.X, p.Y-b.Y
+		b.X, b.Y, b.Bottom = p.X, p.Y, b.Bottom+dy
+		for j := range lay.Feeders {
+			if f := &lay.Feeders[j]; f.Tree && f.To == b.Name {
+				f.X += dx
 			}
 		}
 	}
-	done := map[string]bool{}
-	for _, f := range lay.Feeders {
-		done[f.Name] = true
-	}
-	for _, b := range t.s.Buses {
-		for _, e := range t.near[b.Name] {
-			if !done[e.Name] {
-				done[e.Name] = true
-				lay.Feeders = append(lay.Feeders, e.Feeder)
-			}
-		}
-	}
+	lay.Feeders = append(lay.Feeders, t.ties...)
 	count := map[string]int{}
 	for _, sup := range t.s.Supplies {
-		b := lay.Buses[t.ofIndex[sup.Bus]]
-		n := count[sup.Bus]
+		b := lay.Bus(sup.Bus)
+		if b == nil {
+			continue
+		}
+		x := b.X + 0.6 + supplyPitch*float64(count[sup.Bus])
 		count[sup.Bus]++
-		lay.Supplies = append(lay.Supplies, PlacedSupply{Name: sup.Name, Bus: sup.Bus, X: b.X + 0.6*b.W + 6*float64(n), Y: b.Y - busHead - supplyHeight + 1.2})
+		lay.Supplies = append(lay.Supplies, PlacedSupply{Name: sup.Name, Bus: sup.Bus, X: x, Y: b.Y - b.Head - supplyHeight + 1.1})
 	}
-	for _, b := range lay.Buses {
-		lay.W = max(lay.W, b.X+b.W+1)
-		lay.H = max(lay.H, b.Y+rakeTop+rowHeight*float64(len(b.Rows))+0.8)
-	}
+	lay.extent()
+	t.routes(lay)
 }
 
 // Bus returns the place of a bus, nil when there is none.

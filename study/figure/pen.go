@@ -3,6 +3,7 @@ package figure
 import (
 	"image/color"
 	"math"
+	"sort"
 	"strconv"
 	"strings"
 
@@ -64,16 +65,37 @@ func (p *pen) widthBold(size vg.Length, words string) vg.Length {
 	return p.st.faces.width(p.st.text(size, p.st.Ink, true, false), words)
 }
 
-// fit shortens a text to a width, with an ellipsis.
+// fit shortens a text to a width, with an ellipsis; nothing is left where there
+// is no room at all.
 func (p *pen) fit(size, width vg.Length, words string) string {
-	if p.width(size, words) <= width {
+	return shorten(words, width, func(w string) vg.Length { return p.width(size, w) })
+}
+
+func (p *pen) fitBold(size, width vg.Length, words string) string {
+	return shorten(words, width, func(w string) vg.Length { return p.widthBold(size, w) })
+}
+
+// firstFit returns the first wording that has room, the last one shortened when
+// none has.
+func (p *pen) firstFit(size, width vg.Length, wordings ...string) string {
+	for _, w := range wordings {
+		if p.width(size, w) <= width {
+			return w
+		}
+	}
+	return p.fit(size, width, wordings[len(wordings)-1])
+}
+
+func shorten(words string, width vg.Length, measure func(string) vg.Length) string {
+	if words == "" || measure(words) <= width {
 		return words
 	}
 	r := []rune(words)
-	for len(r) > 1 && p.width(size, string(r)+"…") > width {
-		r = r[:len(r)-1]
+	n := sort.Search(len(r), func(n int) bool { return measure(string(r[:n])+"…") > width })
+	if n < 2 {
+		return ""
 	}
-	return strings.TrimRight(string(r), " ") + "…"
+	return strings.TrimRight(string(r[:n-1]), " ,") + "…"
 }
 
 // fitTail shortens the first of two words to a width that both share, so that

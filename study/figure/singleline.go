@@ -62,6 +62,11 @@ type diagram struct {
 	view          View
 }
 
+// both reports whether before and after can differ.
+func (d *diagram) both() bool {
+	return d.before != nil && d.after != nil && !slices.Equal(d.before.On, d.after.On)
+}
+
 func px(v float64) vg.Length { return vg.Length(v) * Step }
 
 func at2(x, y float64) vg.Point { return vg.Point{X: px(x), Y: -px(y)} }
@@ -89,19 +94,23 @@ func (d *diagram) supply(s *PlacedSupply) {
 	q := at2(s.X, s.Y)
 	d.stroke(d.st.Line, d.st.Ink, nil, vg.Point{X: q.X, Y: q.Y - 8}, at2(s.X, b.Y))
 	d.infeed(q, 8, d.st.Line, d.st.Ink)
-	for _, x := range d.s.Supplies {
-		if x.Name == s.Name {
-			level := plain(x.FaultMVA) + " MVA"
+	level := ""
+	if _, item := d.s.Find(s.Name); item != nil {
+		if x, ok := item.(*study.Supply); ok {
+			level = plain(x.FaultMVA) + " MVA"
 			if x.FaultKA > 0 {
 				level = plain(x.FaultKA) + " kA"
 			}
-			d.writeBold(q.X+13, q.Y+4.5, left, d.st.Small, d.st.Ink, s.Name)
-			d.write(q.X+13, q.Y-5, left, d.st.Small, d.st.Muted, level+", X/R "+plain(x.XOverR))
+			level += ", X/R " + plain(x.XOverR)
 		}
 	}
-	r := rect(q.X-10, q.Y-10, q.X+14+d.width(d.st.Small, s.Name), q.Y+10)
+	room := px(supplyPitch) - 24
+	name, short := d.fitBold(d.st.Head, room, s.Name), d.fit(d.st.Body, room, level)
+	d.writeBold(q.X+13, q.Y+5.5, left, d.st.Head, d.st.Ink, name)
+	d.write(q.X+13, q.Y-5.5, left, d.st.Body, d.st.Muted, short)
+	r := rect(q.X-10, q.Y-11, q.X+14+max(d.widthBold(d.st.Head, name), d.width(d.st.Body, short)), q.Y+11)
 	d.frame(s.Name, r)
-	d.hot(r, "item", s.Name, s.Name+"\nsupply")
+	d.hot(r, "item", s.Name, s.Name+"\nsupply\n"+level)
 }
 
 // bus draws the bar, its words and what hangs below it.
@@ -114,40 +123,93 @@ func (d *diagram) bus(b *PlacedBus) {
 	if dead {
 		ink = d.st.Muted
 	}
-	d.fill(rect(x0, y-1.3, x1, y+1.3), ink)
-	text := d.wordsAt(b)
-	d.writeBold(text, y+24, left, d.st.Head, ink, d.fit(d.st.Head, x1-text-44, b.Name))
-	words := d.voltage(b.Name)
+	d.fill(rect(x0, y-1.4, x1, y+1.4), ink)
+	d.head(b, ink, dead, was, now)
+	r := rect(x0, y-3, x1, y+px(b.Head)-3)
+	d.frame(b.Name, r)
+	d.hot(r, "bus", b.Name, d.busText(b.Name, was, now))
+	d.rake(b)
+	if !d.view.Plain {
+		bottom := -px(b.Bottom)
+		d.hot(rect(px(b.X+b.Stem)+2, bottom-px(freeHeight)+2, px(b.X+columnWidth), min(bottom, y-4)), "place", b.Name, "")
+	}
+}
+
+// head writes a bus's name and distortion above its bar, on one line where the
+// bar is long. Over a limit, a mark stands beside the name; the small spectrum
+// gives way to words.
+func (d *diagram) head(b *PlacedBus, ink color.Color, dead bool, was, now *study.BusResult) {
+	y, x1 := -px(b.Y), px(b.X+b.W)
+	brief := b.Head < busHead
+	nameY, low := y+24, y+16
+	if brief {
+		nameY, low = y+11, y+6
+	}
+	badge := ""
+	if over, worst := d.over(b.Name); over {
+		badge = fmt.Sprintf("over %.2g×", worst)
+		if worst >= 9.95 {
+			badge = fmt.Sprintf("over %.0f×", worst)
+		}
+	}
+	text, size := d.wordsAt(b), d.st.Title
+	room := x1 - text - d.badgeWidth(badge)
+	if d.widthBold(size, b.Name) > room {
+		size = d.st.Head
+	}
+	name := d.fitBold(size, room, b.Name)
+	d.writeBold(text, nameY, left, size, ink, name)
+	x := text + d.widthBold(size, name) + 6
+	if badge != "" {
+		d.badge(vg.Point{X: x, Y: nameY}, badge)
+		x += d.badgeWidth(badge) + 4
+	}
+	end := x1
+	if spark := min(0.32*px(columnWidth), x1-x); spark > 2*d.st.Title {
+		end = x1 - spark - 6
+		d.sparkline(rect(x1-spark, low, x1, low+15), was, now)
+	}
+	words := d.busWords(b.Name, was, now, dead)
+	if brief {
+		d.write(x+3, nameY, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, end-x-3, words))
+	} else {
+		d.write(text, y+10, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, x1-text, words))
+	}
+}
+
+// busWords says voltage and distortion of a bus on one line.
+func (d *diagram) busWords(name string, was, now *study.BusResult, dead bool) string {
+	words := d.voltage(name)
 	switch {
 	case dead:
-		words += "   no supply"
+		words += "  no supply"
 	case now != nil:
-		words += "   THD "
-		if was != nil && was.Live && d.before != d.after {
+		words += "  THD "
+		if was != nil && was.Live && d.both() {
 			words += number(100*was.THD()) + " → "
 		}
 		words += number(100*now.THD()) + " %"
 	}
-	d.write(text, y+11, left, d.st.Small, d.st.Muted, words)
-	if over, times := d.over(b.Name); over {
-		at := vg.Point{X: text + d.st.text(d.st.Head, ink, true, false).Width(b.Name) + 12, Y: y + 24}
-		if at.X+46 > x1-44 { // no room beside the name and the small spectrum
-			at = vg.Point{X: text + d.width(d.st.Small, words) + 11, Y: y + 11}
-		}
-		var path vg.Path
-		path.Move(vg.Point{X: at.X, Y: at.Y + 5})
-		path.Line(vg.Point{X: at.X + 5, Y: at.Y})
-		path.Line(vg.Point{X: at.X, Y: at.Y - 5})
-		path.Line(vg.Point{X: at.X - 5, Y: at.Y})
-		path.Close()
-		d.fillPath(d.st.Over, path)
-		d.writeBold(at.X+8, at.Y, left, d.st.Small, d.st.Over, fmt.Sprintf("over %.2g×", times))
+	return words
+}
+
+// badge is the mark of a bus over a limit: a shape and a word.
+func (d *diagram) badge(at vg.Point, words string) {
+	var path vg.Path
+	path.Move(at)
+	path.Line(vg.Point{X: at.X + 5, Y: at.Y + 5})
+	path.Line(vg.Point{X: at.X + 10, Y: at.Y})
+	path.Line(vg.Point{X: at.X + 5, Y: at.Y - 5})
+	path.Close()
+	d.fillPath(d.st.Over, path)
+	d.writeBold(at.X+12, at.Y, left, d.st.Body, d.st.Over, words)
+}
+
+func (d *diagram) badgeWidth(words string) vg.Length {
+	if words == "" {
+		return 0
 	}
-	d.sparkline(rect(x1-40, y+17, x1, y+33), was, now)
-	r := rect(x0, y-3, x1, y+30)
-	d.frame(b.Name, r)
-	d.hot(r, "bus", b.Name, d.busText(b.Name, was, now))
-	d.rake(b)
+	return d.widthBold(d.st.Body, words) + 18 // with the mark and the air before it
 }
 
 // wordsAt returns where the words of a bus begin: right of a feeder that comes
@@ -155,8 +217,21 @@ func (d *diagram) bus(b *PlacedBus) {
 func (d *diagram) wordsAt(b *PlacedBus) vg.Length {
 	x := px(b.X)
 	for i := range d.lay.Feeders {
-		if f := &d.lay.Feeders[i]; f.Tree && f.To == b.Name && f.X >= b.X && f.X < b.X+2 {
-			x = px(f.X) + 6
+		f := &d.lay.Feeders[i]
+		from := d.lay.Bus(f.From)
+		switch {
+		case f.To != b.Name || from == nil:
+		case f.straight(from, b):
+			x = max(x, px(f.X)+5)
+		case f.sideways(from, b):
+			if n, _ := d.among(f); n > 0 { // joins the bar's end from above
+				x = max(x, px(b.X)+4)
+			}
+		}
+	}
+	for i := range d.lay.Supplies {
+		if s := &d.lay.Supplies[i]; s.Bus == b.Name {
+			x = max(x, px(s.X)+5)
 		}
 	}
 	return x
@@ -234,7 +309,7 @@ func (d *diagram) sparkline(r vg.Rectangle, was, now *study.BusResult) {
 	d.stroke(d.st.Thin, d.st.Muted, nil, r.Min, vg.Point{X: r.Max.X, Y: r.Min.Y})
 	slot := (r.Max.X - r.Min.X) / 24
 	for i, s := range []series{b, a} {
-		if !s.ok || (i == 0 && d.before == d.after) {
+		if !s.ok || i == 0 && !d.both() {
 			continue
 		}
 		ink := []color.Color{d.st.Before, d.st.After}[i]
@@ -252,42 +327,51 @@ func (d *diagram) sparkline(r vg.Rectangle, was, now *study.BusResult) {
 	}
 }
 
-// rake draws what hangs on a bus, one below the other.
+// rake draws what hangs on a bus, one below the other, on a trunk that goes on
+// to the buses that hang there too.
 func (d *diagram) rake(b *PlacedBus) {
-	if len(b.Rows) == 0 {
-		return
-	}
-	stem := b.X + 1.7
 	last := b.Y
-	for i, row := range b.Rows {
-		y := b.Y + rakeTop + rowHeight*(float64(i)+0.5)
+	for _, row := range b.Rows {
+		y := b.Y + row.Y
 		if !row.Inset {
-			last = y
+			last = max(last, y)
 		}
-		d.row(b, row, stem, y)
+		d.row(b, row, b.X+b.Stem, y)
+	}
+	for i := range d.lay.Feeders {
+		f := &d.lay.Feeders[i]
+		if to := d.lay.Bus(f.To); f.Hung && f.From == b.Name && to != nil && f.sideways(b, to) {
+			last = max(last, to.Y)
+		}
 	}
 	if last > b.Y {
-		d.stroke(d.st.Line, d.st.Ink, nil, at2(stem, b.Y), at2(stem, last))
+		d.stroke(d.st.Line, d.st.Ink, nil, at2(b.X+b.Stem, b.Y), at2(b.X+b.Stem, last))
 	}
 }
+
+const (
+	branch      = 1.2 // steps from the trunk to the middle of a symbol
+	switchWidth = 23  // points
+)
 
 func (d *diagram) row(b *PlacedBus, row Row, stem, y float64) {
 	if row.Kind == study.KindMeasure {
 		d.measure(b, row, stem, y)
 		return
 	}
-	q := at2(stem+1.25, y)
+	q := at2(stem+branch, y)
 	ink := d.st.Ink
 	if d.gone(row.Name) {
 		ink = d.st.Muted
 	}
 	d.stroke(d.st.Line, ink, d.dash(ink), at2(stem, y), vg.Point{X: q.X - 6, Y: q.Y})
 	d.symbol(row.Kind, q, 6, d.st.Line, ink)
-	x := q.X + 11
-	end := px(b.X + min(b.W, columnWidth))
-	d.write(x, q.Y+4.6, left, d.st.Body, ink, d.fit(d.st.Body, end-x, row.Name))
-	d.write(x, q.Y-4.5, left, d.st.Small, d.st.Muted, d.fit(d.st.Small, end-x, d.rating(row)))
-	r := rect(px(stem), q.Y-9, end, q.Y+9)
+	x := q.X + 10
+	end := px(b.X + columnWidth)
+	d.write(x, q.Y+5, left, d.st.Head, ink, d.fit(d.st.Head, end-x, row.Name))
+	d.write(x, q.Y-5.2, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, end-x, d.rating(row)))
+	half := px(itemHeight)/2 - 0.5
+	r := rect(px(stem)+2, q.Y-half, end, q.Y+half)
 	d.frame(row.Name, r)
 	d.hot(r, "item", row.Name, row.Name+"\n"+study.InfoOf(row.Kind).Singular+"\n"+d.rating(row))
 }
@@ -384,28 +468,49 @@ func (d *diagram) measure(b *PlacedBus, row Row, stem, y float64) {
 	}
 	inset := 0.0
 	if row.Inset {
-		inset = 0.8
+		inset = 0.7
 	}
-	q := at2(stem+1.25+inset, y)
+	q := at2(stem+branch+inset, y)
 	if row.Inset {
-		d.stroke(d.st.Line, ink, dash, vg.Point{X: q.X - 8, Y: q.Y + 10}, vg.Point{X: q.X - 8, Y: q.Y}, vg.Point{X: q.X - 5, Y: q.Y})
+		d.stroke(d.st.Line, ink, dash, vg.Point{X: q.X - 8, Y: q.Y + 11}, vg.Point{X: q.X - 8, Y: q.Y}, vg.Point{X: q.X - 5, Y: q.Y})
 	} else {
 		d.stroke(d.st.Line, ink, dash, at2(stem, y), vg.Point{X: q.X - 5, Y: q.Y})
 	}
 	MeasureMark(d.c, index, q, 5, ink, on)
-	end := px(b.X + min(b.W, columnWidth))
+	end := px(b.X + columnWidth)
 	x := q.X + 9
 	room := end - x
+	half := px(switchHeight) / 2
 	if !d.view.Plain {
-		room -= 25
-		d.toggle(rect(end-22, q.Y-6, end, q.Y+6), on)
-		d.hot(rect(end-24, q.Y-9, end+2, q.Y+9), "switch", m.Name, m.Name+"\n"+map[bool]string{true: "on: tap to switch off", false: "off: tap to switch on"}[on])
+		room -= switchWidth + 3
+		d.toggle(rect(end-switchWidth, q.Y-6.5, end, q.Y+6.5), on)
+		d.hot(rect(end-switchWidth-1, q.Y-half, end, q.Y+half), "switch", m.Name, m.Name+"\n"+map[bool]string{true: "on: tap to switch off", false: "off: tap to switch on"}[on])
 	}
-	d.write(x, q.Y+4.6, left, d.st.Body, ink, d.fit(d.st.Body, room, m.Name))
-	d.write(x, q.Y-4.5, left, d.st.Small, d.st.Muted, d.fit(d.st.Small, room, MeasureWords(m)))
-	r := rect(px(stem), q.Y-9, end-24, q.Y+9)
+	d.write(x, q.Y+5, left, d.st.Head, ink, d.fit(d.st.Head, room, m.Name))
+	d.write(x, q.Y-5.2, left, d.st.Body, d.st.Muted, d.firstFit(d.st.Body, room, measureBrief(m)...))
+	r := rect(px(stem)+2, q.Y-half+0.5, x+room, q.Y+half-0.5)
 	d.frame(m.Name, r)
 	d.hot(r, "measure", m.Name, m.Name+"\n"+MeasureWords(m))
+}
+
+// measureBrief says a measure's size in few words, from full to short.
+func measureBrief(m *study.Measure) []string {
+	switch {
+	case study.IsFilter(m.Kind):
+		order := "order " + plain(m.Order)
+		return []string{MeasureWords(m), order + ", " + plain(m.Kvar) + " kvar", order}
+	case m.Kind == study.DetuneBank || m.Kind == study.LineReactor:
+		return []string{"reactor " + plain(m.Percent) + " %"}
+	case m.Kind == study.RemoveBank:
+		return []string{"taken out"}
+	case m.Kind == study.ActiveFilter:
+		return []string{MeasureWords(m), "active, " + plain(m.RatedA) + " A", plain(m.RatedA) + " A"}
+	case m.Kind == study.LowPassRC:
+		return []string{"R-C, outlet"}
+	case m.Kind == study.LowPassLC:
+		return []string{"L-C, outlet"}
+	}
+	return []string{MeasureWords(m)}
 }
 
 // toggle is a switch: a lever that lies closed when on and stands open when
@@ -420,123 +525,9 @@ func (d *diagram) toggle(r vg.Rectangle, on bool) {
 	half := (r.Min.X + r.Max.X) / 2
 	if on {
 		d.fill(rect(half, r.Min.Y, r.Max.X, r.Max.Y), ink)
-		d.write((r.Min.X+half)/2, y, centre, d.st.Small*0.8, ink, "on")
+		d.write((r.Min.X+half)/2, y, centre, d.st.Small, ink, "on")
 		return
 	}
 	d.box(rect(r.Min.X, r.Min.Y, half, r.Max.Y), d.st.Line, ink, nil)
-	d.write((half+r.Max.X)/2, y, centre, d.st.Small*0.8, ink, "off")
-}
-
-// feeder draws a transformer, cable, reactor or coupler between two buses.
-func (d *diagram) feeder(f *Feeder) {
-	from, to := d.lay.Bus(f.From), d.lay.Bus(f.To)
-	if from == nil || to == nil {
-		return
-	}
-	if !f.Tree {
-		d.tie(f, from, to)
-		return
-	}
-	x := f.X
-	if x < from.X || x > from.X+from.W || x < to.X || x > to.X+to.W {
-		d.tie(f, from, to)
-		return
-	}
-	top, bottom := min(from.Y, to.Y), max(from.Y, to.Y)
-	middle := bottom - busHead - 1.5
-	if f.Kind != study.KindTransformer {
-		middle = bottom - busHead - 0.3
-	}
-	middle = max(middle, top+1.4)
-	d.stroke(d.st.Line, d.st.Ink, nil, at2(x, top), at2(x, bottom))
-	d.device(f, at2(x, middle))
-}
-
-// device draws the symbol of a feeder on its line, with its words to the right.
-func (d *diagram) device(f *Feeder, q vg.Point) {
-	var words [2]string
-	words[0] = f.Name
-	switch f.Kind {
-	case study.KindTransformer:
-		d.fill(rect(q.X-2, q.Y-14, q.X+2, q.Y+14), d.st.Ground)
-		d.transformer(q, 8, d.st.Line, d.st.Ink)
-		for _, t := range d.s.Transformers {
-			if t.Name == f.Name {
-				words[1] = plain(t.RatedKVA) + " kVA  " + t.VectorGroup
-				if t.PhaseShiftDeg != 0 {
-					words[1] += fmt.Sprintf(" %+g°", t.PhaseShiftDeg)
-				}
-			}
-		}
-	case study.KindReactor:
-		d.fill(rect(q.X-1.5, q.Y-8, q.X+1.5, q.Y+8), d.st.Ground)
-		d.coilDown(q, 8, d.st.Line, d.st.Ink)
-	case study.KindCoupler:
-		d.couplerSwitch(f, q)
-	default:
-		d.fillPath(d.st.Ink, circle(q, 1.6))
-		for _, c := range d.s.Cables {
-			if c.Name == f.Name {
-				words[1] = plain(c.LengthM) + " m"
-			}
-		}
-	}
-	x := q.X + 14
-	if f.Kind == study.KindCoupler {
-		w := d.width(d.st.Small, words[0])
-		d.patch(q.X-w/2, q.Y+14, d.st.Small, d.st.Ink, false, words[0])
-		r := rect(q.X-max(w/2, 8), q.Y-9, q.X+max(w/2, 8), q.Y+18)
-		d.frame(f.Name, r)
-		d.hot(r, "item", f.Name, f.Name+"\n"+study.InfoOf(f.Kind).Singular)
-		return
-	}
-	if f.Kind == study.KindCable {
-		x = q.X + 6
-		words[0], words[1] = words[0]+"  "+words[1], ""
-	}
-	if words[1] == "" {
-		d.write(x, q.Y, left, d.st.Small, d.st.Ink, words[0])
-	} else {
-		d.write(x, q.Y+4.5, left, d.st.Small, d.st.Ink, words[0])
-		d.write(x, q.Y-5, left, d.st.Small, d.st.Muted, words[1])
-	}
-	r := rect(q.X-12, q.Y-12, x+max(d.width(d.st.Small, words[0]), d.width(d.st.Small, words[1])), q.Y+12)
-	if f.Kind == study.KindCable {
-		r = rect(q.X-6, q.Y-7, r.Max.X, q.Y+7)
-	}
-	d.frame(f.Name, r)
-	d.hot(r, "item", f.Name, f.Name+"\n"+study.InfoOf(f.Kind).Singular+"\n"+words[1])
-}
-
-func (d *diagram) couplerSwitch(f *Feeder, q vg.Point) {
-	closed := false
-	for _, c := range d.s.Couplers {
-		if c.Name == f.Name {
-			closed = c.Closed
-		}
-	}
-	d.fill(rect(q.X-8, q.Y-8, q.X+8, q.Y+8), d.st.Ground)
-	d.box(rect(q.X-7, q.Y-7, q.X+7, q.Y+7), d.st.Line, d.st.Ink, nil)
-	if closed {
-		d.stroke(d.st.Bold, d.st.Ink, nil, vg.Point{X: q.X - 7, Y: q.Y}, vg.Point{X: q.X + 7, Y: q.Y})
-	} else {
-		d.stroke(d.st.Bold, d.st.Ink, nil, vg.Point{X: q.X - 5, Y: q.Y - 2}, vg.Point{X: q.X + 4, Y: q.Y + 5})
-	}
-}
-
-// tie draws a connection outside the tree: out of the right end of one bar and
-// into the other.
-func (d *diagram) tie(f *Feeder, a, b *PlacedBus) {
-	if b.X < a.X {
-		a, b = b, a
-	}
-	start := at2(a.X+a.W, a.Y)
-	end := at2(b.X, b.Y)
-	mid := vg.Point{X: (start.X + end.X) / 2, Y: start.Y}
-	if b.X < a.X+a.W {
-		end = at2(b.X+b.W, b.Y)
-		mid.X = max(start.X, end.X) + 8
-	}
-	d.stroke(d.st.Line, d.st.Ink, nil, start, mid, vg.Point{X: mid.X, Y: end.Y}, end)
-	d.device(f, vg.Point{X: mid.X, Y: (start.Y + end.Y) / 2})
+	d.write((half+r.Max.X)/2, y, centre, d.st.Small, ink, "off")
 }

@@ -98,10 +98,17 @@ func (p *pen) coilDown(q vg.Point, u, line vg.Length, ink color.Color) {
 	p.strokePath(line*1.2, ink, nil, path)
 }
 
-// transformer is two circles that overlap, one above the other.
-func (p *pen) transformer(q vg.Point, u, line vg.Length, ink color.Color) {
-	p.strokePath(line, ink, nil, circle(vg.Point{X: q.X, Y: q.Y + 0.6*u}, u))
-	p.strokePath(line, ink, nil, circle(vg.Point{X: q.X, Y: q.Y - 0.6*u}, u))
+// transformer is two circles that overlap, along a line that leads down or
+// sideways.
+func (p *pen) transformer(q vg.Point, u, line vg.Length, ink color.Color, upright bool) {
+	d := vg.Point{Y: 0.6 * u}
+	gap := rect(q.X-2, q.Y-1.6*u, q.X+2, q.Y+1.6*u)
+	if !upright {
+		d = vg.Point{X: 0.6 * u}
+		gap = rect(q.X-1.6*u, q.Y-2, q.X+1.6*u, q.Y+2)
+	}
+	p.fill(gap, p.st.Ground)
+	p.strokePath(line, ink, nil, append(circle(q.Add(d), u), circle(q.Sub(d), u)...))
 }
 
 // infeed is the supply: a hatched square.
