@@ -1,7 +1,6 @@
 package figure
 
 import (
-	"fmt"
 	"math"
 
 	"gonum.org/v1/plot/vg"
@@ -162,28 +161,7 @@ func (d *diagram) device(f *Feeder, q vg.Point, upright bool) {
 }
 
 // feederWords names a feeder and says its size.
-func (d *diagram) feederWords(f *Feeder) (words [2]string) {
-	words[0] = f.Name
-	_, item := d.s.Find(f.Name)
-	switch x := item.(type) {
-	case *study.Transformer:
-		words[1] = plain(x.RatedKVA) + " kVA  " + x.VectorGroup
-		if x.PhaseShiftDeg != 0 {
-			words[1] += fmt.Sprintf(" %+g°", x.PhaseShiftDeg)
-		}
-	case *study.Cable:
-		words[1] = plain(x.LengthM) + " m"
-		if x.Parallel > 1 {
-			words[1] += fmt.Sprintf(" × %d", x.Parallel)
-		}
-	case *study.Coupler:
-		words[1] = "open"
-		if x.Closed {
-			words[1] = "closed"
-		}
-	}
-	return words
-}
+func (d *diagram) feederWords(f *Feeder) [2]string { return [2]string{f.Name, d.sizes[f.Name]} }
 
 func (d *diagram) feederText(f *Feeder, words [2]string) string {
 	return f.Name + "\n" + study.InfoOf(f.Kind).Singular + "\n" + words[1]
@@ -196,12 +174,10 @@ func (d *diagram) feederHot(f *Feeder, r vg.Rectangle, words [2]string) {
 
 // couplerSwitch is a square with a contact in it, closed or open.
 func (d *diagram) couplerSwitch(f *Feeder, q vg.Point, upright bool) {
-	_, item := d.s.Find(f.Name)
-	c, _ := item.(*study.Coupler)
 	d.fill(rect(q.X-7, q.Y-7, q.X+7, q.Y+7), d.st.Ground)
 	d.box(rect(q.X-7, q.Y-7, q.X+7, q.Y+7), d.st.Line, d.st.Ink, nil)
 	a, b := vg.Point{X: -5, Y: -2}, vg.Point{X: 4, Y: 5}
-	if c != nil && c.Closed {
+	if d.sizes[f.Name] == isClosed {
 		a, b = vg.Point{X: -7}, vg.Point{X: 7}
 	}
 	if upright {

@@ -265,6 +265,21 @@ func TestTidyKeepsApart(t *testing.T) {
 				t.Fatalf("%s leaves the layout", b.Name)
 			}
 		}
+		for i := range lay.Feeders {
+			f := &lay.Feeders[i]
+			from, to := lay.Bus(f.From), lay.Bus(f.To)
+			if !f.straight(from, to) {
+				continue
+			}
+			line := rect(vg.Length(f.X), vg.Length(from.Y)+0.2, vg.Length(f.X), vg.Length(to.Y)-0.2)
+			for j := range lay.Buses {
+				b := &lay.Buses[j]
+				rows := rect(vg.Length(b.X+b.Stem), vg.Length(b.Y)+0.1, vg.Length(b.X+columnWidth), vg.Length(b.Bottom)-0.1)
+				if len(b.Rows) > 0 && line.Min.X >= rows.Min.X && line.Max.X <= rows.Max.X && line.Min.Y < rows.Max.Y && line.Max.Y > rows.Min.Y {
+					t.Fatalf("%s passes through what hangs on %s", f.Name, b.Name)
+				}
+			}
+		}
 		for i, a := range places {
 			for _, b := range places[:i] {
 				if meet(a.box, b.box) && a.bus != b.bus {
@@ -292,17 +307,5 @@ func TestCaption(t *testing.T) {
 	}
 	if !bytes.Contains([]byte(f.Key), []byte("compressors")) {
 		t.Errorf("key %q", f.Key)
-	}
-}
-
-func BenchmarkFourFigures(b *testing.B) {
-	s, before, after := demo(b, "Filter 5")
-	sel := Selection{Bus: "Compressors"}
-	now, was := scans(b, s, "Compressors", "Filter 5"), scans(b, s, "Compressors")
-	for b.Loop() {
-		var c recorder.Canvas
-		for _, f := range []*Figure{Spectrum(before, after, sel), Waveform(before, after, sel), Impedance(was, now, nil), Margins(before, after)} {
-			f.Draw(draw.NewCanvas(&c, 330, 200), Light())
-		}
 	}
 }

@@ -115,7 +115,7 @@ func (p *pen) stroke(width vg.Length, ink color.Color, dash []vg.Length, points 
 	if len(points) < 2 {
 		return
 	}
-	var path vg.Path
+	path := make(vg.Path, 0, len(points))
 	path.Move(points[0])
 	for _, q := range points[1:] {
 		path.Line(q)
@@ -134,7 +134,7 @@ func (p *pen) strokePath(width vg.Length, ink color.Color, dash []vg.Length, pat
 }
 
 func rectPath(r vg.Rectangle) vg.Path {
-	var path vg.Path
+	path := make(vg.Path, 0, 5)
 	path.Move(r.Min)
 	path.Line(vg.Point{X: r.Max.X, Y: r.Min.Y})
 	path.Line(r.Max)
@@ -158,7 +158,7 @@ func (p *pen) box(r vg.Rectangle, width vg.Length, ink color.Color, dash []vg.Le
 }
 
 func circle(at vg.Point, radius vg.Length) vg.Path {
-	var path vg.Path
+	path := make(vg.Path, 0, 3)
 	path.Move(vg.Point{X: at.X + radius, Y: at.Y})
 	path.Arc(at, radius, 0, 2*math.Pi)
 	path.Close()

@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"image/color"
 	"slices"
-	"strings"
 
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
@@ -29,6 +28,7 @@ func SingleLine(s *study.Study, before, after *study.Outcome, lay *Layout, view 
 	}
 	f := &Figure{Key: "single-line", Title: "Single-line", Size: vg.Point{X: vg.Length(lay.W) * Step, Y: vg.Length(lay.H) * Step},
 		Caption: "Each bus with its THD before and after. Measures stand dashed while off. Symbols after IEC 60617."}
+	sizes := sizesOf(s)
 	f.Draw = func(c draw.Canvas, st *Style) []Hot {
 		p := newPen(c, st)
 		if len(s.Buses) == 0 {
@@ -40,7 +40,7 @@ func SingleLine(s *study.Study, before, after *study.Outcome, lay *Layout, view 
 		c.Push()
 		c.Translate(vg.Point{X: ox, Y: oy})
 		c.Scale(float64(k), float64(k))
-		d := &diagram{pen: &pen{c: c, st: st}, s: s, before: before, after: after, lay: lay, view: view}
+		d := &diagram{pen: &pen{c: c, st: st}, s: s, sizes: sizes, before: before, after: after, lay: lay, view: view}
 		d.draw()
 		c.Pop()
 		for i := range d.hots {
@@ -57,6 +57,7 @@ func SingleLine(s *study.Study, before, after *study.Outcome, lay *Layout, view 
 type diagram struct {
 	*pen
 	s             *study.Study
+	sizes         map[string]string // of each item in few words
 	before, after *study.Outcome
 	lay           *Layout
 	view          View
@@ -94,16 +95,7 @@ func (d *diagram) supply(s *PlacedSupply) {
 	q := at2(s.X, s.Y)
 	d.stroke(d.st.Line, d.st.Ink, nil, vg.Point{X: q.X, Y: q.Y - 8}, at2(s.X, b.Y))
 	d.infeed(q, 8, d.st.Line, d.st.Ink)
-	level := ""
-	if _, item := d.s.Find(s.Name); item != nil {
-		if x, ok := item.(*study.Supply); ok {
-			level = plain(x.FaultMVA) + " MVA"
-			if x.FaultKA > 0 {
-				level = plain(x.FaultKA) + " kA"
-			}
-			level += ", X/R " + plain(x.XOverR)
-		}
-	}
+	level := d.sizes[s.Name]
 	room := px(supplyPitch) - 24
 	name, short := d.fitBold(d.st.Head, room, s.Name), d.fit(d.st.Body, room, level)
 	d.writeBold(q.X+13, q.Y+5.5, left, d.st.Head, d.st.Ink, name)
@@ -179,7 +171,7 @@ func (d *diagram) head(b *PlacedBus, ink color.Color, dead bool, was, now *study
 
 // busWords says voltage and distortion of a bus on one line.
 func (d *diagram) busWords(name string, was, now *study.BusResult, dead bool) string {
-	words := d.voltage(name)
+	words := d.sizes[name]
 	switch {
 	case dead:
 		words += "  no supply"
@@ -244,18 +236,6 @@ func (d *diagram) result(o *study.Outcome, bus string) *study.BusResult {
 	return o.Bus(bus)
 }
 
-func (d *diagram) voltage(bus string) string {
-	for _, b := range d.s.Buses {
-		if b.Name == bus {
-			if b.NominalKV < 1 {
-				return plain(1000*b.NominalKV) + " V"
-			}
-			return plain(b.NominalKV) + " kV"
-		}
-	}
-	return ""
-}
-
 // over reports whether a limit at the bus is exceeded after, and the worst
 // multiple.
 func (d *diagram) over(bus string) (bool, float64) {
@@ -273,7 +253,7 @@ func (d *diagram) over(bus string) (bool, float64) {
 }
 
 func (d *diagram) busText(name string, was, now *study.BusResult) string {
-	text := name + "\n" + d.voltage(name)
+	text := name + "\n" + d.sizes[name]
 	if was != nil && was.Live && d.before != d.after {
 		text += "\nTHD before\t" + number(100*was.THD()) + " %"
 	}
@@ -369,11 +349,11 @@ func (d *diagram) row(b *PlacedBus, row Row, stem, y float64) {
 	x := q.X + 10
 	end := px(b.X + columnWidth)
 	d.write(x, q.Y+5, left, d.st.Head, ink, d.fit(d.st.Head, end-x, row.Name))
-	d.write(x, q.Y-5.2, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, end-x, d.rating(row)))
+	d.write(x, q.Y-5.2, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, end-x, d.sizes[row.Name]))
 	half := px(itemHeight)/2 - 0.5
 	r := rect(px(stem)+2, q.Y-half, end, q.Y+half)
 	d.frame(row.Name, r)
-	d.hot(r, "item", row.Name, row.Name+"\n"+study.InfoOf(row.Kind).Singular+"\n"+d.rating(row))
+	d.hot(r, "item", row.Name, row.Name+"\n"+study.InfoOf(row.Kind).Singular+"\n"+d.sizes[row.Name])
 }
 
 func (d *diagram) dash(ink color.Color) []vg.Length {
@@ -394,65 +374,6 @@ func (d *diagram) gone(name string) bool {
 		}
 	}
 	return false
-}
-
-// rating says an item's size in a few words.
-func (d *diagram) rating(row Row) string {
-	_, item := d.s.Find(row.Name)
-	switch x := item.(type) {
-	case *study.NonlinearLoad:
-		if x.CurrentA > 0 {
-			return plain(x.CurrentA) + " A" + phaseWords(x.Connection)
-		}
-		return plain(x.KW) + " kW" + phaseWords(x.Connection)
-	case *study.Load:
-		return plain(x.KW) + " kW" + phaseWords(x.Connection)
-	case *study.Motor:
-		return plain(x.KW) + " kW"
-	case *study.Generator:
-		return plain(x.RatedKVA) + " kVA"
-	case *study.Bank:
-		text := plain(x.Kvar) + " kvar"
-		if x.DetuningPercent > 0 {
-			text += ", " + plain(x.DetuningPercent) + " %"
-		}
-		return text
-	case *study.Filter:
-		return plain(x.Kvar) + " kvar, order " + plain(x.Order)
-	}
-	return ""
-}
-
-func phaseWords(c study.Connection) string {
-	if c == "" || c == study.ThreePhase {
-		return ""
-	}
-	return ", phase " + string(c)
-}
-
-// MeasureWords says what a measure is in a few words.
-func MeasureWords(m *study.Measure) string {
-	switch m.Kind {
-	case study.SingleTuned, study.DoubleTuned, study.FirstOrder, study.HighPass, study.ThirdOrder, study.CType:
-		text := fmt.Sprintf("%s, %s kvar, order %s", strings.TrimSuffix(study.KindTitle(m.Kind), " filter"), plain(m.Kvar), plain(m.Order))
-		if m.Order2 > 0 {
-			text += " and " + plain(m.Order2)
-		}
-		return text
-	case study.DetuneBank:
-		return fmt.Sprintf("detune %s, %s %%", m.Target, plain(m.Percent))
-	case study.RemoveBank:
-		return "remove " + m.Target
-	case study.ActiveFilter:
-		return "active filter, " + plain(m.RatedA) + " A"
-	case study.LineReactor:
-		return fmt.Sprintf("line reactor %s %% on %s", plain(m.Percent), m.Target)
-	case study.LowPassRC:
-		return "R-C low-pass before " + m.Target
-	case study.LowPassLC:
-		return "L-C low-pass before " + m.Target
-	}
-	return strings.ReplaceAll(m.Kind, "-", " ")
 }
 
 func (d *diagram) measure(b *PlacedBus, row Row, stem, y float64) {
@@ -491,26 +412,6 @@ func (d *diagram) measure(b *PlacedBus, row Row, stem, y float64) {
 	r := rect(px(stem)+2, q.Y-half+0.5, x+room, q.Y+half-0.5)
 	d.frame(m.Name, r)
 	d.hot(r, "measure", m.Name, m.Name+"\n"+MeasureWords(m))
-}
-
-// measureBrief says a measure's size in few words, from full to short.
-func measureBrief(m *study.Measure) []string {
-	switch {
-	case study.IsFilter(m.Kind):
-		order := "order " + plain(m.Order)
-		return []string{MeasureWords(m), order + ", " + plain(m.Kvar) + " kvar", order}
-	case m.Kind == study.DetuneBank || m.Kind == study.LineReactor:
-		return []string{"reactor " + plain(m.Percent) + " %"}
-	case m.Kind == study.RemoveBank:
-		return []string{"taken out"}
-	case m.Kind == study.ActiveFilter:
-		return []string{MeasureWords(m), "active, " + plain(m.RatedA) + " A", plain(m.RatedA) + " A"}
-	case m.Kind == study.LowPassRC:
-		return []string{"R-C, outlet"}
-	case m.Kind == study.LowPassLC:
-		return []string{"L-C, outlet"}
-	}
-	return []string{MeasureWords(m)}
 }
 
 // toggle is a switch: a lever that lies closed when on and stands open when
