@@ -49,9 +49,8 @@ func scaleOf(t *testing.T, sk *sketch, x vg.Length, log bool) axisScale {
 }
 
 func (s axisScale) value(y vg.Length) float64 {
-	// labels stand with the middle of their figures on their line; the box of a
-	// text reaches from 0.05 below its foot to 0.6 above, so that its middle is
-	// the same small way off for each of them
+	// the middle of a label's box is a tenth of its size off its line, the same
+	// for each of them
 	return s.v0 + (float64(y)-s.y0)*(s.v1-s.v0)/(s.y1-s.y0)
 }
 

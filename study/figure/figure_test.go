@@ -9,8 +9,6 @@ import (
 	"testing"
 
 	"gonum.org/v1/plot/vg"
-	"gonum.org/v1/plot/vg/draw"
-	"gonum.org/v1/plot/vg/recorder"
 	"pgregory.net/rapid"
 
 	"quietbus/study"
@@ -71,15 +69,8 @@ type words struct {
 func record(f *Figure, w, h vg.Length) (hots []Hot, texts []words) { return recordIn(Light(), f, w, h) }
 
 func recordIn(st *Style, f *Figure, w, h vg.Length) (hots []Hot, texts []words) {
-	var r recorder.Canvas
-	hots = f.Draw(draw.NewCanvas(&r, w, h), st)
-	for _, a := range r.Actions {
-		if x, ok := a.(*recorder.FillString); ok {
-			ts := Light().text(x.Size, Light().Ink, false, false)
-			texts = append(texts, words{x.String, rect(x.Point.X, x.Point.Y-0.1*x.Size, x.Point.X+ts.Width(x.String), x.Point.Y+0.62*x.Size)})
-		}
-	}
-	return hots, texts
+	s := sketchIn(st, f, w, h)
+	return s.hots, s.texts
 }
 
 // No two texts of a figure lie over each other, none leaves the canvas, and no

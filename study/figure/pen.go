@@ -54,7 +54,11 @@ func (p *pen) set(ts draw.TextStyle, x, y vg.Length, align draw.XAlignment, word
 	x += vg.Length(align) * p.st.faces.width(ts, words)
 	ts.XAlign, ts.YAlign = draw.XLeft, draw.YBottom
 	p.c.SetColor(ts.Color)
-	p.c.FillString(p.st.faces.cache.Lookup(ts.Font, ts.Font.Size), vg.Point{X: x, Y: y - 0.36*ts.Font.Size}, words)
+	face := p.st.faces.cache.Lookup(ts.Font, ts.Font.Size)
+	for _, piece := range pieces(words) {
+		p.c.FillString(face, vg.Point{X: x, Y: y - 0.36*ts.Font.Size}, piece)
+		x += p.st.faces.width(ts, piece)
+	}
 }
 
 func (p *pen) width(size vg.Length, words string) vg.Length {

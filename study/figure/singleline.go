@@ -86,7 +86,7 @@ func (d *diagram) draw() {
 
 func (d *diagram) frame(name string, r vg.Rectangle) {
 	if name == d.view.Selected && name != "" {
-		d.box(rect(r.Min.X-2, r.Min.Y-2, r.Max.X+2, r.Max.Y+2), d.st.Line, d.st.Accent, []vg.Length{3, 2})
+		d.box(rect(r.Min.X-1, r.Min.Y, r.Max.X+1, r.Max.Y), d.st.Line, d.st.Accent, []vg.Length{3, 2})
 	}
 }
 

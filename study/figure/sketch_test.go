@@ -29,10 +29,11 @@ type inked struct {
 }
 
 // sketchOf draws on a recorder and follows what covers what.
-func sketchOf(f *Figure, w, h vg.Length) sketch {
+func sketchOf(f *Figure, w, h vg.Length) sketch { return sketchIn(Light(), f, w, h) }
+
+func sketchIn(st *Style, f *Figure, w, h vg.Length) sketch {
 	var r recorder.Canvas
 	var s sketch
-	st := Light()
 	s.hots = f.Draw(draw.NewCanvas(&r, w, h), st)
 	var ink color.Color
 	var width vg.Length
@@ -52,7 +53,13 @@ func sketchOf(f *Figure, w, h vg.Length) sketch {
 			s.stroke(a.Path)
 		case *recorder.FillString:
 			ts := st.text(a.Size, st.Ink, a.Font.Weight == xfont.WeightBold, false)
-			s.texts = append(s.texts, words{a.String, rect(a.Point.X, a.Point.Y-0.05*a.Size, a.Point.X+ts.Width(a.String), a.Point.Y+0.6*a.Size)})
+			box := rect(a.Point.X, a.Point.Y-0.1*a.Size, a.Point.X+ts.Width(a.String), a.Point.Y+0.62*a.Size)
+			if n := len(s.texts); n > 0 && s.texts[n-1].box.Max.X == box.Min.X && s.texts[n-1].box.Min.Y == box.Min.Y { // the rest of a text in pieces
+				s.texts[n-1].text += a.String
+				s.texts[n-1].box.Max.X = box.Max.X
+				continue
+			}
+			s.texts = append(s.texts, words{a.String, box})
 		}
 	}
 	return s

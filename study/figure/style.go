@@ -7,6 +7,7 @@ package figure
 
 import (
 	"image/color"
+	"strings"
 	"sync"
 
 	xfont "golang.org/x/image/font"
@@ -78,7 +79,9 @@ func (f *faces) width(ts draw.TextStyle, words string) vg.Length {
 		if len(f.widths) >= mostWidths {
 			clear(f.widths)
 		}
-		w = ts.Width(words)
+		for _, piece := range pieces(words) {
+			w += ts.Width(piece)
+		}
 		f.widths[key] = w
 	}
 	return w
@@ -86,6 +89,21 @@ func (f *faces) width(ts draw.TextStyle, words string) vg.Length {
 
 func style(p assets.Palette) *Style {
 	return &Style{Palette: p, Small: 7.5, Body: 8.5, Head: 10, Title: 12, Thin: 0.4, Line: 0.9, Bold: 1.6, faces: shared()}
+}
+
+// pieces parts a text between two figures 1: the family sets this one pair of
+// figures closer than all others, so that numbers would not align, and 11 reads
+// as one figure at small sizes.
+func pieces(words string) []string {
+	var list []string
+	for {
+		i := strings.Index(words, "11")
+		if i < 0 {
+			return append(list, words)
+		}
+		list = append(list, words[:i+1])
+		words = words[i+1:]
+	}
 }
 
 var (
