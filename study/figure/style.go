@@ -9,6 +9,7 @@ import (
 	"image/color"
 	"strings"
 	"sync"
+	"unicode"
 
 	xfont "golang.org/x/image/font"
 	"gonum.org/v1/plot/font"
@@ -91,19 +92,15 @@ func style(p assets.Palette) *Style {
 	return &Style{Palette: p, Small: 7.5, Body: 8.5, Head: 10, Title: 12, Thin: 0.4, Line: 0.9, Bold: 1.6, faces: shared()}
 }
 
-// pieces parts a text between two figures 1: the family sets this one pair of
-// figures closer than all others, so that numbers would not align, and 11 reads
-// as one figure at small sizes.
+// pieces parts a bare number between two figures 1: the family sets this one
+// pair of figures closer than all others, so that numbers would not align, and
+// the label 11 reads as one figure at small sizes. Words stay whole.
 func pieces(words string) []string {
-	var list []string
-	for {
-		i := strings.Index(words, "11")
-		if i < 0 {
-			return append(list, words)
-		}
-		list = append(list, words[:i+1])
-		words = words[i+1:]
+	i := strings.Index(words, "11")
+	if i < 0 || strings.ContainsFunc(words, unicode.IsLetter) {
+		return []string{words}
 	}
+	return append([]string{words[:i+1]}, pieces(words[i+1:])...)
 }
 
 var (
