@@ -159,7 +159,7 @@ func (l *linePart) menu(h widgets.Hot, at fyne.Position) {
 			item("Edit "+h.ID+"...", nil, func() { w.edit(h.ID) }),
 			item("Remove "+h.ID, nil, func() { w.remove(h.ID) }))
 		add := item("Add at "+h.ID, nil, nil)
-		if h.Role == "bus" {
+		if h.Role == "bus" || h.Role == "place" {
 			var kinds []*fyne.MenuItem
 			for _, k := range study.Kinds() {
 				kinds = append(kinds, item(capital(k.Singular)+"...", nil, func() { w.add(k.Kind, h.ID) }))
