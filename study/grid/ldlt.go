@@ -176,4 +176,30 @@ func (p *pattern) solve(f *factors, b []complex128) {
 	}
 }
 
+// solveMany is solve for m right-hand sides at a time: b holds row after row,
+// in elimination order, m values each.
+func (p *pattern) solveMany(f *factors, b []complex128, m int) {
+	for k := 0; k < p.n; k++ {
+		from := b[k*m : k*m+m]
+		for i := p.start[k]; i < p.start[k+1]; i++ {
+			l, to := f.low[i], b[p.row[i]*m:][:m]
+			for j, v := range from {
+				to[j] -= l * v
+			}
+		}
+	}
+	for k := p.n - 1; k >= 0; k-- {
+		to, d := b[k*m:k*m+m], f.diag[k]
+		for j := range to {
+			to[j] *= d
+		}
+		for i := p.start[k]; i < p.start[k+1]; i++ {
+			l, from := f.low[i], b[p.row[i]*m:][:m]
+			for j, v := range from {
+				to[j] -= l * v
+			}
+		}
+	}
+}
+
 func cmplxAbs1(v complex128) float64 { return math.Abs(real(v)) + math.Abs(imag(v)) }
