@@ -12,7 +12,9 @@ import (
 // which measure changed it. It shares the study's slices and never writes to
 // them.
 type plan struct {
-	study   *Study
+	study   *Study // as it stands in the operating state
+	origin  *Study // as the file has it
+	state   string // the operating state
 	chosen  []*Measure
 	banks   []Bank                             // that stand, detuned ones as they would be
 	filters []Filter                           // that stand
@@ -33,7 +35,7 @@ func (s *Study) apply(on []string) (*plan, error) {
 	if c := s.Conflicts(on); len(c) > 0 {
 		return nil, &ConflictError{c}
 	}
-	p := &plan{study: s, chosen: s.chosen(on), notes: map[string][]string{}, lowpass: map[string]*Measure{}, spectra: map[string]converter.Model{}}
+	p := &plan{study: s, origin: s, state: NormalState, chosen: s.chosen(on), notes: map[string][]string{}, lowpass: map[string]*Measure{}, spectra: map[string]converter.Model{}}
 	gone := map[string]bool{}
 	detuned := map[string]*Measure{}
 	for _, m := range p.chosen {
@@ -109,5 +111,5 @@ func (p *plan) addReactor(m *Measure) error {
 			fmt.Sprintf("%s is computed with the spectrum %q (%s).", l.Name, model.Title, model.Source))
 		return nil
 	}
-	return &FieldError{Item: m.Name, Field: "target", Problem: fmt.Sprintf("%q is not a non-linear load", m.Target), Remedy: "choose a non-linear load of this study"}
+	return nil // its target is out of service in this state; Validate refuses one that is not there at all
 }

@@ -15,7 +15,7 @@ import (
 // outcome gathers everything that is shown from a solved model.
 func (m *model) outcome(ctx context.Context, sol *solution) (*Outcome, error) {
 	s := m.plan.study
-	o := &Outcome{Study: s, Check: Check(sol.net.Check)}
+	o := &Outcome{Study: m.plan.origin, State: m.plan.state, Check: Check(sol.net.Check)}
 	for _, x := range m.plan.chosen {
 		o.On = append(o.On, x.Name)
 	}
@@ -224,16 +224,21 @@ func (p *PointResult) take(rows []limits.Row, err error) error {
 // point: as stated, else of the supplies there, else from the driving-point
 // impedance at order 1.
 func (m *model) demand(ctx context.Context, a *Assessment, o *Outcome) (current [3]phasor.Spectrum, isc float64, err error) {
-	e := o.Element(a.Current)
-	end := &e.Ends[0]
-	for i := range e.Ends {
-		if e.Ends[i].Bus == a.Bus {
-			end = &e.Ends[i]
+	for i := range current { // of a branch that is out of service in this state
+		current[i] = phasor.New(m.plan.study.Order())
+	}
+	if e := o.Element(a.Current); e != nil {
+		end := &e.Ends[0]
+		for i := range e.Ends {
+			if e.Ends[i].Bus == a.Bus {
+				end = &e.Ends[i]
+			}
 		}
+		current = end.Phase
 	}
 	isc = 1000 * a.IscKA
-	for i := range m.plan.study.Supplies {
-		if s := &m.plan.study.Supplies[i]; a.IscKA == 0 && s.Bus == a.Bus {
+	for i := range m.plan.origin.Supplies { // limits rest on the stated fault level in every state
+		if s := &m.plan.origin.Supplies[i]; a.IscKA == 0 && s.Bus == a.Bus {
 			isc += s.FaultA(m.volts[s.Bus])
 		}
 	}
@@ -244,7 +249,7 @@ func (m *model) demand(ctx context.Context, a *Assessment, o *Outcome) (current 
 		}
 		isc = m.volts[a.Bus] / math.Sqrt(3) / cmplx.Abs(z[0])
 	}
-	return end.Phase, isc, nil
+	return current, isc, nil
 }
 
 func (m *model) warn(o *Outcome, sol *solution) {
@@ -291,13 +296,11 @@ func (m *model) compensate(x *Measure, drawn map[string][3]phasor.Spectrum) (act
 	for i := range sensed {
 		sensed[i] = phasor.New(s.Order())
 	}
-	found := 0
 	for i := range s.NonlinearLoads {
 		l := &s.NonlinearLoads[i]
 		if !x.sensesLoad(l) {
 			continue
 		}
-		found++
 		if m.volts[l.Bus] != m.volts[x.Bus] {
 			return activeResult{}, &FieldError{Item: x.Name, Field: "senses", Problem: l.Name + " stands on another voltage level", Remedy: "put the active filter on the voltage level of the loads it senses"}
 		}
@@ -306,9 +309,6 @@ func (m *model) compensate(x *Measure, drawn map[string][3]phasor.Spectrum) (act
 				sensed[p][h] += spectrum[h]
 			}
 		}
-	}
-	if found == 0 {
-		return activeResult{}, &FieldError{Item: x.Name, Field: "senses", Problem: "there is no non-linear load for it to sense", Remedy: "name the loads it senses, or put it on their bus"}
 	}
 	share := map[int]float64{}
 	for _, t := range x.Shares {

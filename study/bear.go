@@ -12,6 +12,9 @@ import (
 // measure tells what a measure that is on is made of and bears.
 func (m *model) measure(x *Measure, sol *solution, o *Outcome) MeasureResult {
 	r := MeasureResult{Name: x.Name, Kind: x.Kind, Bus: x.Bus, Notes: m.plan.notes[x.Name]}
+	if _, target := m.plan.origin.Find(x.Target); target != nil && r.Bus == "" {
+		r.Bus = GetField(target, "bus") // also when it is out of service in this state
+	}
 	if IsFilter(x.Kind) {
 		m.bears(&r, x.Name, m.branch[x.Name], x.RatedKV, "", o)
 		return r

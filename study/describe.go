@@ -89,6 +89,7 @@ var kinds = []KindInfo{
 	{Kind: KindMeasure, Key: "measures", Singular: "measure", Plural: "Measures"},
 	{Kind: KindAssessment, Key: "assessments", Singular: "assessment point", Plural: "Assessment points"},
 	{Kind: KindScan, Key: "scans", Singular: "impedance scan", Plural: "Impedance scans"},
+	{Kind: KindState, Key: "states", Singular: "operating state", Plural: "Operating states"},
 }
 
 var described = map[Kind][]Field{}

@@ -105,10 +105,13 @@ func (s *Study) references(f func(item any, field *Field, names []string) []stri
 			v := reflect.ValueOf(item).Elem()
 			for i := range described[k.Kind] {
 				d := &described[k.Kind][i]
+				at := v.FieldByIndex(d.index)
+				if d.Type == Rows {
+					rowReferences(item, d, at, f)
+				}
 				if d.Ref == nil {
 					continue
 				}
-				at := v.FieldByIndex(d.index)
 				if d.Type == Names {
 					old := at.Interface().([]string)
 					if next := f(item, d, old); !slices.Equal(next, old) {
@@ -117,6 +120,22 @@ func (s *Study) references(f func(item any, field *Field, names []string) []stri
 				} else if next := f(item, d, []string{at.String()}); len(next) == 1 {
 					at.SetString(next[0])
 				}
+			}
+		}
+	}
+}
+
+// rowReferences does the same for the columns of a list of rows.
+func rowReferences(item any, d *Field, list reflect.Value, f func(item any, field *Field, names []string) []string) {
+	for n := range d.Columns {
+		col := &d.Columns[n]
+		if col.Ref == nil {
+			continue
+		}
+		for r := range list.Len() {
+			at := list.Index(r).FieldByIndex(col.index)
+			if next := f(item, col, []string{at.String()}); len(next) == 1 && next[0] != at.String() {
+				at.SetString(next[0])
 			}
 		}
 	}

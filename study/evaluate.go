@@ -29,6 +29,7 @@ func Evaluate(ctx context.Context, s *Study, on []string) (*Outcome, error) {
 type Prepared struct {
 	study *Study
 	skin  map[string]func(h float64) float64 // by cable
+	stood map[string]*Study                  // by operating state: the study as it stands in it
 }
 
 // Prepare validates s. All problems found come back as one error.
@@ -36,7 +37,14 @@ func Prepare(s *Study) (*Prepared, error) {
 	if problems := s.Validate(); len(problems) > 0 {
 		return nil, FieldErrors(problems)
 	}
-	p := &Prepared{s, map[string]func(float64) float64{}}
+	p := &Prepared{s, map[string]func(float64) float64{}, map[string]*Study{}}
+	for _, name := range s.States() {
+		x, err := s.state(name)
+		if err != nil {
+			return nil, err
+		}
+		p.stood[name] = s.In(x)
+	}
 	for i := range s.Cables {
 		p.skin[s.Cables[i].Name] = s.Cables[i].skin(s)
 	}
@@ -46,9 +54,32 @@ func Prepare(s *Study) (*Prepared, error) {
 // Study returns the study that was prepared.
 func (p *Prepared) Study() *Study { return p.study }
 
-// Evaluate is the function of the same name for a prepared study.
+// States returns the names of the operating states, the normal one first.
+func (p *Prepared) States() []string { return p.study.States() }
+
+// Evaluate is the function of the same name for a prepared study, in its
+// normal state.
 func (p *Prepared) Evaluate(ctx context.Context, on []string) (*Outcome, error) {
-	m, err := p.model(on)
+	return p.EvaluateIn(ctx, on, "")
+}
+
+// EvaluateAll evaluates every operating state, in the order of States.
+func (p *Prepared) EvaluateAll(ctx context.Context, on []string) ([]*Outcome, error) {
+	var all []*Outcome
+	for _, state := range p.States() {
+		o, err := p.EvaluateIn(ctx, on, state)
+		if err != nil {
+			return nil, InState(state, err)
+		}
+		all = append(all, o)
+	}
+	return all, nil
+}
+
+// EvaluateIn evaluates one operating state; "" is the normal one. A name that
+// is no state is a *FieldError.
+func (p *Prepared) EvaluateIn(ctx context.Context, on []string, state string) (*Outcome, error) {
+	m, err := p.model(on, state)
 	if err != nil {
 		return nil, err
 	}
@@ -59,13 +90,25 @@ func (p *Prepared) Evaluate(ctx context.Context, on []string) (*Outcome, error) 
 	return m.outcome(ctx, sol)
 }
 
-// model returns the network with the named measures on.
-func (p *Prepared) model(on []string) (*model, error) {
-	plan, err := p.study.apply(on)
+// model returns the network with the named measures on, in an operating state.
+func (p *Prepared) model(on []string, state string) (*model, error) {
+	x, err := p.study.state(state)
 	if err != nil {
 		return nil, err
 	}
-	plan.skin = p.skin
+	name := NormalState
+	if x != nil {
+		name = x.Name
+	}
+	stood, ready := p.stood[name]
+	if !ready {
+		stood = p.study.In(x)
+	}
+	plan, err := stood.apply(on)
+	if err != nil {
+		return nil, err
+	}
+	plan.origin, plan.state, plan.skin = p.study, name, p.skin
 	return plan.build()
 }
 
@@ -127,7 +170,12 @@ func (m *model) named(err error) error { return asFieldError("", err) }
 // measures on, from one order to another, with its peaks and valleys refined.
 // EMFs are shorted and non-linear loads open.
 func (p *Prepared) Impedance(ctx context.Context, on []string, bus string, seq phasor.Sequence, from, to float64) (*ScanResult, error) {
-	m, err := p.model(on)
+	return p.ImpedanceIn(ctx, on, "", bus, seq, from, to)
+}
+
+// ImpedanceIn is Impedance in one operating state.
+func (p *Prepared) ImpedanceIn(ctx context.Context, on []string, state, bus string, seq phasor.Sequence, from, to float64) (*ScanResult, error) {
+	m, err := p.model(on, state)
 	if err != nil {
 		return nil, err
 	}

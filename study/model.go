@@ -42,6 +42,8 @@ type Study struct {
 	Assessments    []Assessment    `json:"assessments,omitempty" help:"Points where a limit set is applied."`
 	Scans          []ScanRequest   `json:"scans,omitempty" help:"Driving-point impedance scans wanted in the results."`
 
+	OperatingStates []OperatingState `json:"states,omitempty" help:"Ways in which the site is run; the study as stated is the normal one."`
+
 	Drawing map[string]Point `json:"drawing,omitempty" help:"Place of each bus on the single-line, by name; absent ones are laid out by themselves."`
 }
 
@@ -111,6 +113,8 @@ type Supply struct {
 	Named
 	Bus               string           `json:"bus" label:"Bus" ref:"bus" need:"yes" help:"Bus the supply feeds; the PCC as a rule."`
 	FaultMVA          float64          `json:"faultMVA,omitempty" label:"Fault level" unit:"MVA" range:"(0,1e6]" typical:"20..5000" help:"Three-phase fault level; state this or the fault current."`
+	FaultMinMVA       float64          `json:"faultMinMVA,omitempty" label:"Lowest fault level" unit:"MVA" range:"(0,1e6]" typical:"20..5000" default:"not stated" help:"Lowest three-phase fault level that occurs, for operating states."`
+	FaultMaxMVA       float64          `json:"faultMaxMVA,omitempty" label:"Highest fault level" unit:"MVA" range:"(0,1e6]" typical:"20..5000" default:"not stated" help:"Highest three-phase fault level that occurs, for operating states."`
 	FaultKA           float64          `json:"faultKA,omitempty" label:"Fault current" unit:"kA" range:"(0,1000]" typical:"1..63" help:"Three-phase fault current; state this or the fault level."`
 	XOverR            float64          `json:"xOverR" label:"X/R" range:"[0.01,1000]" typical:"2..30" need:"yes" help:"Reactance over resistance of the fault impedance at order 1."`
 	ZeroSequenceRatio float64          `json:"zeroSequenceRatio,omitempty" label:"Z0/Z1" range:"[0.01,100]" typical:"0.5..5" default:"no zero-sequence path" help:"Zero-sequence over positive-sequence impedance; absent when the supply neutral is not earthed."`

@@ -39,6 +39,8 @@ func NewItem(kind Kind) any {
 		item = &Assessment{Set: "iec61000-2-4-class2"}
 	case KindScan:
 		item = &ScanRequest{}
+	case KindState:
+		item = &OperatingState{}
 	default:
 		return nil
 	}

@@ -10,6 +10,7 @@ import (
 // line to neutral in V rms, currents in A rms, impedances in ohm.
 type Outcome struct {
 	Study *Study   // the study that was evaluated, before its measures were applied
+	State string   // the operating state in which it stood
 	On    []string // names of the measures that were on, in file order
 
 	Buses    []BusResult     // in file order, outlets of low-pass measures after them

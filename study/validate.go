@@ -38,6 +38,7 @@ func (s *Study) Validate() []*FieldError {
 	}
 	if len(c.found) == 0 {
 		c.items()
+		c.operating()
 		c.measures()
 		c.wiring()
 	}
@@ -417,6 +418,7 @@ func (c *checker) wiring() {
 		}
 		return
 	}
+	c.wired()
 }
 
 // Warnings returns values that are possible but unusual, in plain sentences

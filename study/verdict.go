@@ -26,12 +26,13 @@ func (s State) String() string {
 
 // A Sentence is the verdict at one assessment point, in plain words.
 type Sentence struct {
-	Point  string      // name of the assessment
-	Bus    string      // bus assessed
-	State  State       // after
-	Text   string      // after: "PCC: meets IEEE 519-2022 with 18 % to spare (closest: 11th harmonic current)."
-	Before string      // before: "Before: 11th harmonic voltage at 1.40 x its limit.", empty when there is no before
-	Worst  *limits.Row // the row closest to or furthest over its limit, nil when none was assessed
+	Point     string      // name of the assessment
+	Bus       string      // bus assessed
+	State     State       // after
+	Text      string      // after: "PCC: meets IEEE 519-2022 with 18 % to spare (closest: 11th harmonic current)."
+	Before    string      // before: "Before: 11th harmonic voltage at 1.40 x its limit.", empty when there is no before
+	Operating string      // operating state that decides, when several were evaluated
+	Worst     *limits.Row // the row closest to or furthest over its limit, nil when none was assessed
 }
 
 // Worst returns the row with the highest share of its limit, nil without rows.
