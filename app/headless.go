@@ -199,34 +199,41 @@ func list(names []string) string {
 	return strings.Join(names, ", ")
 }
 
-// evaluate returns the outcome without measures and with those asked for.
-func (r *request) evaluate(ctx context.Context) (before, after *study.Outcome, err error) {
-	if before, err = r.prepared.Evaluate(ctx, nil); err != nil {
+// evaluate returns the outcomes in every operating state, the normal one first,
+// without measures and with those asked for.
+func (r *request) evaluate(ctx context.Context) (before, after []*study.Outcome, err error) {
+	if before, err = r.prepared.EvaluateAll(ctx, nil); err != nil {
 		return nil, nil, err
 	}
 	if len(r.on) == 0 {
 		return before, before, nil
 	}
-	after, err = r.prepared.Evaluate(ctx, r.on)
+	after, err = r.prepared.EvaluateAll(ctx, r.on)
 	return before, after, err
 }
 
 // say prints warnings and verdicts and returns the exit code.
-func (r *request) say(w io.Writer, before, after *study.Outcome) int {
+func (r *request) say(w io.Writer, before, after []*study.Outcome) int {
 	fmt.Fprintf(w, "Measures on: %s\n", list(r.on))
 	for _, text := range r.study.Warnings() {
 		fmt.Fprintln(w, "Note:", text)
 	}
-	for _, text := range after.Warnings {
-		fmt.Fprintln(w, "Note:", text)
+	for i, o := range after {
+		for _, text := range o.Warnings {
+			if i == 0 {
+				fmt.Fprintln(w, "Note:", text)
+			} else if !slices.Contains(after[0].Warnings, text) {
+				fmt.Fprintf(w, "Note, in the operating state %s: %s\n", o.State, text)
+			}
+		}
 	}
 	if len(r.on) == 0 {
 		before = nil // it would repeat the same words
 	}
-	for _, s := range study.Verdict(before, after) {
+	for _, s := range study.VerdictOver(before, after) {
 		fmt.Fprintln(w, strings.TrimSpace(s.Text+" "+s.Before))
 	}
-	if !after.MeetsAll() {
+	if !study.MeetsOver(after) {
 		return exitOver
 	}
 	return exitOK
@@ -257,7 +264,7 @@ func writeHandout(args []string, stdout io.Writer) (int, error) {
 	if err != nil {
 		return 0, err
 	}
-	in := handout.Input{Study: r.study, Before: before, After: after, File: r.file, Version: readMeta().Version}
+	in := handout.Input{Study: r.study, Before: before[0], After: after[0], BeforeStates: before, AfterStates: after, File: r.file, Version: readMeta().Version}
 	if _, err := handout.Write(context.Background(), r.out, in, handout.Options{Paper: r.paper}); err != nil {
 		return 0, err
 	}

@@ -3,6 +3,7 @@ package study
 import (
 	"errors"
 	"fmt"
+	"strings"
 )
 
 // InState says in which operating state an error arose. Errors that name the
@@ -102,4 +103,39 @@ func inserted(sentence, words string) string {
 		return sentence[:n-1] + words + "."
 	}
 	return sentence + words
+}
+
+// StateWords says what an operating state changes: "C2 out of service; load
+// 40 %"; "as stated" when nothing.
+func (s *Study) StateWords(name string) string {
+	x, err := s.state(name)
+	if err != nil || x == nil {
+		return "as stated"
+	}
+	var parts []string
+	if len(x.Out) > 0 {
+		parts = append(parts, join(x.Out)+" out of service")
+	}
+	if len(x.Close) > 0 {
+		parts = append(parts, join(x.Close)+" closed")
+	}
+	if len(x.Open) > 0 {
+		parts = append(parts, join(x.Open)+" open")
+	}
+	switch x.FaultLevel {
+	case "min":
+		parts = append(parts, "lowest fault level")
+	case "max":
+		parts = append(parts, "highest fault level")
+	}
+	if x.LoadPercent != 0 && x.LoadPercent != 100 {
+		parts = append(parts, fmt.Sprintf("load %g %%", x.LoadPercent))
+	}
+	for _, l := range x.Loads {
+		parts = append(parts, fmt.Sprintf("%s %g %%", l.Item, l.Percent))
+	}
+	if len(parts) == 0 {
+		return "as stated"
+	}
+	return strings.Join(parts, "; ")
 }

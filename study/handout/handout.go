@@ -48,6 +48,10 @@ type Input struct {
 	Before *study.Outcome // without measures; may be nil
 	After  *study.Outcome // with the measures that are on; required
 
+	// The same in every operating state, the normal one first, which Before and
+	// After are; nil when the verdict is to rest on Before and After alone.
+	BeforeStates, AfterStates []*study.Outcome
+
 	File    []byte // the study file as it is on disk, for its digest; nil: as Save would write it
 	Version string // of the program, as printed; may be empty
 }
@@ -95,6 +99,25 @@ func Write(ctx context.Context, dir string, in Input, opt Options) (*Report, err
 	}
 	r.Files = append(r.Files, contentsName)
 	return r, nil
+}
+
+// verdict returns the sentences over all operating states, against before as
+// far as it was computed.
+func (in *Input) verdict() []study.Sentence {
+	if len(in.AfterStates) == 0 {
+		return study.Verdict(in.Before, in.After)
+	}
+	return study.VerdictOver(in.BeforeStates, in.AfterStates)
+}
+
+// printedVerdict leaves before out where nothing is compared with it.
+func (in *Input) printedVerdict() []study.Sentence {
+	if in.compared() != nil {
+		return in.verdict()
+	}
+	alone := *in
+	alone.Before, alone.BeforeStates = nil, nil
+	return alone.verdict()
 }
 
 // digest returns the sha256 of the study file in hexadecimal.

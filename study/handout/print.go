@@ -15,7 +15,8 @@ import (
 type printer struct {
 	*book
 	study         *study.Study
-	before, after *study.Outcome // before is nil when there is nothing to compare
+	before, after *study.Outcome   // before is nil when there is nothing to compare
+	sentences     []study.Sentence // the verdict over all operating states
 	doc           *Results
 	figures       *figureSet
 }
@@ -24,16 +25,17 @@ type printer struct {
 func printed(ctx context.Context, in Input, doc *Results, set *figureSet, opt Options) ([]byte, error) {
 	s := in.study()
 	p := &printer{
-		book:    newBook(newCanvas(s.Title.Study, s.Title.Author, opt.Date), opt.Paper),
-		study:   s,
-		before:  in.compared(),
-		after:   in.After,
-		doc:     doc,
-		figures: set,
+		book:      newBook(newCanvas(s.Title.Study, s.Title.Author, opt.Date), opt.Paper),
+		study:     s,
+		before:    in.compared(),
+		after:     in.After,
+		sentences: in.printedVerdict(),
+		doc:       doc,
+		figures:   set,
 	}
 	p.open(false)
 	for _, part := range []func(){
-		p.front, p.againstLimits, p.busTable, p.evidence, p.measures, p.assumptions, p.method, p.cautions,
+		p.front, p.againstLimits, p.operatingStates, p.busTable, p.evidence, p.measures, p.assumptions, p.method, p.cautions,
 	} {
 		if err := ctx.Err(); err != nil {
 			return nil, err

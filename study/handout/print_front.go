@@ -95,7 +95,7 @@ func (p *printer) banner(head, text string) {
 func (p *printer) verdicts() {
 	p.section("Verdict", 40)
 	const indent = vg.Length(84)
-	for _, v := range study.Verdict(p.before, p.after) {
+	for _, v := range p.sentences {
 		spans := []span{{p.body, v.Text}}
 		if v.Before != "" {
 			spans = append(spans, span{p.body.in(p.palette.Muted), "\n" + v.Before})

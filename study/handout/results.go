@@ -22,6 +22,7 @@ type Results struct {
 	Study      StudyInfo    `json:"study"`
 	Settings   Settings     `json:"settings"`
 	Verdict    []Verdict    `json:"verdict"` // one an assessment point, in the study's order
+	States     []Operating  `json:"states"`  // the operating states, the normal one first
 	Before     *State       `json:"before"`  // without any measure; null when it was not computed
 	After      *State       `json:"after"`   // with the measures that are on
 	Provenance []InputValue `json:"provenance"`

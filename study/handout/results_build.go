@@ -33,9 +33,18 @@ func NewResults(in Input) (*Results, error) {
 		Settings: Settings{FrequencyHz: Num(s.FrequencyHz), MaxOrder: s.Order()},
 		Verdict:  []Verdict{},
 	}
-	for _, v := range study.Verdict(in.Before, in.After) {
+	for _, v := range in.verdict() {
 		doc.Verdict = append(doc.Verdict, Verdict{v.Point, v.Bus, v.State.String(), v.Text, v.Before})
 	}
+	after := in.AfterStates
+	if after == nil && in.After != nil {
+		after = []*study.Outcome{in.After}
+	}
+	before := in.BeforeStates
+	if before == nil && in.Before != nil && in.After != nil {
+		before = []*study.Outcome{in.Before}
+	}
+	doc.States = b.operating(s, before, after)
 	doc.Before = b.state("before", in.Before)
 	doc.After = b.state("after", in.After)
 	if doc.Provenance, doc.Defaults, err = inputs(s); err != nil {
