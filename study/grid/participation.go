@@ -22,18 +22,23 @@ func (sc *Scanner) Participants(h float64) ([]Participation, error) {
 	if _, err := sc.At(h); err != nil {
 		return nil, err
 	}
-	s := sc.s
+	return sc.s.participants(sc.prim, sc.v), nil
+}
+
+// participants returns the elements of more than a tenth of the reactive power
+// that swings at node voltages v, by the elements' admittances.
+func (s *System) participants(prim []primitive, v []complex128) []Participation {
 	reactive := make([]float64, len(s.net.elements))
 	var inductive, capacitive float64
-	for i, y := range sc.prim {
+	for i, y := range prim {
 		p := &s.place[i]
 		if !p.live {
 			continue
 		}
-		v0 := sc.v[p.n0]
+		v0 := v[p.n0]
 		power := v0 * cmplx.Conj(y.y00*v0)
 		if p.low >= 0 {
-			v1 := sc.v[p.n1]
+			v1 := v[p.n1]
 			power = v0*cmplx.Conj(y.y00*v0+y.y01*v1) + v1*cmplx.Conj(y.y01*v0+y.y11*v1)
 		}
 		reactive[i] = imag(power)
@@ -56,5 +61,5 @@ func (sc *Scanner) Participants(h float64) ([]Participation, error) {
 			out[j], out[j-1] = out[j-1], out[j]
 		}
 	}
-	return out, nil
+	return out
 }
