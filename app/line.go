@@ -75,6 +75,14 @@ func (l *linePart) reset() {
 	l.panel.Fit()
 }
 
+// resonances returns those that the impedance at the selected bus shows.
+func (l *linePart) resonances() []study.Peak {
+	if p := l.w.picture; p != nil && p.ScanAfter != nil {
+		return p.ScanAfter.Peaks
+	}
+	return nil
+}
+
 // refresh draws the project as it is now with the newest results, and returns
 // how long the drawing took.
 func (l *linePart) refresh() time.Duration {
@@ -89,7 +97,7 @@ func (l *linePart) refresh() time.Duration {
 	if p := l.w.picture; p != nil {
 		before, after = p.Before, p.After
 	}
-	l.figure = figure.SingleLine(s, before, after, l.layout, figure.View{Selected: l.w.sel.item()})
+	l.figure = figure.SingleLine(s, before, after, l.layout, figure.View{Selected: l.w.sel.item(), Resonances: l.resonances()})
 	l.panel.Natural = l.figure.Size
 	if len(s.Buses) == 0 {
 		l.panel.Natural = vg.Point{} // a sentence, at the panel's own size
@@ -180,5 +188,5 @@ func (l *linePart) paper() *figure.Figure {
 	if p == nil {
 		return l.figure
 	}
-	return figure.SingleLine(l.w.project.Study(), p.Before, p.After, l.layout, figure.View{Plain: true})
+	return figure.SingleLine(l.w.project.Study(), p.Before, p.After, l.layout, figure.View{Plain: true, Resonances: l.resonances()})
 }

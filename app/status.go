@@ -15,7 +15,7 @@ func checkText(p *Picture) string {
 		return "Not solved"
 	}
 	c := p.After.Check
-	text := fmt.Sprintf("Solution checked: residual %.0e, power balance %.0e", c.Residual, c.Balance)
+	text := fmt.Sprintf("Solution checked: residual %.0e, power balance %.0e, reciprocity %.0e", c.Residual, c.Balance, c.Reciprocity)
 	if c.Fallback > 0 {
 		text += fmt.Sprintf(", %s by the dense solver", count(c.Fallback, "order"))
 	}

@@ -33,11 +33,11 @@ func (m *model) outcome(ctx context.Context, sol *solution) (*Outcome, error) {
 	}
 	for i := range s.Scans {
 		q := &s.Scans[i]
-		if !m.system.Live(m.bus[q.Bus]) {
-			o.Warnings = append(o.Warnings, fmt.Sprintf("Scan %s: bus %s has no supply, so it has no impedance.", q.Name, q.Bus))
+		if bus := m.unfed(q.Bus, q.At); bus != "" {
+			o.Warnings = append(o.Warnings, fmt.Sprintf("Scan %s: bus %s has no supply, so it has no impedance.", q.Name, bus))
 			continue
 		}
-		scan, err := m.scan(ctx, q.Name, q.Bus, sequenceOf(q.Sequence), or(q.From, 1), or(q.To, float64(s.Order())))
+		scan, err := m.scan(ctx, q.Name, q.Bus, q.At, sequenceOf(q.Sequence), or(q.From, 1), or(q.To, float64(s.Order())))
 		if err != nil {
 			return nil, err
 		}
@@ -45,6 +45,16 @@ func (m *model) outcome(ctx context.Context, sol *solution) (*Outcome, error) {
 	}
 	m.warn(o, sol)
 	return o, nil
+}
+
+// unfed returns the first of the named buses that no supply reaches.
+func (m *model) unfed(buses ...string) string {
+	for _, b := range buses {
+		if b != "" && !m.system.Live(m.bus[b]) {
+			return b
+		}
+	}
+	return ""
 }
 
 func sequenceOf(word string) phasor.Sequence {

@@ -186,5 +186,5 @@ func (p *Prepared) ImpedanceIn(ctx context.Context, on []string, state, bus stri
 	if !m.system.Live(id) {
 		return nil, fmt.Errorf("bus %q has no supply, so it has no impedance to scan", bus)
 	}
-	return m.scan(ctx, "", bus, seq, from, to)
+	return m.scan(ctx, "", bus, "", seq, from, to)
 }

@@ -40,7 +40,7 @@ type Study struct {
 	Filters        []Filter        `json:"filters,omitempty" help:"Passive filters that stand already."`
 	Measures       []Measure       `json:"measures,omitempty" help:"Changes that can be flipped on and off."`
 	Assessments    []Assessment    `json:"assessments,omitempty" help:"Points where a limit set is applied."`
-	Scans          []ScanRequest   `json:"scans,omitempty" help:"Driving-point impedance scans wanted in the results."`
+	Scans          []ScanRequest   `json:"scans,omitempty" help:"Impedance scans wanted in the results: driving-point or transfer."`
 
 	OperatingStates []OperatingState `json:"states,omitempty" help:"Ways in which the site is run; the study as stated is the normal one."`
 
@@ -362,10 +362,12 @@ type Assessment struct {
 	Noted
 }
 
-// ScanRequest asks for one driving-point impedance scan in the results.
+// ScanRequest asks for one driving-point or transfer impedance scan in the
+// results.
 type ScanRequest struct {
 	Named
 	Bus      string  `json:"bus" label:"Bus" ref:"bus" need:"yes" help:"Bus that is looked into."`
+	At       string  `json:"at,omitempty" label:"Voltage at" ref:"bus" default:"the bus itself" help:"Transfer impedance: the bus whose voltage is taken for a current into the first."`
 	Sequence string  `json:"sequence,omitempty" label:"Sequence" choices:"positive|negative|zero" default:"positive" help:"Sequence network."`
 	From     float64 `json:"fromOrder,omitempty" label:"From order" range:"[0.1,100]" default:"1" help:"First order."`
 	To       float64 `json:"toOrder,omitempty" label:"To order" range:"[0.1,100]" default:"highest order" help:"Last order."`

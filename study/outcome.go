@@ -1,6 +1,7 @@
 package study
 
 import (
+	"quietbus/study/grid"
 	"quietbus/study/limits"
 	"quietbus/study/phasor"
 )
@@ -98,10 +99,11 @@ type Gain struct {
 	LagDeg float64 // phase lag of the outlet, positive when it lags
 }
 
-// ScanResult is a driving-point impedance against order.
+// ScanResult is a driving-point or transfer impedance against order.
 type ScanResult struct {
 	Name     string // of the ScanRequest, empty for a scan made on the fly
 	Bus      string
+	At       string // transfer impedance: bus whose voltage is taken for a current into Bus; empty: its own
 	Sequence phasor.Sequence
 	Orders   []float64
 	Z        []complex128 // ohm, same length
@@ -118,6 +120,11 @@ type Peak struct {
 	// Who makes a parallel resonance: the items whose reactive power swings in
 	// it, largest share first. Nil for valleys.
 	Capacitive, Inductive []string
+	// Where it swings, largest share first: the squares of the mode's eigenvector.
+	// Nil for valleys.
+	Buses []BusShare
+
+	mode *grid.Mode
 }
 
 // Words says who makes the peak: "C1 against T1 and Grid"; empty when nobody
@@ -135,4 +142,6 @@ type Check struct {
 	Balance  float64 // worst complex power imbalance by order, relative
 	Fallback int     // orders that needed the dense pivoted solver
 	Rounds   int     // iterations of the order 1 power flow
+
+	Reciprocity float64 // difference of a transfer impedance from its reverse, relative
 }

@@ -7,13 +7,16 @@ import (
 	"quietbus/study/phasor"
 )
 
-// scan looks into a live bus.
-func (m *model) scan(ctx context.Context, name, bus string, seq phasor.Sequence, from, to float64) (*ScanResult, error) {
-	r, err := m.system.ScanAdaptive(ctx, m.bus[bus], seq, from, to)
+// scan looks into a live bus, or from it to another one.
+func (m *model) scan(ctx context.Context, name, bus, at string, seq phasor.Sequence, from, to float64) (*ScanResult, error) {
+	if at == bus {
+		at = ""
+	}
+	r, err := m.curve(ctx, bus, at, seq, from, to)
 	if err != nil {
 		return nil, m.named(err)
 	}
-	s := &ScanResult{Name: name, Bus: bus, Sequence: seq, Orders: r.Orders, Z: r.Z, Peaks: peaks(r.Peaks), Valleys: peaks(r.Valleys)}
+	s := &ScanResult{Name: name, Bus: bus, At: at, Sequence: seq, Orders: r.Orders, Z: r.Z, Peaks: peaks(r.Peaks), Valleys: peaks(r.Valleys)}
 	scanner := m.system.NewScanner(m.bus[bus], seq)
 	for i := range s.Peaks {
 		p := &s.Peaks[i]
@@ -22,8 +25,18 @@ func (m *model) scan(ctx context.Context, name, bus string, seq phasor.Sequence,
 			return nil, m.named(err)
 		}
 		p.Capacitive, p.Inductive = m.sides(list)
+		if p.mode = m.system.ModeAt(m.bus[bus], seq, p.Order); p.mode != nil {
+			p.Buses = m.shares(p.mode)
+		}
 	}
 	return s, nil
+}
+
+func (m *model) curve(ctx context.Context, bus, at string, seq phasor.Sequence, from, to float64) (*grid.ScanCurve, error) {
+	if at == "" {
+		return m.system.ScanAdaptive(ctx, m.bus[bus], seq, from, to)
+	}
+	return m.system.TransferAdaptive(ctx, m.bus[bus], m.bus[at], seq, from, to)
 }
 
 func peaks(list []grid.Extremum) []Peak {

@@ -29,7 +29,7 @@ func TestPictures(t *testing.T) {
 	s, b, a := demo(t, "Filter 7", "Recorder filter")
 	sel := Selection{Bus: "Compressors"}
 	was, now := scans(t, s, "Compressors"), scans(t, s, "Compressors", "Filter 7")
-	line := SingleLine(s, b, a, nil, View{Selected: "Filter 7"})
+	line := SingleLine(s, b, a, nil, View{Selected: "Filter 7", Resonances: now[0].Peaks})
 	for _, p := range []struct {
 		name string
 		f    *Figure

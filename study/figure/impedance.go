@@ -30,7 +30,11 @@ func Impedance(before, after []*study.ScanResult, sources []int) *Figure {
 	if any := first(a, b); any != nil {
 		f.Key = "impedance-" + slug("bus "+any.Bus)
 		f.Title = fmt.Sprintf("Driving-point impedance at %s, %s sequence", any.Bus, any.Sequence)
-		f.Caption = "Magnitude against order, EMFs shorted and non-linear loads open." + resonances("before", b) + resonances("after", a)
+		if any.At != "" {
+			f.Key += "-" + slug(any.At)
+			f.Title = fmt.Sprintf("Transfer impedance from %s to %s, %s sequence", any.Bus, any.At, any.Sequence)
+		}
+		f.Caption = "Magnitude against order, EMFs shorted and non-linear loads open." + resonances("before", b) + resonances("after", a) + moves(b, a)
 	}
 	if len(sources) > 0 {
 		f.Caption += " Dots: the orders that loads inject."
@@ -64,6 +68,62 @@ func resonances(when string, r *study.ScanResult) string {
 		words = append(words, text)
 	}
 	return fmt.Sprintf(" Peaks %s: %s.", when, strings.Join(words, ", "))
+}
+
+// moves says what becomes of each resonance when the measures are on.
+func moves(b, a *study.ScanResult) string {
+	if b == nil || a == nil {
+		return ""
+	}
+	words := make([]string, 0, 6)
+	for _, m := range study.Moves(b.Peaks, a.Peaks) {
+		if len(words) < cap(words) {
+			words = append(words, m.Words())
+		}
+	}
+	if len(words) == 0 {
+		return ""
+	}
+	return " With the measures on, " + strings.Join(words, "; ") + "."
+}
+
+// peakText says of the resonances between two orders who makes them, where
+// they swing and what becomes of them.
+func peakText(b, a *study.ScanResult, from, to float64) string {
+	within := func(p *study.Peak) bool { return p != nil && p.Order >= from && p.Order < to }
+	text := ""
+	say := func(when string, p study.Peak) {
+		text += fmt.Sprintf("\n%s: %s Ω at order %s", when, number(p.Ohm), number(p.Order))
+		for _, words := range []string{p.Words(), p.Place()} {
+			if words != "" {
+				text += ", " + words
+			}
+		}
+	}
+	if a == nil || b == nil {
+		for _, p := range first(a, b).Peaks {
+			if within(&p) {
+				say("resonance", p)
+			}
+		}
+		return text
+	}
+	for _, m := range study.Moves(b.Peaks, a.Peaks) {
+		if within(m.Before) || within(m.After) {
+			if m.Before != nil {
+				say("resonance before", *m.Before)
+			}
+			switch {
+			case m.After == nil:
+				text += "\nafter: gone"
+			case m.Before == nil:
+				say("new resonance", *m.After)
+			default:
+				say("after", *m.After)
+			}
+		}
+	}
+	return text
 }
 
 func drawImpedance(p *pen, b, a *study.ScanResult, sources []int) []Hot {
@@ -303,6 +363,7 @@ func (x *axes) readouts(b, a *study.ScanResult) {
 				text += "\n" + [2]string{"before", "after"}[i] + "\t" + number(at(r, (h0+h1)/2)) + " Ω"
 			}
 		}
+		text += peakText(b, a, h0, h1)
 		x.hot(rect(x.x(h0), x.area.Min.Y, x.x(h1), x.area.Max.Y), "value", fmt.Sprint("h", k), text)
 	}
 }

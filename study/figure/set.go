@@ -37,7 +37,9 @@ func All(in Input) []*Figure {
 		}
 		shown = append(shown, now)
 		var was []*study.ScanResult
-		if k := slices.IndexFunc(in.ScansBefore, func(r *study.ScanResult) bool { return r.Bus == now.Bus && r.Sequence == now.Sequence }); k >= 0 {
+		if k := slices.IndexFunc(in.ScansBefore, func(r *study.ScanResult) bool {
+			return r.Bus == now.Bus && r.At == now.At && r.Sequence == now.Sequence
+		}); k >= 0 {
 			was = in.ScansBefore[k : k+1]
 		}
 		f := Impedance(was, []*study.ScanResult{now}, sources)
@@ -57,7 +59,7 @@ func All(in Input) []*Figure {
 		a := &o.Study.Assessments[i]
 		wave(Selection{Bus: a.Bus})
 		for _, r := range in.ScansAfter {
-			if r.Bus == a.Bus && r.Sequence == phasor.Positive {
+			if r.Bus == a.Bus && r.At == "" && r.Sequence == phasor.Positive {
 				scan(r)
 			}
 		}

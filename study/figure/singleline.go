@@ -1,9 +1,12 @@
 package figure
 
 import (
+	"cmp"
 	"fmt"
 	"image/color"
+	"math"
 	"slices"
+	"strconv"
 
 	"gonum.org/v1/plot/vg"
 	"gonum.org/v1/plot/vg/draw"
@@ -15,6 +18,8 @@ import (
 type View struct {
 	Selected string // name of the item that is framed
 	Plain    bool   // no switches: for paper
+
+	Resonances []study.Peak // after, beside those of the outcome's own scans: named at the bus where they swing most
 }
 
 // SingleLine draws the study as a single-line diagram with IEC 60617 symbols:
@@ -163,10 +168,24 @@ func (d *diagram) head(b *PlacedBus, ink color.Color, dead bool, was, now *study
 	}
 	words := d.busWords(b.Name, was, now, dead)
 	if brief {
-		d.write(x+3, nameY, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, end-x-3, words))
+		d.write(x+3, nameY, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, end-x-3, d.resonant(b.Name, words, end-x-3)))
 	} else {
-		d.write(text, y+10, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, x1-text, words))
+		d.write(text, y+10, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, x1-text, d.resonant(b.Name, words, x1-text)))
 	}
+}
+
+// resonant adds to a bus's words, where there is room, the resonance that
+// swings most there and who makes it.
+func (d *diagram) resonant(bus, words string, room vg.Length) string {
+	for _, p := range d.resonancesAt(bus) {
+		at := "  resonance at " + number(p.Order)
+		for _, more := range []string{at + ", " + p.Words(), at} {
+			if d.width(d.st.Body, words+more) <= room {
+				return words + more
+			}
+		}
+	}
+	return words
 }
 
 // busWords says voltage and distortion of a bus on one line.
@@ -260,7 +279,67 @@ func (d *diagram) busText(name string, was, now *study.BusResult) string {
 	if now != nil && now.Live {
 		text += map[bool]string{true: "\nTHD\t", false: "\nTHD after\t"}[was == nil || d.before == d.after] + number(100*now.THD()) + " %"
 	}
+	for _, p := range d.resonancesAt(name) {
+		text += fmt.Sprintf("\nresonance\torder %s, %s", number(p.Order), p.Words())
+	}
 	return text
+}
+
+// peaking returns the size of an item and, where it is a capacitor that makes
+// a resonance and there is room, the order of that.
+func (d *diagram) peaking(name string, room vg.Length) string {
+	words := d.sizes[name]
+	for _, p := range d.resonances() {
+		if slices.Contains(p.Capacitive, name) {
+			if more := words + ", peak at " + strconv.FormatFloat(p.Order, 'f', 1, 64); d.width(d.st.Body, more) <= room {
+				return more
+			}
+		}
+	}
+	return words
+}
+
+// peakText lists the resonances that an item takes part in.
+func (d *diagram) peakText(name string) string {
+	text := ""
+	for _, p := range d.resonances() {
+		if slices.Contains(p.Capacitive, name) || slices.Contains(p.Inductive, name) {
+			text += fmt.Sprintf("\nresonance\torder %s, %s", number(p.Order), p.Words())
+		}
+	}
+	return text
+}
+
+// resonances lists the resonances after whose makers are known, rising.
+func (d *diagram) resonances() []study.Peak {
+	all := d.view.Resonances
+	if d.after != nil {
+		for i := range d.after.Scans {
+			all = append(all[:len(all):len(all)], d.after.Scans[i].Peaks...)
+		}
+	}
+	var out []study.Peak
+	for _, p := range all {
+		if p.Words() == "" || p.Q < 1.5 {
+			continue
+		}
+		if !slices.ContainsFunc(out, func(q study.Peak) bool { return math.Abs(q.Order-p.Order) < 0.02*p.Order }) {
+			out = append(out, p)
+		}
+	}
+	slices.SortFunc(out, func(a, b study.Peak) int { return cmp.Compare(a.Order, b.Order) })
+	return out
+}
+
+// resonancesAt lists those that swing most at a bus.
+func (d *diagram) resonancesAt(bus string) []study.Peak {
+	var out []study.Peak
+	for _, p := range d.resonances() {
+		if len(p.Buses) > 0 && p.Buses[0].Bus == bus {
+			out = append(out, p)
+		}
+	}
+	return out
 }
 
 // sparkline is a small spectrum: before thin beside after solid, orders 2 to 25.
@@ -349,11 +428,11 @@ func (d *diagram) row(b *PlacedBus, row Row, stem, y float64) {
 	x := q.X + 10
 	end := px(b.X + columnWidth)
 	d.write(x, q.Y+5, left, d.st.Head, ink, d.fit(d.st.Head, end-x, row.Name))
-	d.write(x, q.Y-5.2, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, end-x, d.sizes[row.Name]))
+	d.write(x, q.Y-5.2, left, d.st.Body, d.st.Muted, d.fit(d.st.Body, end-x, d.peaking(row.Name, end-x)))
 	half := px(itemHeight)/2 - 0.5
 	r := rect(px(stem)+2, q.Y-half, end, q.Y+half)
 	d.frame(row.Name, r)
-	d.hot(r, "item", row.Name, row.Name+"\n"+study.InfoOf(row.Kind).Singular+"\n"+d.sizes[row.Name])
+	d.hot(r, "item", row.Name, row.Name+"\n"+study.InfoOf(row.Kind).Singular+"\n"+d.sizes[row.Name]+d.peakText(row.Name))
 }
 
 func (d *diagram) dash(ink color.Color) []vg.Length {

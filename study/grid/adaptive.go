@@ -28,10 +28,19 @@ type Extremum struct {
 // straight line, so that a narrow peak is resolved; peaks and valleys are then
 // refined by golden section on |Z|.
 func (s *System) ScanAdaptive(ctx context.Context, bus BusID, q phasor.Sequence, from, to float64) (*ScanCurve, error) {
-	var failed error
+	return s.adaptive(ctx, s.NewScanner(bus, q).At, from, to)
+}
+
+// TransferAdaptive is ScanAdaptive for the voltage at another bus.
+func (s *System) TransferAdaptive(ctx context.Context, bus, at BusID, q phasor.Sequence, from, to float64) (*ScanCurve, error) {
 	scanner := s.NewScanner(bus, q)
+	return s.adaptive(ctx, func(h float64) (complex128, error) { return scanner.Transfer(h, at) }, from, to)
+}
+
+func (s *System) adaptive(ctx context.Context, at func(float64) (complex128, error), from, to float64) (*ScanCurve, error) {
+	var failed error
 	z := func(h float64) complex128 {
-		v, err := scanner.At(h)
+		v, err := at(h)
 		if err == nil {
 			err = ctx.Err()
 		}

@@ -20,6 +20,7 @@ type Injection struct {
 type Check struct {
 	Residual, Balance float64
 	Fallback, Rounds  int
+	Reciprocity       float64 // of one pair of buses at one order, relative
 }
 
 // Solution is the network solved at orders 1..H.
@@ -44,6 +45,7 @@ func (s *System) Harmonics(ctx context.Context, base *Fundamental, order int, in
 		sol.seq[q][1], sol.prim[q][1] = base.seq[q], base.prim[q]
 	}
 	w := s.newWork()
+	w.prims, w.volts = s.stores(order, injections, len(w.shunts) > 0)
 	for h := 2; h <= order; h++ {
 		if err := ctx.Err(); err != nil {
 			return nil, err
@@ -52,10 +54,46 @@ func (s *System) Harmonics(ctx context.Context, base *Fundamental, order int, in
 			return nil, err
 		}
 	}
+	if sol.Check.Reciprocity = s.reciprocity(w); sol.Check.Reciprocity > 1e-7 {
+		return nil, fmt.Errorf("the solution fails its own check: reciprocity %.1e", sol.Check.Reciprocity)
+	}
 	if sol.Check.Residual > 1e-7 || sol.Check.Balance > 1e-7 {
 		return nil, fmt.Errorf("the solution fails its own check: residual %.1e, power balance %.1e", sol.Check.Residual, sol.Check.Balance)
 	}
 	return sol, nil
+}
+
+// stores returns room for the admittances and voltages of all the orders and
+// sequences that will carry something.
+func (s *System) stores(order int, injections []Injection, coupled bool) ([]primitive, []complex128) {
+	count := 0
+	for h := 2; h <= order; h++ {
+		var some [3]bool
+		for i := range injections {
+			in := &injections[i]
+			phase := [3]complex128{in.Current[0].At(h), in.Current[1].At(h), in.Current[2].At(h)}
+			if phase == ([3]complex128{}) || !s.live[s.node[in.Bus]] {
+				continue
+			}
+			for q, v := range phasor.ToSequence(phase) {
+				some[q] = some[q] || cmplxAbs1(v) > 1e-12
+			}
+		}
+		for _, sup := range s.supplies {
+			for q := range some {
+				some[q] = some[q] || sup.emf(h, phasor.Sequence(q)) != 0
+			}
+		}
+		if coupled && some != ([3]bool{}) {
+			some = [3]bool{true, true, true}
+		}
+		for _, x := range some {
+			if x {
+				count++
+			}
+		}
+	}
+	return make([]primitive, count*len(s.net.elements)), make([]complex128, count*s.nodes)
 }
 
 // work is what one order needs, kept from order to order.
@@ -65,6 +103,19 @@ type work struct {
 	b        []complex128 // right-hand side in elimination order
 	residual []complex128
 	shunts   []ElementID
+	prims    []primitive  // room for the admittances of the orders to come
+	volts    []complex128 // room for their voltages
+}
+
+// room returns the next admittances and voltages of a solution, from the
+// store that was made for all of its orders.
+func (w *work) room(elements, nodes int) ([]primitive, []complex128) {
+	if len(w.prims) < elements || len(w.volts) < nodes {
+		return make([]primitive, elements), make([]complex128, nodes)
+	}
+	p, v := w.prims[:elements:elements], w.volts[:nodes:nodes]
+	w.prims, w.volts = w.prims[elements:], w.volts[nodes:]
+	return p, v
 }
 
 func (s *System) newWork() *work {
@@ -91,7 +142,7 @@ func (s *System) order(sol *Solution, w *work, h int, injections []Injection) er
 		if !sourced[q] && !coupled {
 			continue
 		}
-		sol.prim[q][h], sol.seq[q][h] = make([]primitive, len(s.net.elements)), make([]complex128, s.nodes)
+		sol.prim[q][h], sol.seq[q][h] = w.room(len(s.net.elements), s.nodes)
 		s.admit(sol.prim[q][h], float64(h), q)
 		if s.factor(w.factors[q], sol.prim[q][h], q) {
 			s.back(w.factors[q], w.current[q], w.b, sol.seq[q][h])
@@ -416,6 +467,21 @@ func (s *System) NewScanner(bus BusID, q phasor.Sequence) *Scanner {
 		one: make([]complex128, s.nodes), b: make([]complex128, s.nodes), v: make([]complex128, s.nodes)}
 	sc.one[sc.node] = 1
 	return sc
+}
+
+// Transfer returns the voltage at another bus, V, for 1 A into the scanner's
+// own bus at order h: the transfer impedance, ohm, with the angle that the
+// vector groups between the two give it.
+func (sc *Scanner) Transfer(h float64, to BusID) (complex128, error) {
+	s := sc.s
+	if _, err := sc.At(h); err != nil {
+		return 0, err
+	}
+	k := s.node[to]
+	if s.pinned(k, sc.q) || sc.v[k] == 0 {
+		return 0, fmt.Errorf("%s: no current at %s reaches this bus in the %s sequence, so there is no transfer impedance", s.busName(k), s.busName(sc.node), sc.q)
+	}
+	return s.turned(k, sc.q, s.turned(sc.node, mirror(sc.q), sc.v[k])), nil
 }
 
 // At returns the driving-point impedance at order h, ohm.

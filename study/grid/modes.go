@@ -12,7 +12,7 @@ import (
 // Mode is a resonance of the network in one sequence: an order at which an
 // eigenvalue of the nodal admittance matrix, in per unit of the nominal
 // voltages, has its smallest magnitude. Its eigenvector, found by inverse
-// iteration, says which buses swing and so which elements exchange the energy
+// iteration on that matrix, says which buses swing and so which elements exchange the energy
 // (modal analysis of harmonic resonance; Xu, Huang, Cui and Wang, Harmonic
 // resonance mode analysis, IEEE Trans. Power Delivery 20-2, 2005).
 type Mode struct {
@@ -112,56 +112,136 @@ func (s *System) Modes(ctx context.Context, q phasor.Sequence, from, to float64)
 	return out, nil
 }
 
-// iteration finds eigenvalues of one sequence's matrix, keeping its memory.
+// ModeAt returns the mode that shows at a bus at order h, which need not be
+// its own peak; nil when there is none that stands out.
+func (s *System) ModeAt(bus BusID, q phasor.Sequence, h float64) *Mode {
+	it := s.newIteration(q)
+	if s.pinned(s.node[bus], q) || !it.start(h, s.node[bus]) {
+		return nil
+	}
+	if _, ok := it.at(h); !ok {
+		return nil
+	}
+	return it.describe(h)
+}
+
+// iteration follows one eigenvalue of one sequence's matrix from order to
+// order, keeping its memory.
 type iteration struct {
-	s    *System
-	q    phasor.Sequence
-	f    *factors
-	prim []primitive
-	x, y []complex128 // in elimination order, per unit
+	s       *System
+	q       phasor.Sequence
+	f       *factors
+	prim    []primitive
+	x, y    []complex128 // in elimination order, per unit
+	v, work []complex128 // by node
 }
 
 func (s *System) newIteration(q phasor.Sequence) *iteration {
-	return &iteration{s: s, q: q, f: s.pat.newFactors(), prim: make([]primitive, len(s.net.elements)), x: make([]complex128, s.nodes), y: make([]complex128, s.nodes)}
+	n := s.nodes
+	block := make([]complex128, 4*n)
+	return &iteration{s: s, q: q, f: s.pat.newFactors(), prim: make([]primitive, len(s.net.elements)),
+		x: block[:n], y: block[n : 2*n], v: block[2*n : 3*n], work: block[3*n:]}
 }
 
-// at returns the inverse of the eigenvalue of smallest magnitude at order h,
-// starting from the vector in x and leaving its eigenvector there with squares
-// that add to one. It reports false at a singular matrix.
-func (it *iteration) at(h float64, rounds int) (complex128, bool) {
+// start sets the vector to what the network answers at order h to a current
+// into one node: at a resonance that shows there, the resonance itself.
+func (it *iteration) start(h float64, node int) bool {
 	s := it.s
 	s.admit(it.prim, h, it.q)
 	if !s.factor(it.f, it.prim, it.q) {
-		return 0, false
+		return false
 	}
-	var last complex128
-	for range rounds {
-		copy(it.y, it.x)
-		s.pat.solve(it.f, it.y)
-		// nodes that take no part keep out
-		for k := range s.nodes {
-			if s.pinned(k, it.q) {
-				it.y[s.pat.rank[k]] = 0
-			}
+	clear(it.x)
+	it.x[s.pat.rank[node]] = 1
+	s.pat.solve(it.f, it.x)
+	return it.normalise()
+}
+
+// normalise keeps nodes that take no part out of the vector and scales it so
+// that its squares add to one.
+func (it *iteration) normalise() bool {
+	var square complex128
+	var size float64
+	for k := range it.s.nodes {
+		i := it.s.pat.rank[k]
+		if it.s.pinned(k, it.q) {
+			it.x[i] = 0
 		}
-		var xy, yy complex128
-		for i, y := range it.y {
-			xy += it.x[i] * y
-			yy += y * y
+		square += it.x[i] * it.x[i]
+		size += real(it.x[i])*real(it.x[i]) + imag(it.x[i])*imag(it.x[i])
+	}
+	if !(cmplxAbs1(square) > 1e-9*size) { // no mode has a vector at right angles to itself
+		return false
+	}
+	scale := 1 / cmplx.Sqrt(square)
+	for i := range it.x {
+		it.x[i] *= scale
+	}
+	return true
+}
+
+// times fills it.y with the matrix times it.x, and returns x^T Y x.
+func (it *iteration) times() (quotient complex128) {
+	s := it.s
+	clear(it.y)
+	for i := range it.prim {
+		p, y := &s.place[i], &it.prim[i]
+		if !p.live {
+			continue
 		}
-		if cmplxAbs1(yy) < 1e-300 {
+		v0 := it.x[p.d0]
+		it.y[p.d0] += y.y00 * complex(p.s00, 0) * v0
+		if p.low >= 0 {
+			v1, across := it.x[p.d1], y.y01*complex(p.s01, 0)
+			it.y[p.d0] += across * v1
+			it.y[p.d1] += across*v0 + y.y11*complex(p.s11, 0)*v1
+		}
+	}
+	for i, x := range it.x {
+		quotient += x * it.y[i]
+	}
+	return quotient
+}
+
+// at returns the eigenvalue of the mode whose vector is in x, at order h, and
+// leaves its eigenvector there: inverse iteration with the Rayleigh quotient as
+// shift, which stays with the mode that it starts from. It reports false when
+// it does not settle.
+func (it *iteration) at(h float64) (complex128, bool) {
+	s := it.s
+	s.admit(it.prim, h, it.q)
+	value := it.times()
+	near := false
+	for range 30 {
+		off, size := 0.0, 0.0
+		for i, x := range it.x {
+			off, size = off+cmplxAbs1(it.y[i]-value*x), size+cmplxAbs1(it.y[i])+cmplxAbs1(value*x)
+		}
+		if off < 1e-11*size {
+			return value, true
+		}
+		near = off < 1e-6*size // rounding, where a stiff part dwarfs the eigenvalue
+		if !it.shift(value) {
+			return value, near
+		}
+		s.pat.solve(it.f, it.x)
+		if !it.normalise() {
 			return 0, false
 		}
-		size := 1 / cmplx.Sqrt(yy)
-		for i, y := range it.y {
-			it.x[i] = y * size
-		}
-		if cmplxAbs1(xy-last) < 1e-12*cmplxAbs1(xy) {
-			return xy, true
-		}
-		last = xy
+		value = it.times()
 	}
-	return last, true
+	return value, near
+}
+
+// shift factors the matrix less a value on its diagonal, or near that value
+// when just there it is singular: the better the value, the likelier.
+func (it *iteration) shift(value complex128) bool {
+	for _, off := range []complex128{0, 1e-8, 1e-6, 1e-4, 1e-2} {
+		if it.s.shifted(it.f, it.prim, it.q, value*(1+off)) {
+			return true
+		}
+	}
+	return false
 }
 
 // mode refines a resonance near order h that shows at a node; nil when there is
@@ -170,18 +250,18 @@ func (it *iteration) mode(ctx context.Context, h float64, node int) (*Mode, erro
 	if err := ctx.Err(); err != nil {
 		return nil, err
 	}
-	s := it.s
-	clear(it.x)
-	it.x[s.pat.rank[node]] = 1
-	if _, ok := it.at(h, 100); !ok {
+	if !it.start(h, node) {
+		return nil, nil
+	}
+	if _, ok := it.at(h); !ok {
 		return nil, nil
 	}
 	size := func(h float64) float64 {
-		v, ok := it.at(h, 40)
-		if !ok {
-			return math.Inf(1)
+		v, ok := it.at(h)
+		if !ok || v == 0 {
+			return math.NaN()
 		}
-		return cmplx.Abs(v)
+		return 1 / cmplx.Abs(v)
 	}
 	lo, hi, ok := bracket(size, h)
 	if !ok {
@@ -216,8 +296,10 @@ func bracket(f func(float64) float64, h float64) (lo, hi float64, ok bool) {
 			return mid - step, mid + step, true
 		case above > below:
 			mid, at = mid+step, above
-		default:
+		case below > at:
 			mid, at = mid-step, below
+		default: // NaN: the mode is lost
+			return 0, 0, false
 		}
 		if math.Abs(mid-h) > 0.1*h || mid-step <= 0 {
 			return 0, 0, false
@@ -230,9 +312,9 @@ func bracket(f func(float64) float64, h float64) (lo, hi float64, ok bool) {
 func (it *iteration) describe(h float64) *Mode {
 	s := it.s
 	d := h * 1e-6
-	above, ok1 := it.at(h+d, 100)
-	below, ok2 := it.at(h-d, 100)
-	if _, ok := it.at(h, 100); !ok || !ok1 || !ok2 {
+	above, ok1 := it.at(h + d)
+	below, ok2 := it.at(h - d)
+	if _, ok := it.at(h); !ok || !ok1 || !ok2 {
 		return nil
 	}
 	m := &Mode{Order: h, Q: h / 2 * math.Abs(cmplx.Phase(above/below)/(2*d)), shape: make([]complex128, s.nodes)}
@@ -254,14 +336,15 @@ func (it *iteration) describe(h float64) *Mode {
 		}
 	}
 	sort.SliceStable(m.Buses, func(i, j int) bool { return m.Buses[i].Share > m.Buses[j].Share })
-	v := make([]complex128, s.nodes) // in volts: per unit times the nominal voltage
-	for k := range v {
-		v[k] = m.shape[k] * complex(s.scale[k], 0)
+	for k := range it.v { // in volts: per unit times the nominal voltage
+		it.v[k] = m.shape[k] * complex(s.scale[k], 0)
 	}
-	m.Elements = s.participants(it.prim, v)
-	clear(it.y)
-	it.y[s.pat.rank[main]] = 1
-	s.pat.solve(it.f, it.y)
-	m.Ohm = cmplx.Abs(it.y[s.pat.rank[main]]) * s.scale[main] * s.scale[main]
+	m.Elements = s.participants(it.prim, it.v)
+	if s.factor(it.f, it.prim, it.q) {
+		clear(it.work)
+		it.work[main] = 1
+		s.back(it.f, it.work, it.y, it.v)
+		m.Ohm = cmplx.Abs(it.v[main])
+	}
 	return m
 }

@@ -56,6 +56,11 @@ func (s *System) admit(dst []primitive, h float64, q phasor.Sequence) {
 // per unit of each node's nominal voltage so that pivots are comparable. Nodes
 // that take no part are pinned to a unit pivot. It reports false when a pivot is poor.
 func (s *System) factor(f *factors, prim []primitive, q phasor.Sequence) bool {
+	return s.shifted(f, prim, q, 0)
+}
+
+// shifted is factor with a value taken from each place on the diagonal.
+func (s *System) shifted(f *factors, prim []primitive, q phasor.Sequence, shift complex128) bool {
 	clear(f.diag)
 	clear(f.low)
 	clear(f.size)
@@ -74,6 +79,8 @@ func (s *System) factor(f *factors, prim []primitive, q phasor.Sequence) bool {
 	for k := range s.nodes {
 		if s.pinned(k, q) {
 			f.add(int32(s.pat.rank[k]), 1)
+		} else if shift != 0 {
+			f.diag[s.pat.rank[k]] -= shift
 		}
 	}
 	return s.pat.factor(f)

@@ -64,7 +64,11 @@ func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet,
 	s, after := in.study(), in.After
 	set := &figureSet{}
 	look := &scans{study: s}
-	if f := figure.SingleLine(s, before, after, nil, figure.View{Plain: true}); f.Size.X > 0 && f.Size.Y > 0 {
+	peaks, err := look.peaks(ctx, after)
+	if err != nil {
+		return nil, err
+	}
+	if f := figure.SingleLine(s, before, after, nil, figure.View{Plain: true, Resonances: peaks}); f.Size.X > 0 && f.Size.Y > 0 {
 		set.single = &drawn{f, true}
 	}
 	if len(after.Points) > 0 {
@@ -101,7 +105,7 @@ func figures(ctx context.Context, in *Input, before *study.Outcome) (*figureSet,
 func scanFigures(before, after *study.Outcome, shown []string) (list []drawn) {
 	for i := range after.Scans {
 		now := &after.Scans[i]
-		if now.Sequence == phasor.Positive && slices.Contains(shown, now.Bus) {
+		if now.At == "" && now.Sequence == phasor.Positive && slices.Contains(shown, now.Bus) {
 			continue
 		}
 		var old []*study.ScanResult
@@ -166,13 +170,28 @@ func scanList(r *study.ScanResult) []*study.ScanResult {
 type scans struct {
 	study    *study.Study
 	prepared *study.Prepared // nil until one is made
+	seen     map[*study.Outcome]map[string]*study.ScanResult
+}
+
+// peaks returns the resonances that show at the assessed buses.
+func (s *scans) peaks(ctx context.Context, o *study.Outcome) (list []study.Peak, err error) {
+	for i := range s.study.Assessments {
+		r, err := s.at(ctx, o, s.study.Assessments[i].Bus)
+		if err != nil {
+			return nil, err
+		}
+		if r != nil {
+			list = append(list, r.Peaks...)
+		}
+	}
+	return list, nil
 }
 
 // at returns the positive-sequence impedance at a bus, nil for a bus without
 // supply.
 func (s *scans) at(ctx context.Context, o *study.Outcome, bus string) (*study.ScanResult, error) {
 	for i := range o.Scans {
-		if r := &o.Scans[i]; r.Bus == bus && r.Sequence == phasor.Positive {
+		if r := &o.Scans[i]; r.Bus == bus && r.At == "" && r.Sequence == phasor.Positive {
 			return r, nil
 		}
 	}
@@ -186,5 +205,18 @@ func (s *scans) at(ctx context.Context, o *study.Outcome, bus string) (*study.Sc
 		}
 		s.prepared = p
 	}
-	return s.prepared.Impedance(ctx, o.On, bus, phasor.Positive, 1, float64(s.study.Order()))
+	if r := s.seen[o][bus]; r != nil {
+		return r, nil
+	}
+	r, err := s.prepared.Impedance(ctx, o.On, bus, phasor.Positive, 1, float64(s.study.Order()))
+	if err == nil {
+		if s.seen == nil {
+			s.seen = map[*study.Outcome]map[string]*study.ScanResult{}
+		}
+		if s.seen[o] == nil {
+			s.seen[o] = map[string]*study.ScanResult{}
+		}
+		s.seen[o][bus] = r
+	}
+	return r, err
 }

@@ -35,17 +35,17 @@ func (p *printer) method() {
 	}
 	p.subsection("Check of the solution", 40)
 	t := &table{columns: []column{
-		{head: "", min: 60}, {head: "Residual", align: right}, {head: "Power balance", align: right}, {head: "Orders solved densely", align: right}, {head: "Rounds of order 1", align: right}, {head: "", flex: 1},
+		{head: "", min: 60}, {head: "Residual", align: right}, {head: "Power balance", align: right}, {head: "Reciprocity", align: right}, {head: "Orders solved densely", align: right}, {head: "Rounds of order 1", align: right}, {head: "", flex: 1},
 	}}
 	add := func(name string, c study.Check) {
-		t.add(plain(name, fmt.Sprintf("%.1e", c.Residual), fmt.Sprintf("%.1e", c.Balance), short(float64(c.Fallback)), short(float64(c.Rounds)), "")...)
+		t.add(plain(name, fmt.Sprintf("%.1e", c.Residual), fmt.Sprintf("%.1e", c.Balance), fmt.Sprintf("%.1e", c.Reciprocity), short(float64(c.Fallback)), short(float64(c.Rounds)), "")...)
 	}
 	if p.before != nil {
 		add("Before", p.before.Check)
 	}
 	add(p.stated(), p.after.Check)
 	p.table(t, 0)
-	p.note("Residual: worst |YV − I| over all orders and sequences, relative. Power balance: worst complex power imbalance by order, relative.")
+	p.note("Residual: worst |YV − I| over all orders and sequences, relative. Power balance: worst complex power imbalance by order, relative. Reciprocity: difference of a transfer impedance from its reverse, relative.")
 	p.spectra()
 	p.sets()
 }

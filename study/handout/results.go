@@ -219,6 +219,7 @@ type GainState struct {
 type ScanState struct {
 	Name     string      `json:"name"`
 	Bus      string      `json:"bus"`
+	At       string      `json:"at"` // transfer impedance: bus whose voltage is taken; empty for a driving-point impedance
 	Sequence string      `json:"sequence"`
 	Orders   []Num       `json:"orders"`
 	Ohm      []Num       `json:"ohm"`
@@ -235,6 +236,14 @@ type PeakState struct {
 
 	Capacitive []string `json:"capacitive"` // items whose capacitance makes a parallel resonance, largest share first
 	Inductive  []string `json:"inductive"`  // items whose inductance makes it
+
+	Buses []BusPart `json:"buses"` // where a parallel resonance swings, largest share first
+}
+
+// BusPart is the participation of a bus in a resonance.
+type BusPart struct {
+	Bus   string `json:"bus"`
+	Share Num    `json:"share"` // the shares of all buses add to about one
 }
 
 // CheckState is how well the solution satisfies its own equations.
@@ -243,6 +252,8 @@ type CheckState struct {
 	Balance  Num `json:"balance"`  // worst complex power imbalance by order, relative
 	Fallback int `json:"fallback"` // orders that needed the dense pivoted solver
 	Rounds   int `json:"rounds"`   // iterations of the order 1 power flow
+
+	Reciprocity Num `json:"reciprocity"` // difference of a transfer impedance from its reverse, relative
 }
 
 // InputValue is one value of the study file with its origin.

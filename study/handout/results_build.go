@@ -102,7 +102,7 @@ func (b *builder) state(which string, o *study.Outcome) *State {
 		s.Scans = append(s.Scans, b.scan(&o.Scans[i]))
 	}
 	b.where = which + ", check of the solution"
-	s.Check = CheckState{b.num(o.Check.Residual), b.num(o.Check.Balance), o.Check.Fallback, o.Check.Rounds}
+	s.Check = CheckState{b.num(o.Check.Residual), b.num(o.Check.Balance), o.Check.Fallback, o.Check.Rounds, b.num(o.Check.Reciprocity)}
 	return s
 }
 
@@ -206,7 +206,7 @@ func unitOf(symbol string) string {
 
 func (b *builder) scan(r *study.ScanResult) ScanState {
 	s := ScanState{
-		Name: r.Name, Bus: r.Bus, Sequence: r.Sequence.String(),
+		Name: r.Name, Bus: r.Bus, At: r.At, Sequence: r.Sequence.String(),
 		Orders: []Num{}, Ohm: []Num{}, Degrees: []Num{}, Peaks: b.peaks(r.Peaks), Valleys: b.peaks(r.Valleys),
 	}
 	for i, h := range r.Orders {
@@ -220,8 +220,12 @@ func (b *builder) scan(r *study.ScanResult) ScanState {
 func (b *builder) peaks(ps []study.Peak) []PeakState {
 	out := []PeakState{}
 	for _, p := range ps {
-		out = append(out, PeakState{b.num(p.Order), b.num(p.Ohm), b.num(p.Q),
-			append([]string{}, p.Capacitive...), append([]string{}, p.Inductive...)})
+		x := PeakState{Order: b.num(p.Order), Ohm: b.num(p.Ohm), Q: b.num(p.Q),
+			Capacitive: append([]string{}, p.Capacitive...), Inductive: append([]string{}, p.Inductive...), Buses: []BusPart{}}
+		for _, at := range p.Buses {
+			x.Buses = append(x.Buses, BusPart{at.Bus, b.num(at.Share)})
+		}
+		out = append(out, x)
 	}
 	return out
 }
