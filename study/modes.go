@@ -34,13 +34,13 @@ func (m *model) shares(mode *grid.Mode) []BusShare {
 }
 
 // Modes returns the resonances of the whole network in one sequence between
-// two orders, with the named measures on, rising: found at whatever bus they
+// two orders, with the named measures on, in an operating state, rising: found at whatever bus they
 // show, with the items that make them. EMFs are shorted and non-linear loads
 // open; single-phase loads are left out.
 //
 // Errors: as for Evaluate.
-func (p *Prepared) Modes(ctx context.Context, on []string, seq phasor.Sequence, from, to float64) ([]Peak, error) {
-	m, err := p.model(on)
+func (p *Prepared) Modes(ctx context.Context, on []string, state string, seq phasor.Sequence, from, to float64) ([]Peak, error) {
+	m, err := p.model(on, state)
 	if err != nil {
 		return nil, err
 	}

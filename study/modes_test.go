@@ -61,7 +61,7 @@ func TestResonanceMoves(t *testing.T) {
 	if stay := study.Moves(before, before); len(stay) != len(before) || !strings.HasSuffix(stay[0].Words(), "stays") {
 		t.Errorf("nothing flipped: %s", stay[0].Words())
 	}
-	modes, err := p.Modes(ctx, nil, phasor.Positive, 1, 25)
+	modes, err := p.Modes(ctx, nil, "", phasor.Positive, 1, 25)
 	if err != nil {
 		t.Fatal(err)
 	}
