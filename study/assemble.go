@@ -197,6 +197,10 @@ func (m *model) point(ctx context.Context, a *Assessment, o *Outcome) (PointResu
 		return p, &FieldError{Item: a.Name, Field: "set", Problem: fmt.Sprintf("%q is no limit set of this program", a.Set), Remedy: "choose one from the list"}
 	}
 	p.SetTitle = set.Title
+	if set.LimitsEquipment() {
+		err := m.assessEquipment(ctx, a, o, set, &p)
+		return p, err
+	}
 	bus := o.Bus(a.Bus)
 	at := limits.Point{NominalV: bus.NominalV, Voltage: bus.Phase}
 	if err := p.take(set.Voltage(at)); err != nil {
@@ -230,9 +234,7 @@ func (p *PointResult) take(rows []limits.Row, err error) error {
 	return err
 }
 
-// demand returns the assessed current and the short-circuit current at a
-// point: as stated, else of the supplies there, else from the driving-point
-// impedance at order 1.
+// demand returns the assessed current and the short-circuit current at a point.
 func (m *model) demand(ctx context.Context, a *Assessment, o *Outcome) (current [3]phasor.Spectrum, isc float64, err error) {
 	for i := range current { // of a branch that is out of service in this state
 		current[i] = phasor.New(m.plan.study.Order())
@@ -246,20 +248,32 @@ func (m *model) demand(ctx context.Context, a *Assessment, o *Outcome) (current 
 		}
 		current = end.Phase
 	}
-	isc = 1000 * a.IscKA
+	isc, _, err = m.shortCircuit(ctx, a)
+	return current, isc, err
+}
+
+// shortCircuit returns the short-circuit current at a point, A, and where it
+// comes from, in words: as stated, else of the supplies there, else from the
+// driving-point impedance at order 1.
+func (m *model) shortCircuit(ctx context.Context, a *Assessment) (isc float64, origin string, err error) {
+	if a.IscKA > 0 {
+		return 1000 * a.IscKA, "as stated", nil
+	}
+	var names []string
 	for i := range m.plan.origin.Supplies { // limits rest on the stated fault level in every state
-		if s := &m.plan.origin.Supplies[i]; a.IscKA == 0 && s.Bus == a.Bus {
+		if s := &m.plan.origin.Supplies[i]; s.Bus == a.Bus {
 			isc += s.FaultA(m.volts[s.Bus])
+			names = append(names, s.Name)
 		}
 	}
 	if isc == 0 && m.system.Live(m.bus[a.Bus]) {
 		z, err := m.system.Scan(ctx, m.bus[a.Bus], phasor.Positive, []float64{1}, nil)
 		if err != nil {
-			return current, 0, err
+			return 0, "", err
 		}
-		isc = m.volts[a.Bus] / math.Sqrt(3) / cmplx.Abs(z[0])
+		return m.volts[a.Bus] / math.Sqrt(3) / cmplx.Abs(z[0]), fmt.Sprintf("from the driving-point impedance of %.4g ohm at order 1", cmplx.Abs(z[0])), nil
 	}
-	return current, isc, nil
+	return isc, "from the fault level of " + join(names), nil
 }
 
 func (m *model) warn(o *Outcome, sol *solution) {

@@ -356,9 +356,9 @@ type Assessment struct {
 	Named
 	Bus     string  `json:"bus" label:"Bus" ref:"bus" need:"yes" help:"Bus that is assessed."`
 	Set     string  `json:"set" label:"Limit set" need:"yes" help:"Identifier of the limit set, such as ieee519-2022 or iec61000-2-4-class2."`
-	Current string  `json:"current,omitempty" label:"Current of" ref:"supply|transformer|cable|reactor" help:"Branch whose current into the site is assessed, at the end nearest the bus; a supply as a rule. Absent: only the voltage is assessed."`
+	Current string  `json:"current,omitempty" label:"Current of" ref:"supply|transformer|cable|reactor|nonlinearLoad" help:"Branch whose current into the site is assessed, at the end nearest the bus; a supply as a rule. For a set that limits equipment: the non-linear load. Absent: only the voltage is assessed."`
 	IscKA   float64 `json:"iscKA,omitempty" label:"Isc" unit:"kA" range:"(0,1000]" default:"from the supplies' fault level" help:"Maximum short-circuit current at the point."`
-	DemandA float64 `json:"demandA,omitempty" label:"IL" unit:"A" range:"(0,1e6]" help:"Maximum demand load current, fundamental. Without it currents are not assessed."`
+	DemandA float64 `json:"demandA,omitempty" label:"IL" unit:"A" range:"(0,1e6]" help:"Maximum demand load current, fundamental. Without it currents are not assessed. For a set that limits equipment: its rated current Iref; the computed one when absent."`
 	Noted
 }
 

@@ -274,10 +274,8 @@ func (c *checker) items() {
 	for i := range s.NonlinearLoads {
 		c.nonlinear(&s.NonlinearLoads[i])
 	}
-	for _, a := range s.Assessments {
-		if _, ok := limits.Lookup(a.Set); !ok {
-			c.add(a.Name, "set", fmt.Sprintf("%q is no limit set of this program", a.Set), "choose one from the list")
-		}
+	for i := range s.Assessments {
+		c.assessment(&s.Assessments[i])
 	}
 	for _, x := range s.Scans {
 		if lo, hi := or(x.From, 1), or(x.To, float64(s.Order())); lo >= hi {
@@ -440,4 +438,21 @@ func (s *Study) Warnings() []*FieldError {
 		}
 	}
 	return c.found
+}
+
+// assessment checks that a point's set is there and that what it assesses suits
+// the set.
+func (c *checker) assessment(a *Assessment) {
+	set, ok := limits.Lookup(a.Set)
+	if !ok {
+		c.add(a.Name, "set", fmt.Sprintf("%q is no limit set of this program", a.Set), "choose one from the list")
+		return
+	}
+	isLoad := c.kind[a.Current] == KindNonlinearLoad
+	switch {
+	case set.LimitsEquipment() && !isLoad:
+		c.add(a.Name, "current", set.Title+" limits a piece of equipment, and none is named", "name the non-linear load that it is")
+	case !set.LimitsEquipment() && isLoad:
+		c.add(a.Name, "current", fmt.Sprintf("%s limits currents at a point of the network, and %s is a load", set.Title, a.Current), "name the branch that feeds the point, or choose a set for equipment")
+	}
 }

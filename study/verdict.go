@@ -46,6 +46,19 @@ func (p *PointResult) Worst() *limits.Row {
 	return worst
 }
 
+// Unit returns the unit that all rows of the point share, "" when they differ.
+func (p *PointResult) Unit() string {
+	unit := ""
+	for i := range p.Rows {
+		if u := p.Rows[i].Unit; i > 0 && u != unit {
+			return ""
+		} else {
+			unit = u
+		}
+	}
+	return unit
+}
+
 // State returns what the point's rows come to.
 func (p *PointResult) State() State {
 	worst := p.Worst()
@@ -115,7 +128,7 @@ func overs(p *PointResult) string {
 			n++
 		}
 	}
-	text := fmt.Sprintf("%s at %.2f x its limit (%.3g %% against %.3g %%)", RowName(*worst), worst.Share, worst.Value, worst.Limit)
+	text := fmt.Sprintf("%s at %.2f x its limit (%.3g %s against %.3g %s)", RowName(*worst), worst.Share, worst.Value, worst.Unit, worst.Limit, worst.Unit)
 	if worst.Limit == 0 {
 		text = fmt.Sprintf("%s of %.3g %%, which is not allowed", RowName(*worst), worst.Value)
 	}

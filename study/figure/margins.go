@@ -72,7 +72,7 @@ func shares(before, after *study.Outcome) (rows []barRow, open []string) {
 	return rows, open
 }
 
-func against(r *limits.Row) string { return number(r.Value) + " of " + number(r.Limit) + " %" }
+func against(r *limits.Row) string { return number(r.Value) + " of " + number(r.Limit) + " " + r.Unit }
 
 // rowKey tells the rows of one point apart.
 type rowKey struct {

@@ -158,7 +158,9 @@ func (s Selection) rows(o *study.Outcome) (rows map[int]limits.Row, title string
 		}
 		rows = map[int]limits.Row{}
 		for _, r := range p.Rows {
-			if r.Quantity == quantity && r.Index == "" {
+			// per cent of something other than IL cannot be drawn on an axis in amperes
+			drawable := quantity == "voltage" || r.Unit == "A" || p.ILA > 0
+			if r.Quantity == quantity && r.Index == "" && drawable {
 				rows[r.Order] = r
 			}
 		}

@@ -90,12 +90,13 @@ func (p *printer) pointTable(i int) {
 	if pt.ILA > 0 {
 		p.paragraph(span{p.muted, fmt.Sprintf("Currents: Isc %s kA, maximum demand current %s A, ratio %s.", figures3(pt.IscA/1000), figures3(pt.ILA), figures3(pt.IscA/pt.ILA))})
 	}
+	unit := pt.Unit()
 	t := &table{columns: []column{
 		{head: "Quantity", min: 104},
 		{head: "Phase"},
-		{head: "Limit", unit: "%", align: point},
-		{head: "Before", unit: "%", align: point, ink: p.palette.Muted},
-		{head: p.stated(), unit: "%", align: point, ink: p.palette.After},
+		{head: "Limit", unit: unit, align: point},
+		{head: "Before", unit: unit, align: point, ink: p.palette.Muted},
+		{head: p.stated(), unit: unit, align: point, ink: p.palette.After},
 		{head: "Share of the limit", unit: "%", align: point},
 		{flex: 1, min: 80},
 		{head: "Verdict"},
@@ -108,7 +109,7 @@ func (p *printer) pointTable(i int) {
 			hidden++
 			continue
 		}
-		t.add(p.limitCells(q, &rules)...)
+		t.add(p.limitCells(q, unit, &rules)...)
 	}
 	if p.before == nil {
 		t.dropColumn(3)
@@ -145,9 +146,12 @@ func counted(n int, one, many string) string {
 	return fmt.Sprintf("%d %s", n, many)
 }
 
-func (p *printer) limitCells(q pair, rules *ruleNotes) []cell {
+func (p *printer) limitCells(q pair, unit string, rules *ruleNotes) []cell {
 	r := q.after
 	name := study.RowName(r)
+	if r.Unit != unit {
+		name += ", " + r.Unit
+	}
 	cells := plain(strings.ToUpper(name[:1])+name[1:], r.Phase, figures3(r.Limit), "", figures3(r.Value), figures3(100*r.Share), "", "meets", rules.letter(r))
 	before := 0.0
 	cells[3].style = p.muted

@@ -158,17 +158,18 @@ type PointState struct {
 
 // LimitRow is one value beside its limit, the worst phase.
 type LimitRow struct {
-	Name         string `json:"name"`     // "11th harmonic voltage"
-	Quantity     string `json:"quantity"` // "voltage" or "current"
-	Order        int    `json:"order"`    // 0 for a total
-	Index        string `json:"index"`    // "THD", "TDD" or empty for one order
-	Phase        string `json:"phase"`
-	ValuePercent Num    `json:"valuePercent"` // of the base the rule names
-	LimitPercent Num    `json:"limitPercent"`
-	Share        Num    `json:"share"`   // value over limit; 1 is at the limit
-	Verdict      string `json:"verdict"` // "meets" or "over"
-	Rule         string `json:"rule"`    // document, edition, table and row
-	Mark         string `json:"mark"`    // "found", "memory" (to be confirmed against the document) or "derived"
+	Name     string `json:"name"`     // "11th harmonic voltage"
+	Quantity string `json:"quantity"` // "voltage" or "current"
+	Order    int    `json:"order"`    // 0 for a total
+	Index    string `json:"index"`    // "THD", "TDD" or empty for one order
+	Phase    string `json:"phase"`
+	Value    Num    `json:"value"` // in the unit; per cent are of the base the rule names
+	Limit    Num    `json:"limit"`
+	Unit     string `json:"unit"`    // "%" or "A"
+	Share    Num    `json:"share"`   // value over limit; 1 is at the limit
+	Verdict  string `json:"verdict"` // "meets" or "over"
+	Rule     string `json:"rule"`    // document, edition, table and row
+	Mark     string `json:"mark"`    // "found", "memory" (to be confirmed against the document) or "derived"
 }
 
 // MeasureState is what a measure that is on is made of and bears.

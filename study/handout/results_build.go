@@ -157,7 +157,7 @@ func (b *builder) point(r *study.PointResult) PointState {
 	for _, row := range r.Rows {
 		s.Rows = append(s.Rows, LimitRow{
 			Name: study.RowName(row), Quantity: row.Quantity, Order: row.Order, Index: row.Index, Phase: row.Phase,
-			ValuePercent: b.num(row.Value), LimitPercent: b.num(row.Limit), Share: b.num(row.Share),
+			Value: b.num(row.Value), Limit: b.num(row.Limit), Unit: row.Unit, Share: b.num(row.Share),
 			Verdict: rowVerdict(row), Rule: row.Rule, Mark: string(row.Mark),
 		})
 	}

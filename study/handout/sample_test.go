@@ -104,7 +104,7 @@ func sampleOutcome(s *study.Study, on []string, level float64) *study.Outcome {
 func samplePoint(name, bus string, level float64, current bool) study.PointResult {
 	p := study.PointResult{Name: name, Bus: bus, Set: "invented-1", SetTitle: "Invented limits, edition 1"}
 	add := func(quantity, index string, h int, value, limit float64, mark limits.Mark) {
-		p.Rows = append(p.Rows, limits.Row{Quantity: quantity, Index: index, Order: h, Phase: "b", Value: value, Limit: limit, Share: value / limit,
+		p.Rows = append(p.Rows, limits.Row{Unit: limits.Percent, Quantity: quantity, Index: index, Order: h, Phase: "b", Value: value, Limit: limit, Share: value / limit,
 			Rule: "Invented limits, edition 1, Table " + map[string]string{"voltage": "1", "current": "2, Isc/IL 20<50"}[quantity], Mark: mark})
 	}
 	add("voltage", "THD", 0, 3.1*level, 5, limits.Memory)

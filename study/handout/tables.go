@@ -99,21 +99,21 @@ func appendFrom(row []any, values []Num, from int) []any {
 
 // limitSheet has a row for each limit, before beside after.
 func limitSheet(doc *Results) *sheet {
-	s := &sheet{name: "limits", columns: []string{"Assessment", "Bus", "Quantity", "Order", "Phase", "Limit (%)",
-		"Before (%)", "Before, share of limit", "After (%)", "After, share of limit", "Verdict", "Rule", "Mark"}}
+	s := &sheet{name: "limits", columns: []string{"Assessment", "Bus", "Quantity", "Order", "Phase", "Limit", "Unit",
+		"Before", "Before, share of limit", "After", "After, share of limit", "Verdict", "Rule", "Mark"}}
 	for i, p := range doc.After.Points {
 		for k, r := range p.Rows {
-			row := []any{p.Name, p.Bus, r.Name, r.Order, r.Phase, r.LimitPercent, nil, nil, r.ValuePercent, r.Share, r.Verdict, r.Rule, r.Mark}
+			row := []any{p.Name, p.Bus, r.Name, r.Order, r.Phase, r.Limit, r.Unit, nil, nil, r.Value, r.Share, r.Verdict, r.Rule, r.Mark}
 			if doc.Before != nil && i < len(doc.Before.Points) && k < len(doc.Before.Points[i].Rows) {
 				old := doc.Before.Points[i].Rows[k]
 				if old.Name == r.Name {
-					row[6], row[7] = old.ValuePercent, old.Share
+					row[7], row[8] = old.Value, old.Share
 				}
 			}
 			s.rows = append(s.rows, row)
 		}
 		for _, text := range p.NotAssessed {
-			s.add(p.Name, p.Bus, text, nil, nil, nil, nil, nil, nil, nil, "not assessed", "", "")
+			s.add(p.Name, p.Bus, text, nil, nil, nil, nil, nil, nil, nil, nil, "not assessed", "", "")
 		}
 	}
 	return s

@@ -146,7 +146,7 @@ func (s *Set) rows(quantity string, part *section, c *class, x [3]phasor.Spectru
 		if c.limit[h] == 0 {
 			continue
 		}
-		row := Row{Quantity: quantity, Order: h, Limit: c.limit[h], Rule: c.rule[h], Mark: c.mark[h]}
+		row := Row{Unit: Percent, Quantity: quantity, Order: h, Limit: c.limit[h], Rule: c.rule[h], Mark: c.mark[h]}
 		row.worst(x, of, func(phase phasor.Spectrum) float64 { return size2(phase.At(h)) })
 		rows = append(rows, row)
 	}
@@ -154,7 +154,7 @@ func (s *Set) rows(quantity string, part *section, c *class, x [3]phasor.Spectru
 		allow(part.lowOrder, rows)
 	}
 	if d := part.direct; d != nil {
-		row := Row{Quantity: quantity, Rule: s.Title + " " + d.rule, Mark: d.mark}
+		row := Row{Unit: Percent, Quantity: quantity, Rule: s.Title + " " + d.rule, Mark: d.mark}
 		row.worst(x, of, func(phase phasor.Spectrum) float64 { return size2(phase.At(0)) })
 		// Below a billionth of the base it is the rounding of a solution.
 		if row.Value > 1e-7 {
@@ -163,7 +163,7 @@ func (s *Set) rows(quantity string, part *section, c *class, x [3]phasor.Spectru
 		}
 	}
 	if c.total > 0 {
-		row := Row{Quantity: quantity, Index: part.index(), Limit: c.total, Rule: c.totalRule, Mark: c.totalMark}
+		row := Row{Unit: Percent, Quantity: quantity, Index: part.index(), Limit: c.total, Rule: c.totalRule, Mark: c.totalMark}
 		to := c.totalTo
 		if computed < to {
 			to = computed

@@ -98,7 +98,10 @@ func parse(text []byte, own bool) (*Set, error) {
 	if part, ok := t.sub("current"); ok {
 		s.amperes = r.section(s, "current", part, ofDemand, ofFundamental)
 	}
-	if s.volts == nil && s.amperes == nil {
+	if part, ok := t.sub("equipment"); ok {
+		s.appliance = r.appliance(s, part)
+	}
+	if s.volts == nil && s.amperes == nil && s.appliance == nil {
 		r.fail("file", "", `add a "voltage" or a "current" part`, "limits nothing")
 	}
 	for i, p := range t.list("percentiles") {

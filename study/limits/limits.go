@@ -31,14 +31,18 @@ func weaker(a, b Mark) Mark {
 	return a
 }
 
+// Percent is the unit of a limit that is a share of something.
+const Percent = "%"
+
 // Row is one value beside its limit.
 type Row struct {
 	Quantity string  // "voltage" or "current"
 	Order    int     // 0 for a total (THD, TDD) and for the direct component
 	Index    string  // "THD", "TDD" or "" for a single order
 	Phase    string  // "a", "b", "c": the worst phase, shown
-	Value    float64 // per cent, of the base the rule names
-	Limit    float64 // per cent; 0 forbids altogether
+	Value    float64 // in Unit; per cent are of the base the rule names
+	Limit    float64 // in Unit; 0 forbids altogether
+	Unit     string  // Percent or "A"
 	Share    float64 // Value/Limit, 1 is at the limit; 1 + Value where Limit is 0
 	Rule     string  // document, edition, table and row: "IEEE 519-2022 Table 2, Isc/IL 20<50, 11<=h<17, of IL"
 	Mark     Mark

@@ -22,6 +22,8 @@ type Set struct {
 
 	volts   *section // nil when it limits no voltage
 	amperes *section // nil when it limits no current
+
+	appliance *appliance // limits of a piece of equipment, nil for a set of the network
 }
 
 // Percentile is a document's rule for one statistic of measured values.
@@ -128,6 +130,8 @@ var published = []string{
 	"iec61000-2-4-class1", "iec61000-2-4-class2", "iec61000-2-4-class3",
 	"iec61000-2-2", "iec61000-3-6-mv", "iec61000-3-6-hv",
 	"en50160-lv", "en50160-mv",
+	"iec61000-3-2-class-a", "iec61000-3-2-class-b", "iec61000-3-2-class-c", "iec61000-3-2-class-d",
+	"iec61000-3-12-other", "iec61000-3-12-balanced", "iec61000-3-12-balanced-abc",
 }
 
 // sets reads the embedded sets once. A set that does not read is a fault of
@@ -177,6 +181,9 @@ func (s *Set) MaxOrder() int {
 				top = max(top, part.classes[i].top())
 			}
 		}
+	}
+	if s.appliance != nil {
+		top = max(top, 40)
 	}
 	return top
 }
