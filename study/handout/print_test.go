@@ -219,7 +219,7 @@ func TestTables(t *testing.T) {
 			}
 		}
 	}
-	if !strings.Contains(string(out["tables/limits.csv"]), "Board A,Board A,5th harmonic voltage,5,b,3,9,3,3.15,1.05,over") {
+	if !strings.Contains(string(out["tables/limits.csv"]), "Board A,Board A,5th harmonic voltage,5,b,3,%,9,3,3.15,1.05,over") {
 		t.Errorf("limits.csv:\n%s", out["tables/limits.csv"])
 	}
 }
