@@ -15,7 +15,10 @@ import (
 // outcome gathers everything that is shown from a solved model.
 func (m *model) outcome(ctx context.Context, sol *solution) (*Outcome, error) {
 	s := m.plan.study
-	o := &Outcome{Study: m.plan.origin, State: m.plan.state, Check: Check(sol.net.Check)}
+	o := &Outcome{Study: m.plan.origin, State: m.plan.state}
+	if w, ok := sol.net.(*whole); ok {
+		o.Check = Check(w.Check)
+	}
 	for _, x := range m.plan.chosen {
 		o.On = append(o.On, x.Name)
 	}
@@ -161,7 +164,7 @@ func (m *model) elements(o *Outcome, sol *solution) {
 
 func (m *model) passive(o *Outcome, sol *solution, kind Kind, name string) {
 	e := ElementResult{Name: name, Kind: kind}
-	for _, end := range sol.net.Ends(m.element[name]) {
+	for _, end := range m.ends(sol, name) {
 		e.Ends = append(e.Ends, endResult(m.plan.study.Buses[end.Bus].Name, end.Phase))
 	}
 	o.Elements = append(o.Elements, e)
@@ -267,11 +270,11 @@ func (m *model) shortCircuit(ctx context.Context, a *Assessment) (isc float64, o
 		}
 	}
 	if isc == 0 && m.system.Live(m.bus[a.Bus]) {
-		z, err := m.system.Scan(ctx, m.bus[a.Bus], phasor.Positive, []float64{1}, nil)
+		z, err := m.look(ctx, a.Bus, 1)
 		if err != nil {
 			return 0, "", err
 		}
-		return m.volts[a.Bus] / math.Sqrt(3) / cmplx.Abs(z[0]), fmt.Sprintf("from the driving-point impedance of %.4g ohm at order 1", cmplx.Abs(z[0])), nil
+		return m.volts[a.Bus] / math.Sqrt(3) / cmplx.Abs(z), fmt.Sprintf("from the driving-point impedance of %.4g ohm at order 1", cmplx.Abs(z)), nil
 	}
 	return isc, "from the fault level of " + join(names), nil
 }

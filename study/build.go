@@ -20,6 +20,11 @@ type model struct {
 	branch  map[string]*filter.Branch // banks, filters and measures
 	outlets map[string]outlet         // by low-pass measure
 	net     *grid.Network
+
+	// Of a variant on a reduced network only:
+	solver solver // nil: the whole network is solved
+	base   *model // the network that was reduced
+	added  map[string]grid.Added
 }
 
 // outlet is a low-pass measure in front of a load.
@@ -211,14 +216,19 @@ func (m *model) addLoads() error {
 			X0: percent * g.ZeroPercent, Earthed: g.ZeroPercent > 0, NeutralOhm: complex(g.NeutralOhm, 0)})
 	}
 	for _, l := range s.NonlinearLoads {
-		pf := or(l.Displacement, 1)
-		e := &grid.PowerLoad{Name: l.Name, Bus: m.bus[l.Bus], P: 1000 * l.KW, Q: 1000 * l.KW * math.Tan(math.Acos(pf)), Weight: l.Connection.conductors()}
-		if l.CurrentA > 0 {
-			e.Current, e.P, e.Q = l.CurrentA, pf, math.Sqrt(1-pf*pf)
-		}
-		m.add(l.Name, e)
+		m.add(l.Name, m.nonlinear(&l))
 	}
 	return nil
+}
+
+// nonlinear is the order 1 part of a non-linear load.
+func (m *model) nonlinear(l *NonlinearLoad) *grid.PowerLoad {
+	pf := or(l.Displacement, 1)
+	e := &grid.PowerLoad{Name: l.Name, Bus: m.bus[l.Bus], P: 1000 * l.KW, Q: 1000 * l.KW * math.Tan(math.Acos(pf)), Weight: l.Connection.conductors()}
+	if l.CurrentA > 0 {
+		e.Current, e.P, e.Q = l.CurrentA, pf, math.Sqrt(1-pf*pf)
+	}
+	return e
 }
 
 func (m *model) load(l *Load) grid.Element {
@@ -328,6 +338,9 @@ func (m *model) addBranch(name, bus, connection string, b *filter.Branch, err er
 		return asFieldError(name, err)
 	}
 	m.branch[name] = b
+	if m.base != nil {
+		return m.addVariant(name, bus, connection, b)
+	}
 	m.add(name, &grid.Shunt{Name: name, Bus: m.bus[bus], Branch: b, Zero: connection == "earthed-star"})
 	return nil
 }

@@ -24,8 +24,10 @@ func (s *Study) Items(kind Kind) []any {
 
 // NameOf returns an item's name.
 func NameOf(item any) string {
-	return reflect.ValueOf(item).Elem().FieldByName("Name").String()
+	return item.(interface{ itemName() string }).itemName()
 }
+
+func (n *Named) itemName() string { return n.Name }
 
 // ProvenanceOf returns an item's provenance by key; nil when none is stated.
 func ProvenanceOf(item any) map[string]Provenance {

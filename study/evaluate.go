@@ -115,7 +115,7 @@ func (p *Prepared) model(on []string, state string) (*model, error) {
 // solution is a solved model: the network's solution, what each non-linear
 // load draws and what each active filter injects.
 type solution struct {
-	net    *grid.Solution
+	net    solver
 	drawn  map[string][3]phasor.Spectrum // by non-linear load
 	active map[string]activeResult       // by measure
 }
@@ -124,8 +124,11 @@ type solution struct {
 // the orders above.
 func (m *model) solve(ctx context.Context) (*solution, error) {
 	order := m.plan.study.Order()
-	base, err := m.system.Fundamental(ctx)
-	if err != nil {
+	base := m.solver
+	if base == nil {
+		base = &whole{sys: m.system, order: order}
+	}
+	if err := base.Fundamental(ctx); err != nil {
 		return nil, m.named(err)
 	}
 	sol := &solution{drawn: map[string][3]phasor.Spectrum{}, active: map[string]activeResult{}}
@@ -155,10 +158,10 @@ func (m *model) solve(ctx context.Context) (*solution, error) {
 		sol.active[measure.Name] = r
 		injections = append(injections, grid.Injection{Bus: m.bus[measure.Bus], Name: measure.Name, Current: r.Drawn})
 	}
-	sol.net, err = m.system.Harmonics(ctx, base, order, injections)
-	if err != nil {
+	if err := base.Harmonics(ctx, injections); err != nil {
 		return nil, m.named(err)
 	}
+	sol.net = base
 	return sol, nil
 }
 

@@ -30,7 +30,8 @@ type Variant struct {
 	zero     bool
 	current  []complex128 // by sequence and port
 	v        [][]complex128
-	carries  [][3]bool // by order: the sequence has any voltage
+	carries  [][3]bool             // by order: the sequence has any voltage
+	loads    map[ElementID]Drawing // in place of the network's own
 	drawn    map[ElementID][3]complex128
 	across   []phasor.Spectrum // by single-phase shunt: voltage across it
 	m, x     []complex128      // small system
@@ -260,7 +261,11 @@ func (v *Variant) Fundamental(ctx context.Context) error {
 				break // the first round is the network without loads
 			}
 			k := int(s.place[id].n0)
-			i := s.net.elements[id].(Drawing).draw(v.phaseAt(1, r.port[k]))
+			load, other := v.loads[id]
+			if !other {
+				load = s.net.elements[id].(Drawing)
+			}
+			i := load.draw(v.phaseAt(1, r.port[k]))
 			v.drawn[id] = i
 			for q, c := range phasor.ToSequence(i) {
 				if (s.floating[q] != nil && s.floating[q][k]) || cmplxAbs1(c) < 1e-14*cmplxAbs1(i[0]) {
