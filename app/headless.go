@@ -27,6 +27,7 @@ const usage = `Quietbus, a workbench for harmonic studies of electrical installa
 
   quietbus [STUDY.json]                  open the window, with a study or the demo
   quietbus check STUDY.json              validate and assess a study
+  quietbus check FILE.limits.json        validate limits of your own
   quietbus handout STUDY.json -o DIR     write the handout: PDF, figures, tables, results.json
   quietbus version
   quietbus help
@@ -240,6 +241,9 @@ func (r *request) say(w io.Writer, before, after []*study.Outcome) int {
 }
 
 func check(args []string, stdout io.Writer) (int, error) {
+	if len(args) == 1 && strings.HasSuffix(args[0], study.LimitFile) {
+		return 0, checkLimits(args[0], stdout)
+	}
 	r, err := parse("check", args)
 	if err != nil {
 		return 0, err

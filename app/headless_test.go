@@ -141,3 +141,24 @@ func TestPanicIsAnExitCode(t *testing.T) {
 type panicking struct{}
 
 func (panicking) Write([]byte) (int, error) { panic("a mistake of ours") }
+
+// A file of limits is checked without a display; its gaps are said.
+func TestCheckLimits(t *testing.T) {
+	x, err := study.PasteLimits("5\t3\n7\tsee annex")
+	if err != nil {
+		t.Fatal(err)
+	}
+	x.Name, x.Document = "Invented letter", "No. 17"
+	path := filepath.Join(t.TempDir(), "letter"+study.LimitFile)
+	if err := study.SaveLimitSet(path, x); err != nil {
+		t.Fatal(err)
+	}
+	code, out, errs := command("check", path)
+	if code != exitOK || !strings.Contains(out, "The limits are valid: Invented letter, 2 orders.") || !strings.Contains(out, `Not assessed: 7th harmonic voltage: the document says "see annex"`) {
+		t.Errorf("code %d, %q, %q", code, out, errs)
+	}
+	os.WriteFile(path, []byte(`{"format": 1, "limitSet": {"name": "x"}}`), 0o644)
+	if code, _, errs := command("check", path); code != exitBadInput || !strings.Contains(errs, "there is no limit in it") {
+		t.Errorf("code %d, %q", code, errs)
+	}
+}

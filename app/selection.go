@@ -65,7 +65,7 @@ func selectionOf(s *study.Study, name string) selection {
 	switch kind {
 	case study.KindBus:
 		return selection{Bus: name}
-	case study.KindMeasure, study.KindAssessment, study.KindScan:
+	case study.KindMeasure, study.KindAssessment, study.KindScan, study.KindLimitSet:
 		return selection{Bus: busOf(s, name), Other: name}
 	case study.KindCoupler: // an ideal switch: its current is not a result
 		return selection{Bus: busOf(s, name), Other: name}

@@ -166,6 +166,9 @@ func fieldOf(f study.Field, text string) widgets.SheetField {
 // choices returns the names of items that a field may hold.
 func (d *draft) choices(f study.Field) []string {
 	var out []string
+	if d.kind == study.KindAssessment && f.Key == "set" {
+		out = append(out, d.study.LimitSetNames()...) // after the published ones
+	}
 	if len(f.Ref) > 0 && !f.Need && f.Type == study.Text {
 		out = append(out, "")
 	}

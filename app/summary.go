@@ -52,6 +52,8 @@ func summary(item any) string {
 		return measureSummary(i)
 	case *study.Assessment:
 		return fmt.Sprintf("%s at %s", titleOf(study.KindAssessment, "set", i.Set), i.Bus)
+	case *study.LimitSet:
+		return strings.TrimPrefix(i.Source()+", ", ", ") + count(len(i.Rows), "order")
 	case *study.ScanRequest:
 		return "at " + i.Bus
 	}

@@ -6,6 +6,7 @@ import (
 	"slices"
 
 	"quietbus/study/converter"
+	"quietbus/study/limits"
 )
 
 // A plan is a study with its chosen measures applied: what stands, where, and
@@ -22,6 +23,7 @@ type plan struct {
 	lowpass map[string]*Measure                // by the load behind them
 	notes   map[string][]string                // by measure
 	skin    map[string]func(h float64) float64 // by cable, worked out once; may be nil
+	sets    map[string]*limits.Set             // the study's own limits, worked out once; may be nil
 }
 
 // apply returns the plan of the named measures. It fails on names that are no

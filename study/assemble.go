@@ -2,10 +2,10 @@ package study
 
 import (
 	"context"
-	"errors"
 	"fmt"
 	"math"
 	"math/cmplx"
+	"slices"
 
 	"quietbus/study/filter"
 	"quietbus/study/limits"
@@ -195,7 +195,7 @@ func endResult(bus string, phase [3]phasor.Spectrum) EndResult {
 // point assesses one point.
 func (m *model) point(ctx context.Context, a *Assessment, o *Outcome) (PointResult, error) {
 	p := PointResult{Name: a.Name, Bus: a.Bus, Set: a.Set}
-	set, ok := limits.Lookup(a.Set)
+	set, own, ok := m.limitSet(a)
 	if !ok {
 		return p, &FieldError{Item: a.Name, Field: "set", Problem: fmt.Sprintf("%q is no limit set of this program", a.Set), Remedy: "choose one from the list"}
 	}
@@ -203,6 +203,12 @@ func (m *model) point(ctx context.Context, a *Assessment, o *Outcome) (PointResu
 	if set.LimitsEquipment() {
 		err := m.assessEquipment(ctx, a, o, set, &p)
 		return p, err
+	}
+	if own != nil {
+		p.NotAssessed = append(p.NotAssessed, own.gaps(a.Current != "")...)
+	}
+	if why := beyond(set, m.plan.study.Order()); why != "" {
+		p.NotAssessed = append(p.NotAssessed, why)
 	}
 	bus := o.Bus(a.Bus)
 	at := limits.Point{NominalV: bus.NominalV, Voltage: bus.Phase}
@@ -220,7 +226,7 @@ func (m *model) point(ctx context.Context, a *Assessment, o *Outcome) (PointResu
 	if err := p.take(set.Current(at)); err != nil {
 		return p, err
 	}
-	if len(p.NotAssessed) == 0 {
+	if slices.ContainsFunc(p.Rows, func(r limits.Row) bool { return r.Quantity == "current" }) {
 		p.IscA, p.ILA = at.IscA, at.DemandA
 	}
 	return p, nil
@@ -228,12 +234,11 @@ func (m *model) point(ctx context.Context, a *Assessment, o *Outcome) (PointResu
 
 // take adds rows, or the reason why there are none.
 func (p *PointResult) take(rows []limits.Row, err error) error {
-	var why *limits.NotAssessedError
-	if errors.As(err, &why) {
-		p.NotAssessed = append(p.NotAssessed, why.Error())
+	p.Rows = append(p.Rows, rows...)
+	if why, ok := limits.IsNotAssessed(err); ok {
+		p.NotAssessed = append(p.NotAssessed, why)
 		return nil
 	}
-	p.Rows = append(p.Rows, rows...)
 	return err
 }
 

@@ -88,6 +88,7 @@ var kinds = []KindInfo{
 	{Kind: KindFilter, Key: "filters", Singular: "filter", Plural: "Filters"},
 	{Kind: KindMeasure, Key: "measures", Singular: "measure", Plural: "Measures"},
 	{Kind: KindAssessment, Key: "assessments", Singular: "assessment point", Plural: "Assessment points"},
+	{Kind: KindLimitSet, Key: "limitSets", Singular: "limit set", Plural: "Own limit sets"},
 	{Kind: KindScan, Key: "scans", Singular: "impedance scan", Plural: "Impedance scans"},
 	{Kind: KindState, Key: "states", Singular: "operating state", Plural: "Operating states"},
 }

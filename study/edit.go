@@ -111,7 +111,7 @@ func (s *Study) references(f func(item any, field *Field, names []string) []stri
 				if d.Type == Rows {
 					rowReferences(item, d, at, f)
 				}
-				if d.Ref == nil {
+				if d.Ref == nil && !usesSet(k.Kind, d) {
 					continue
 				}
 				if d.Type == Names {

@@ -5,6 +5,7 @@ import (
 	"fmt"
 
 	"quietbus/study/grid"
+	"quietbus/study/limits"
 	"quietbus/study/phasor"
 )
 
@@ -29,6 +30,7 @@ func Evaluate(ctx context.Context, s *Study, on []string) (*Outcome, error) {
 type Prepared struct {
 	study *Study
 	skin  map[string]func(h float64) float64 // by cable
+	sets  map[string]*limits.Set             // the study's own limit sets, by name
 	stood map[string]*Study                  // by operating state: the study as it stands in it
 }
 
@@ -37,7 +39,10 @@ func Prepare(s *Study) (*Prepared, error) {
 	if problems := s.Validate(); len(problems) > 0 {
 		return nil, FieldErrors(problems)
 	}
-	p := &Prepared{s, map[string]func(float64) float64{}, map[string]*Study{}}
+	p := &Prepared{study: s, skin: map[string]func(float64) float64{}, sets: map[string]*limits.Set{}, stood: map[string]*Study{}}
+	for i := range s.LimitSets {
+		p.sets[s.LimitSets[i].Name] = s.LimitSets[i].set()
+	}
 	for _, name := range s.States() {
 		x, err := s.state(name)
 		if err != nil {
@@ -108,7 +113,7 @@ func (p *Prepared) model(on []string, state string) (*model, error) {
 	if err != nil {
 		return nil, err
 	}
-	plan.origin, plan.state, plan.skin = p.study, name, p.skin
+	plan.origin, plan.state, plan.skin, plan.sets = p.study, name, p.skin, p.sets
 	return plan.build()
 }
 

@@ -30,6 +30,8 @@ func FormatKeys() string {
 		{"a line of `background`", reflect.TypeFor[BackgroundLine]()},
 		{"a line of `lines`", reflect.TypeFor[SpectrumLine]()},
 		{"a line of `shares`", reflect.TypeFor[Share]()},
+		{"a row of `rows` of a limit set", reflect.TypeFor[LimitLine]()},
+		{"a line of `notReadable`", reflect.TypeFor[SaidLine]()},
 		{"a value of `provenance`", reflect.TypeFor[Provenance]()},
 		{"a value of `drawing`", reflect.TypeFor[Point]()},
 	} {

@@ -40,6 +40,7 @@ type Study struct {
 	Filters        []Filter        `json:"filters,omitempty" help:"Passive filters that stand already."`
 	Measures       []Measure       `json:"measures,omitempty" help:"Changes that can be flipped on and off."`
 	Assessments    []Assessment    `json:"assessments,omitempty" help:"Points where a limit set is applied."`
+	LimitSets      []LimitSet      `json:"limitSets,omitempty" help:"Limits of your own, as from a letter of the network operator."`
 	Scans          []ScanRequest   `json:"scans,omitempty" help:"Impedance scans wanted in the results: driving-point or transfer."`
 
 	OperatingStates []OperatingState `json:"states,omitempty" help:"Ways in which the site is run; the study as stated is the normal one."`
@@ -355,7 +356,7 @@ type Share struct {
 type Assessment struct {
 	Named
 	Bus     string  `json:"bus" label:"Bus" ref:"bus" need:"yes" help:"Bus that is assessed."`
-	Set     string  `json:"set" label:"Limit set" need:"yes" help:"Identifier of the limit set, such as ieee519-2022 or iec61000-2-4-class2."`
+	Set     string  `json:"set" label:"Limit set" need:"yes" help:"Identifier of the limit set, such as ieee519-2022 or iec61000-2-4-class2, or the name of one of your own."`
 	Current string  `json:"current,omitempty" label:"Current of" ref:"supply|transformer|cable|reactor|nonlinearLoad" help:"Branch whose current into the site is assessed, at the end nearest the bus; a supply as a rule. For a set that limits equipment: the non-linear load. Absent: only the voltage is assessed."`
 	IscKA   float64 `json:"iscKA,omitempty" label:"Isc" unit:"kA" range:"(0,1000]" default:"from the supplies' fault level" help:"Maximum short-circuit current at the point."`
 	DemandA float64 `json:"demandA,omitempty" label:"IL" unit:"A" range:"(0,1e6]" help:"Maximum demand load current, fundamental. Without it currents are not assessed. For a set that limits equipment: its rated current Iref; the computed one when absent."`

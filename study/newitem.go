@@ -37,6 +37,8 @@ func NewItem(kind Kind) any {
 		item = &Measure{Kind: SingleTuned, Kvar: 100, Order: 4.8}
 	case KindAssessment:
 		item = &Assessment{Set: "iec61000-2-4-class2"}
+	case KindLimitSet:
+		item = &LimitSet{}
 	case KindScan:
 		item = &ScanRequest{}
 	case KindState:

@@ -12,7 +12,10 @@ import (
 
 // strict walks the document with the types beside it and refuses unknown
 // keys, by name and place, and repeated ones.
-func strict(data []byte) error {
+func strict(data []byte) error { return strictly(data, reflect.TypeFor[Study](), "study") }
+
+// strictly is strict for a document of another type, which where names.
+func strictly(data []byte, t reflect.Type, where string) error {
 	w := &walker{data: data, dec: json.NewDecoder(bytes.NewReader(data))}
 	w.dec.UseNumber()
 	tok, err := w.token()
@@ -20,13 +23,13 @@ func strict(data []byte) error {
 		return located(data, err)
 	}
 	if tok != json.Delim('{') {
-		return &FileError{Line: 1, Column: 1, Problem: "the file does not hold one JSON object", Remedy: "a study begins with {"}
+		return &FileError{Line: 1, Column: 1, Problem: "the file does not hold one JSON object", Remedy: "a " + where + " begins with {"}
 	}
-	if err := w.object(reflect.TypeFor[Study](), "study"); err != nil {
+	if err := w.object(t, where); err != nil {
 		return err
 	}
 	if _, err := w.token(); err != io.EOF {
-		return w.at("there is something after the end of the study", "remove it")
+		return w.at("there is something after the end of the "+where, "remove it")
 	}
 	return nil
 }

@@ -10,7 +10,6 @@ import (
 
 	"quietbus/study/converter"
 	"quietbus/study/grid"
-	"quietbus/study/limits"
 )
 
 // checker gathers what is wrong with a study.
@@ -274,6 +273,7 @@ func (c *checker) items() {
 	for i := range s.NonlinearLoads {
 		c.nonlinear(&s.NonlinearLoads[i])
 	}
+	c.limitSets()
 	for i := range s.Assessments {
 		c.assessment(&s.Assessments[i])
 	}
@@ -443,9 +443,9 @@ func (s *Study) Warnings() []*FieldError {
 // assessment checks that a point's set is there and that what it assesses suits
 // the set.
 func (c *checker) assessment(a *Assessment) {
-	set, ok := limits.Lookup(a.Set)
+	set, ok := c.study.LimitSetOf(a.Set)
 	if !ok {
-		c.add(a.Name, "set", fmt.Sprintf("%q is no limit set of this program", a.Set), "choose one from the list")
+		c.add(a.Name, "set", fmt.Sprintf("%q is no limit set, neither published nor of the study", a.Set), "choose one from the list")
 		return
 	}
 	isLoad := c.kind[a.Current] == KindNonlinearLoad

@@ -78,8 +78,23 @@ func (s *Set) Voltage(p Point) ([]Row, error) {
 //
 // Where currents cannot be assessed, for want of limits in the set, of the
 // demand current IL or of the short-circuit current Isc, it returns a
-// *NotAssessedError that says so.
+// *NotAssessedError that says so, beside the rows that need none of them.
 func (s *Set) Current(p Point) ([]Row, error) {
+	if s.inAmpere == nil {
+		return s.currentPercent(p)
+	}
+	if len(p.Current[0]) < 2 && len(p.Current[1]) < 2 && len(p.Current[2]) < 2 {
+		return nil, &NotAssessedError{"currents", "no current is known at the point"}
+	}
+	rows := s.rows("current", s.inAmpere, &s.inAmpere.classes[0], p.Current, [3]float64{100, 100, 100}, p)
+	if s.amperes == nil {
+		return rows, nil
+	}
+	more, err := s.currentPercent(p)
+	return append(more, rows...), err
+}
+
+func (s *Set) currentPercent(p Point) ([]Row, error) {
 	missing := func(reason string, args ...any) ([]Row, error) {
 		return nil, &NotAssessedError{"currents", fmt.Sprintf(reason, args...)}
 	}
@@ -136,6 +151,10 @@ func (s *section) covers() string {
 
 // rows assesses every order of a class, then direct component and total.
 func (s *Set) rows(quantity string, part *section, c *class, x [3]phasor.Spectrum, of [3]float64, p Point) []Row {
+	unit := Percent
+	if part.of == ofAmpere {
+		unit = "A"
+	}
 	computed := 0
 	for _, phase := range x {
 		computed = max(computed, phase.Order())
@@ -146,7 +165,7 @@ func (s *Set) rows(quantity string, part *section, c *class, x [3]phasor.Spectru
 		if c.limit[h] == 0 {
 			continue
 		}
-		row := Row{Unit: Percent, Quantity: quantity, Order: h, Limit: c.limit[h], Rule: c.rule[h], Mark: c.mark[h]}
+		row := Row{Unit: unit, Quantity: quantity, Order: h, Limit: c.limit[h], Rule: c.rule[h], Mark: c.mark[h]}
 		row.worst(x, of, func(phase phasor.Spectrum) float64 { return size2(phase.At(h)) })
 		rows = append(rows, row)
 	}

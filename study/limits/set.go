@@ -20,8 +20,9 @@ type Set struct {
 	Percentiles []Percentile // how the document treats measured statistics
 	Notches     []Notch      // commutation notches, where the document has them
 
-	volts   *section // nil when it limits no voltage
-	amperes *section // nil when it limits no current
+	volts    *section // nil when it limits no voltage
+	amperes  *section // nil when it limits no current in per cent
+	inAmpere *section // nil when it limits no current in amperes
 
 	appliance *appliance // limits of a piece of equipment, nil for a set of the network
 }
@@ -56,6 +57,7 @@ const (
 	ofNominal     base = "nominal"     // the nominal voltage
 	ofFundamental base = "fundamental" // the fundamental of the moment
 	ofDemand      base = "demand"      // the maximum demand load current IL
+	ofAmpere      base = "ampere"      // nothing: the limit is a current
 )
 
 func (b base) words() string {
@@ -64,6 +66,8 @@ func (b base) words() string {
 		return "of the nominal voltage"
 	case ofDemand:
 		return "of IL"
+	case ofAmpere:
+		return "in amperes"
 	}
 	return "of the fundamental"
 }
@@ -169,13 +173,13 @@ func Lookup(id string) (*Set, bool) {
 func (s *Set) LimitsVoltage() bool { return s.volts != nil }
 
 // LimitsCurrent reports whether the set limits any current.
-func (s *Set) LimitsCurrent() bool { return s.amperes != nil }
+func (s *Set) LimitsCurrent() bool { return s.amperes != nil || s.inAmpere != nil }
 
 // MaxOrder returns the highest order that the set limits or takes into a
 // total. A study that computes fewer orders cannot speak for the rest.
 func (s *Set) MaxOrder() int {
 	top := 0
-	for _, part := range []*section{s.volts, s.amperes} {
+	for _, part := range []*section{s.volts, s.amperes, s.inAmpere} {
 		if part != nil {
 			for i := range part.classes {
 				top = max(top, part.classes[i].top())
