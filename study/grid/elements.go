@@ -42,7 +42,7 @@ func (e *Supply) admittance(h float64, q phasor.Sequence) complex128 {
 	if r == 0 && x == 0 {
 		return 0
 	}
-	return 1 / complex(r*power(h, e.Exponent), x*h)
+	return reciprocal(complex(r*power(h, e.Exponent), x*h))
 }
 func (e *Supply) admit(_, h float64, q phasor.Sequence) primitive {
 	return primitive{y00: e.admittance(h, q)}
@@ -95,7 +95,7 @@ func (e *Transformer) admit(_, h float64, q phasor.Sequence) primitive {
 	z := complex(e.R*power(h, e.Exponent), e.X*h)
 	n := complex(e.Ratio, 0)
 	through := func(z complex128) primitive {
-		y := 1 / z
+		y := reciprocal(z)
 		return primitive{y / (n * n), -y / n, y}
 	}
 	if q != phasor.Zero {
@@ -173,7 +173,7 @@ func (e *Cable) admit(f1, h float64, q phasor.Sequence) primitive {
 		own := 1 / (zc * cmplx.Tanh(gl))
 		return primitive{own, -1 / (zc * cmplx.Sinh(gl)), own}
 	}
-	y := 1 / z
+	y := reciprocal(z)
 	return primitive{y + half, -y, y + half}
 }
 

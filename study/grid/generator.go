@@ -41,12 +41,12 @@ func (e *Generator) admit(_, h float64, q phasor.Sequence) primitive {
 		}
 		return primitive{y00: 1 / (complex(r, e.X0*h) + 3*at(e.NeutralOhm, h))}
 	case phasor.Negative:
-		return primitive{y00: 1 / complex(r, e.X2*h)}
+		return primitive{y00: reciprocal(complex(r, e.X2*h))}
 	}
 	if h == 1 {
 		return primitive{}
 	}
-	return primitive{y00: 1 / complex(r, e.X*h)}
+	return primitive{y00: reciprocal(complex(r, e.X*h))}
 }
 
 func (e *Generator) draw(v [3]complex128) [3]complex128 {

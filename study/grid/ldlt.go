@@ -1,6 +1,7 @@
 package grid
 
 import (
+	"container/heap"
 	"math"
 	"sort"
 )
@@ -15,90 +16,87 @@ type pattern struct {
 	row    []int   // positions, rising
 	target []int32 // for column k and each pair of its rows: where the product goes
 	tstart []int
-	slot   map[[2]int]int // (row,col) positions, row>col -> index in low
 }
 
-// newPattern orders n nodes with the given neighbour sets by minimum degree
-// and finds the fill.
-func newPattern(n int, adj []map[int]struct{}) *pattern {
-	p := &pattern{n: n, rank: make([]int, n), slot: map[[2]int]int{}}
-	work := make([]map[int]struct{}, n)
-	for i, a := range adj {
-		work[i] = make(map[int]struct{}, len(a))
-		for j := range a {
-			work[i][j] = struct{}{}
-		}
+// newPattern orders n nodes with the given neighbours, each named once, by
+// minimum degree, the lower number first among equals, and finds the fill.
+// near is used up.
+func newPattern(n int, near [][]int) *pattern {
+	p := &pattern{n: n, rank: make([]int, n)}
+	for v := range p.rank {
+		p.rank[v] = -1
 	}
-	// buckets by degree
-	buckets := make([]map[int]struct{}, 1)
-	put := func(v int) {
-		d := len(work[v])
-		for len(buckets) <= d {
-			buckets = append(buckets, nil)
-		}
-		if buckets[d] == nil {
-			buckets[d] = map[int]struct{}{}
-		}
-		buckets[d][v] = struct{}{}
+	q := make(queue, 0, 2*n)
+	for v, list := range near {
+		q = append(q, turn{len(list), v})
 	}
-	for v := 0; v < n; v++ {
-		put(v)
-	}
-	lists := make([][]int, n) // neighbours at elimination, as nodes
+	heap.Init(&q)
 	order := make([]int, 0, n)
+	mark := make([]int, n) // the node for whose sake it was marked last
+	for v := range mark {
+		mark[v] = -1
+	}
+	stamp := 0
 	for len(order) < n {
-		v := -1
-		for d := range buckets {
-			best := -1
-			for c := range buckets[d] { // the smallest number: the ordering is reproducible
-				if best < 0 || c < best {
-					best = c
-				}
-			}
-			if best >= 0 {
-				v = best
-				delete(buckets[d], v)
-				break
-			}
+		t := heap.Pop(&q).(turn)
+		v := t.node
+		if p.rank[v] >= 0 || t.degree != len(near[v]) {
+			continue // an entry that has been overtaken
 		}
 		p.rank[v] = len(order)
 		order = append(order, v)
-		var near []int
-		for u := range work[v] {
-			near = append(near, u)
-		}
-		lists[v] = near
-		for _, u := range near {
-			delete(buckets[len(work[u])], u)
-			delete(work[u], v)
-		}
-		for i, u := range near {
-			for _, w := range near[i+1:] {
-				work[u][w] = struct{}{}
-				work[w][u] = struct{}{}
+		for _, u := range near[v] { // its neighbours become neighbours of each other
+			stamp++
+			kept := near[u][:0]
+			for _, w := range near[u] {
+				if w != v {
+					kept = append(kept, w)
+					mark[w] = stamp
+				}
 			}
-		}
-		for _, u := range near {
-			put(u)
+			for _, w := range near[v] {
+				if w != u && mark[w] != stamp {
+					kept = append(kept, w)
+				}
+			}
+			near[u] = kept
+			heap.Push(&q, turn{len(kept), u})
 		}
 	}
-	return p.fill(order, lists)
+	return p.fill(order, near)
 }
 
-// fill numbers the entries of L column by column and lists where each product
-// of two entries of a column goes.
+// turn is a node that waits for its elimination.
+type turn struct{ degree, node int }
+
+// queue is a heap of turns, the lowest degree first.
+type queue []turn
+
+func (q queue) Len() int { return len(q) }
+func (q queue) Less(i, j int) bool {
+	return q[i].degree < q[j].degree || q[i].degree == q[j].degree && q[i].node < q[j].node
+}
+func (q queue) Swap(i, j int) { q[i], q[j] = q[j], q[i] }
+func (q *queue) Push(x any)   { *q = append(*q, x.(turn)) }
+func (q *queue) Pop() any {
+	last := len(*q) - 1
+	x := (*q)[last]
+	*q = (*q)[:last]
+	return x
+}
+
+// fill numbers the entries of L column by column, from each node's neighbours
+// when it was eliminated, and lists where each product of two entries of a
+// column goes.
 func (p *pattern) fill(order []int, lists [][]int) *pattern {
 	p.start = make([]int, p.n+1)
 	for k, v := range order {
-		rows := make([]int, len(lists[v]))
-		for i, u := range lists[v] {
+		rows := lists[v]
+		for i, u := range rows {
 			rows[i] = p.rank[u]
 		}
 		sort.Ints(rows)
-		for _, r := range rows {
-			p.slot[[2]int{r, k}] = len(p.row)
-			p.row = append(p.row, r)
-		}
+		p.row = append(p.row, rows...)
 		p.start[k+1] = len(p.row)
 	}
 	p.tstart = make([]int, p.n+1)
@@ -106,12 +104,17 @@ func (p *pattern) fill(order []int, lists [][]int) *pattern {
 		rows := p.row[p.start[k]:p.start[k+1]]
 		for i, r := range rows {
 			for _, c := range rows[:i] {
-				p.target = append(p.target, int32(p.slot[[2]int{r, c}]))
+				p.target = append(p.target, int32(p.slot(r, c)))
 			}
 		}
 		p.tstart[k+1] = len(p.target)
 	}
 	return p
+}
+
+// slot returns the place of the entry at positions row > col in the pattern.
+func (p *pattern) slot(row, col int) int {
+	return p.start[col] + sort.SearchInts(p.row[p.start[col]:p.start[col+1]], row)
 }
 
 // factors is the numeric half: the matrix on entry, L and 1/D after factor.
@@ -139,7 +142,7 @@ func (p *pattern) factor(f *factors) bool {
 		if !(cmplxAbs1(d) > 1e-11*f.size[k]) {
 			return false
 		}
-		inv := 1 / d
+		inv := reciprocal(d)
 		f.diag[k] = inv
 		lo, hi := p.start[k], p.start[k+1]
 		t := p.tstart[k]
@@ -200,6 +203,13 @@ func (p *pattern) solveMany(f *factors, b []complex128, m int) {
 			}
 		}
 	}
+}
+
+// reciprocal returns 1/z without the care for infinities that the language
+// takes, at a fraction of the cost. Magnitudes lie far from overflow here.
+func reciprocal(z complex128) complex128 {
+	d := real(z)*real(z) + imag(z)*imag(z)
+	return complex(real(z)/d, -imag(z)/d)
 }
 
 func cmplxAbs1(v complex128) float64 { return math.Abs(real(v)) + math.Abs(imag(v)) }

@@ -41,15 +41,15 @@ func LoadAdmittance(model string, p, q, v, h float64) complex128 {
 		if s2 == 0 {
 			return 0
 		}
-		return 1 / complex(v2*p/s2, h*v2*q/s2)
+		return reciprocal(complex(v2*p/s2, h*v2*q/s2))
 	case "cigre":
 		if p == 0 {
 			return 0
 		}
 		r := v2 / p
-		y := 1 / complex(r, h*0.073*r)
+		y := reciprocal(complex(r, h*0.073*r))
 		if k := 6.7*q/p - 0.74; k > 0 {
-			y += 1 / complex(0, h*r/k)
+			y += reciprocal(complex(0, h*r/k))
 		}
 		return y
 	case "open":
@@ -94,6 +94,6 @@ func (e *Motor) admit(_, h float64, q phasor.Sequence) primitive {
 	if q == phasor.Zero || (h == 1 && q == phasor.Positive) {
 		return primitive{}
 	}
-	return primitive{y00: 1 / complex(e.R*power(h, e.Exponent), e.X*h)}
+	return primitive{y00: reciprocal(complex(e.R*power(h, e.Exponent), e.X*h))}
 }
 func (e *Motor) draw(v [3]complex128) [3]complex128 { return (&PowerLoad{P: e.P, Q: e.Q}).draw(v) }

@@ -37,7 +37,7 @@ func (s *System) places() {
 		if r < c {
 			r, c = c, r
 		}
-		p.low = int32(s.pat.slot[[2]int{r, c}])
+		p.low = int32(s.pat.slot(r, c))
 	}
 }
 

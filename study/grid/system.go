@@ -4,6 +4,7 @@ import (
 	"fmt"
 	"math"
 	"math/cmplx"
+	"slices"
 
 	"quietbus/study/phasor"
 )
@@ -81,17 +82,16 @@ func (n *Network) Compile() (*System, error) {
 	if err := s.reach(); err != nil {
 		return nil, err
 	}
-	adj := make([]map[int]struct{}, s.nodes)
-	for i := range adj {
-		adj[i] = map[int]struct{}{}
-	}
+	near := make([][]int, s.nodes)
 	for _, e := range n.elements {
 		if b := e.ends(); len(b) == 2 {
 			i, j := s.node[b[0]], s.node[b[1]]
-			adj[i][j], adj[j][i] = struct{}{}, struct{}{}
+			if !slices.Contains(near[i], j) { // few elements meet at a bus
+				near[i], near[j] = append(near[i], j), append(near[j], i)
+			}
 		}
 	}
-	s.pat = newPattern(s.nodes, adj)
+	s.pat = newPattern(s.nodes, near)
 	s.places()
 	s.turn = make([]complex128, s.nodes)
 	for k := range s.turn {
