@@ -234,7 +234,11 @@ func (m *model) point(ctx context.Context, a *Assessment, o *Outcome) (PointResu
 
 // take adds rows, or the reason why there are none.
 func (p *PointResult) take(rows []limits.Row, err error) error {
-	p.Rows = append(p.Rows, rows...)
+	if p.Rows == nil {
+		p.Rows = rows
+	} else {
+		p.Rows = append(p.Rows, rows...)
+	}
 	if why, ok := limits.IsNotAssessed(err); ok {
 		p.NotAssessed = append(p.NotAssessed, why)
 		return nil

@@ -59,9 +59,8 @@ func (m *model) brief(ctx context.Context, sol *solution) (*Brief, error) {
 			seen[a.Bus] = true
 			o.Buses = append(o.Buses, m.busResult(a.Bus, sol))
 		}
-		if kind, item := s.Find(a.Current); item != nil && !seen["\x00"+a.Current] {
-			seen["\x00"+a.Current] = true
-			m.passive(o, sol, kind, a.Current)
+		if _, stands := m.element[a.Current]; stands && o.Element(a.Current) == nil {
+			m.passive(o, sol, "", a.Current)
 		}
 	}
 	b.Points, b.Dead = make([]PointResult, 0, len(s.Assessments)), make([]bool, len(s.Assessments))
@@ -186,21 +185,22 @@ func (m *model) resonance(ctx context.Context, b *Brief) error {
 	if err != nil {
 		return err
 	}
+	var names []string
 	for i := range m.plan.study.Buses {
-		bus := m.plan.study.Buses[i].Name
-		if !buses[bus] || !m.system.Live(m.bus[bus]) {
-			continue
+		if bus := m.plan.study.Buses[i].Name; buses[bus] && m.system.Live(m.bus[bus]) {
+			names = append(names, bus)
 		}
-		base, err := m.look(ctx, bus, 1)
-		if err != nil {
-			return err
-		}
-		for _, h := range orders {
+	}
+	base := make([]float64, len(names))
+	for _, h := range append([]int{1}, orders...) {
+		for i, bus := range names {
 			z, err := m.look(ctx, bus, h)
 			if err != nil {
 				return err
 			}
-			if times := cmplx.Abs(z) / (float64(h) * cmplx.Abs(base)); times > b.Resonance.Times {
+			if h == 1 {
+				base[i] = cmplx.Abs(z)
+			} else if times := cmplx.Abs(z) / (float64(h) * base[i]); times > b.Resonance.Times {
 				b.Resonance = Amplified{h, bus, times}
 			}
 		}

@@ -109,12 +109,21 @@ func (p *Prepared) model(on []string, state string) (*model, error) {
 	if !ready {
 		stood = p.study.In(x)
 	}
+	plan, err := p.plan(stood, name, on)
+	if err != nil {
+		return nil, err
+	}
+	return plan.build()
+}
+
+// plan applies measures to the study as it stands in a state.
+func (p *Prepared) plan(stood *Study, state string, on []string) (*plan, error) {
 	plan, err := stood.apply(on)
 	if err != nil {
 		return nil, err
 	}
-	plan.origin, plan.state, plan.skin, plan.sets = p.study, name, p.skin, p.sets
-	return plan.build()
+	plan.origin, plan.state, plan.skin, plan.sets = p.study, state, p.skin, p.sets
+	return plan, nil
 }
 
 // solution is a solved model: the network's solution, what each non-linear

@@ -27,6 +27,7 @@ type Quick struct {
 	touched  map[string]bool // banks and filters that some measure changes or that vary
 	fixed    bool            // nothing may be updated: each choice is solved in full
 	bases    map[string]*quickBase
+	lines    map[*NonlinearLoad][]line
 	Full     int // how many evaluations were solved in full
 }
 
@@ -44,7 +45,7 @@ func (p *Prepared) Quick(state string, vary ...string) (*Quick, error) {
 	if err != nil {
 		return nil, err
 	}
-	q := &Quick{prepared: p, state: p.study.States()[0], stood: p.study.In(x), touched: map[string]bool{}, bases: map[string]*quickBase{}}
+	q := &Quick{prepared: p, state: p.study.States()[0], stood: p.study.In(x), touched: map[string]bool{}, bases: map[string]*quickBase{}, lines: map[*NonlinearLoad][]line{}}
 	if x != nil {
 		q.state = x.Name
 	}
@@ -91,11 +92,13 @@ func (q *Quick) Brief(ctx context.Context, on []string) (*Brief, error) {
 // the state, only in its supplies, its non-linear loads' values, its measures
 // and the banks and filters named to Quick.
 func (q *Quick) BriefOf(ctx context.Context, stood *Study, on []string) (*Brief, error) {
-	plan, err := stood.apply(on)
+	plan, err := q.prepared.plan(stood, q.state, on)
 	if err != nil {
 		return nil, err
 	}
-	plan.origin, plan.state, plan.skin = q.prepared.study, q.state, q.prepared.skin
+	if stood == q.stood {
+		plan.lines = q.lines
+	}
 	if !q.fixed {
 		brief, err := q.update(ctx, plan)
 		var refactor *grid.RefactorError
@@ -177,11 +180,11 @@ func (q *Quick) base(ctx context.Context, plan *plan) (*quickBase, error) {
 	if b := q.bases[key]; b != nil {
 		return b, nil
 	}
-	bare, err := q.stood.apply(names)
+	bare, err := q.prepared.plan(q.stood, q.state, names)
 	if err != nil {
 		return nil, err
 	}
-	bare.origin, bare.state, bare.skin, bare.chosen = plan.origin, plan.state, plan.skin, rest
+	bare.chosen = rest
 	bare.banks = slices.DeleteFunc(slices.Clone(bare.banks), func(b Bank) bool { return q.touched[b.Name] })
 	bare.filters = slices.DeleteFunc(slices.Clone(bare.filters), func(f Filter) bool { return q.touched[f.Name] })
 	m, err := bare.build()

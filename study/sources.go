@@ -22,6 +22,19 @@ type line struct {
 // spectrumOf returns the relative spectrum of a non-linear load: as typed, as
 // its typical kind has it, or as given by the measure that changed it.
 func (p *plan) spectrumOf(l *NonlinearLoad) ([]line, error) {
+	_, changed := p.spectra[l.Name]
+	if lines, ok := p.lines[l]; ok && !changed {
+		return lines, nil
+	}
+	lines, err := p.linesOf(l)
+	if err == nil && p.lines != nil && !changed {
+		p.lines[l] = lines
+	}
+	return lines, err
+}
+
+// linesOf works the spectrum out.
+func (p *plan) linesOf(l *NonlinearLoad) ([]line, error) {
 	var lines []line
 	add := func(order int, percent, deg float64) {
 		if order != 1 && percent != 0 {

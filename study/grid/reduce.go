@@ -53,7 +53,7 @@ func (s *System) Reduce(ctx context.Context, order int, buses []BusID) (*Reduced
 		if !s.live[k] {
 			continue
 		}
-		switch e.(type) {
+		switch e := e.(type) {
 		case *Supply:
 			add(k)
 		case *PhaseShunt:
@@ -61,6 +61,9 @@ func (s *System) Reduce(ctx context.Context, order int, buses []BusID) (*Reduced
 			r.shunts = append(r.shunts, ElementID(id))
 			r.drawing = append(r.drawing, ElementID(id))
 		case Drawing:
+			if l, ok := e.(*Load); ok && l.AtOrder1 == "impedance" {
+				continue // it is in the admittances, and draws nothing on top
+			}
 			add(k)
 			r.drawing = append(r.drawing, ElementID(id))
 		}

@@ -25,6 +25,7 @@ type Variant struct {
 	r        *Reduced
 	shunts   []Added
 	supplies []*Supply // in place of the system's, by their order there
+	some     []int     // places of currents that are not zero
 	at       []int     // ports with an added admittance
 	y        [3][]complex128
 	zero     bool
@@ -37,7 +38,7 @@ type Variant struct {
 	m, x     []complex128      // small system
 	pivot    []int
 	rounds   int
-	worst    float64
+	looked   [2]int // sequence and order that the small system is factored for by Impedance
 }
 
 // Variant returns a variant without changes.
@@ -67,7 +68,7 @@ func (e *RefactorError) Error() string {
 //
 // Errors: a live bus that is no port.
 func (v *Variant) Set(shunts []Added) error {
-	v.shunts, v.at, v.zero = shunts, v.at[:0], false
+	v.shunts, v.at, v.zero, v.looked = shunts, v.at[:0], false, [2]int{}
 	for i := range shunts {
 		k := v.r.sys.node[shunts[i].Bus]
 		if !v.r.sys.live[k] {
@@ -166,15 +167,20 @@ func (v *Variant) emfs(h int) {
 func (v *Variant) multiply(h, lo, hi int, z []complex128) {
 	p := len(v.r.nodes)
 	out, in := v.v[h][lo*p:hi*p], v.current[lo*p:hi*p]
-	clear(out)
 	n := len(in)
+	v.some = v.some[:0]
 	for j, c := range in {
-		if c == 0 {
-			continue
+		if c != 0 {
+			v.some = append(v.some, j)
 		}
-		for i := range out {
-			out[i] += z[i*n+j] * c
+	}
+	for i := range out {
+		var sum complex128
+		row := z[i*n : i*n+n]
+		for _, j := range v.some {
+			sum += row[j] * in[j]
 		}
+		out[i] = sum
 	}
 }
 
@@ -183,6 +189,7 @@ func (v *Variant) multiply(h, lo, hi int, z []complex128) {
 func (v *Variant) small(lo, hi int, z []complex128) bool {
 	p, n := len(v.r.nodes), len(v.at)
 	stride, k := (hi-lo)*p, (hi-lo)*n
+	v.looked = [2]int{}
 	v.m = append(v.m[:0], make([]complex128, k*k)...)
 	v.pivot = append(v.pivot[:0], make([]int, k)...)
 	for i := range k {

@@ -23,7 +23,7 @@ func (v *Variant) ReplaceLoad(id ElementID, with Drawing) {
 // Impedance returns the driving-point impedance at a port in one sequence and
 // order, ohm, as System.Scan does for the whole network: EMFs shorted, loads
 // that draw a current of their own and single-phase shunts open. Set comes
-// first.
+// first. Buses are best asked for order by order.
 //
 // Errors: *RefactorError; a bus that is no port.
 func (v *Variant) Impedance(b BusID, q phasor.Sequence, h int) (complex128, error) {
@@ -37,9 +37,12 @@ func (v *Variant) Impedance(b BusID, q phasor.Sequence, h int) (complex128, erro
 	if len(v.at) == 0 || q == phasor.Zero && !v.zero {
 		return own, nil
 	}
-	v.admittances(h)
-	if !v.small(int(q), int(q)+1, z) {
-		return 0, &RefactorError{h}
+	if key := [2]int{int(q), h}; v.looked != key {
+		v.admittances(h)
+		if !v.small(int(q), int(q)+1, z) {
+			return 0, &RefactorError{h}
+		}
+		v.looked = key
 	}
 	v.x = v.x[:0]
 	for _, at := range v.at {
