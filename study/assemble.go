@@ -8,6 +8,7 @@ import (
 	"slices"
 
 	"quietbus/study/filter"
+	"quietbus/study/grid"
 	"quietbus/study/limits"
 	"quietbus/study/phasor"
 )
@@ -16,8 +17,8 @@ import (
 func (m *model) outcome(ctx context.Context, sol *solution) (*Outcome, error) {
 	s := m.plan.study
 	o := &Outcome{Study: m.plan.origin, State: m.plan.state}
-	if w, ok := sol.net.(*whole); ok {
-		o.Check = Check(w.Check)
+	if w, ok := sol.net.(interface{ check() grid.Check }); ok {
+		o.Check = Check(w.check())
 	}
 	for _, x := range m.plan.chosen {
 		o.On = append(o.On, x.Name)
@@ -164,6 +165,14 @@ func (m *model) elements(o *Outcome, sol *solution) {
 
 func (m *model) passive(o *Outcome, sol *solution, kind Kind, name string) {
 	e := ElementResult{Name: name, Kind: kind}
+	if x, ok := sol.net.(*summed); ok {
+		ends, neutrals := x.endsAndNeutrals(m.element[name])
+		for k, end := range ends {
+			e.Ends = append(e.Ends, EndResult{Bus: m.plan.study.Buses[end.Bus].Name, Phase: end.Phase, Neutral: neutrals[k]})
+		}
+		o.Elements = append(o.Elements, e)
+		return
+	}
 	for _, end := range m.ends(sol, name) {
 		e.Ends = append(e.Ends, endResult(m.plan.study.Buses[end.Bus].Name, end.Phase))
 	}
@@ -179,9 +188,8 @@ func source(kind Kind, name, bus string, current [3]phasor.Spectrum) ElementResu
 func endResult(bus string, phase [3]phasor.Spectrum) EndResult {
 	e := EndResult{Bus: bus, Phase: phase}
 	for h := range phase[0] {
-		a, b, c := phase[0][h], phase[1].At(h), phase[2].At(h)
-		sum := a + b + c
-		if sum == 0 || cmplx.Abs(sum) <= 1e-9*(cmplx.Abs(a)+cmplx.Abs(b)+cmplx.Abs(c)) {
+		sum := neutralOf([3]complex128{phase[0][h], phase[1].At(h), phase[2].At(h)})
+		if sum == 0 {
 			continue
 		}
 		if e.Neutral == nil {
@@ -190,6 +198,16 @@ func endResult(bus string, phase [3]phasor.Spectrum) EndResult {
 		e.Neutral[h] = sum
 	}
 	return e
+}
+
+// neutralOf returns the sum of three phase currents, 0 where it is only
+// rounding.
+func neutralOf(i [3]complex128) complex128 {
+	sum := i[0] + i[1] + i[2]
+	if sum == 0 || cmplx.Abs(sum) <= 1e-9*(cmplx.Abs(i[0])+cmplx.Abs(i[1])+cmplx.Abs(i[2])) {
+		return 0
+	}
+	return sum
 }
 
 // point assesses one point.
@@ -301,7 +319,7 @@ func (m *model) warn(o *Outcome, sol *solution) {
 				unknown = append(unknown, fmt.Sprint(b.Order))
 			}
 		}
-		if unknown != nil {
+		if word, _ := m.plan.origin.SummationLaw(); unknown != nil && word == PhasorSum {
 			o.Warnings = append(o.Warnings, fmt.Sprintf("%s: the angle of its background is unknown at order %s and counts as zero; the background may add to or take from the site's own distortion.", x.Name, join(unknown)))
 		}
 	}

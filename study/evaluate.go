@@ -132,6 +132,8 @@ type solution struct {
 	net    solver
 	drawn  map[string][3]phasor.Spectrum // by non-linear load
 	active map[string]activeResult       // by measure
+
+	injections []grid.Injection
 }
 
 // solve runs the power flow, derives the harmonic currents from it and solves
@@ -175,8 +177,8 @@ func (m *model) solve(ctx context.Context) (*solution, error) {
 	if err := base.Harmonics(ctx, injections); err != nil {
 		return nil, m.named(err)
 	}
-	sol.net = base
-	return sol, nil
+	sol.net, sol.injections = base, injections
+	return sol, m.sum(ctx, sol)
 }
 
 // named turns an error of the network into one that names item and field of

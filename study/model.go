@@ -26,6 +26,11 @@ type Study struct {
 	FrequencyHz float64 `json:"frequencyHz" label:"System frequency" unit:"Hz" range:"[10,1000]" typical:"50..60" need:"yes" help:"Fundamental frequency, 50 or 60 as a rule."`
 	MaxOrder    int     `json:"maxOrder,omitempty" label:"Highest order" range:"[2,100]" default:"50" help:"Highest harmonic order that is computed."`
 
+	Summation      string  `json:"summation,omitempty" label:"Adding sources" choices:"phasor|second-law|arithmetic" default:"phasor" help:"How several sources of one order are added: with their angles as stated, by the second summation law of IEC/TR 61000-3-6 where angles are not known, or arithmetically as the worst case. The background is one of the sources."`
+	ExponentLow    float64 `json:"exponentLow,omitempty" label:"Exponent below order 5" range:"[1,3]" typical:"1..2" default:"1" help:"Second summation law only: own exponent for orders below 5."`
+	ExponentMiddle float64 `json:"exponentMiddle,omitempty" label:"Exponent 5 to 10" range:"[1,3]" typical:"1..2" default:"1.4" help:"Second summation law only: own exponent for orders 5 to 10."`
+	ExponentHigh   float64 `json:"exponentHigh,omitempty" label:"Exponent above 10" range:"[1,3]" typical:"1..2" default:"2" help:"Second summation law only: own exponent for orders above 10."`
+
 	Supplies       []Supply        `json:"supplies,omitempty" help:"Utility supplies: an EMF behind the fault impedance."`
 	Buses          []Bus           `json:"buses,omitempty" help:"Busbars and boards."`
 	Transformers   []Transformer   `json:"transformers,omitempty" help:"Two-winding transformers."`

@@ -49,6 +49,9 @@ func (p *Prepared) Quick(state string, vary ...string) (*Quick, error) {
 	if x != nil {
 		q.state = x.Name
 	}
+	if word, _ := q.stood.SummationLaw(); word != PhasorSum {
+		q.fixed = true // the sources' parts need the whole network
+	}
 	for _, name := range vary {
 		q.touched[name] = true
 	}

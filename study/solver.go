@@ -32,6 +32,8 @@ func (w *whole) Fundamental(ctx context.Context) (err error) {
 	return err
 }
 
+func (w *whole) check() grid.Check { return w.Solution.Check }
+
 func (w *whole) Voltage(b grid.BusID) [3]complex128     { return w.base.Voltage(b) }
 func (w *whole) Current(e grid.ElementID) [3]complex128 { return w.base.Current(e) }
 

@@ -32,6 +32,7 @@ type Solution struct {
 	prim  [3][][]primitive  // by sequence and order: each element's admittance, nil when not solved
 	base  *Fundamental
 	shunt map[ElementID]phasor.Spectrum // current through phase shunts, orders 2..H
+	muted map[ElementID]bool            // supplies whose background is left out; nil for none: see Contributions
 }
 
 // Harmonics solves orders 2..order for the given currents and the supplies'
@@ -400,7 +401,7 @@ func (x *Solution) Ends(id ElementID) []End {
 				i += y.y01 * v[p.n1]
 				s[1][q] = x.sys.turned(int(p.n1), phasor.Sequence(q), y.y01*v[p.n0]+y.y11*v[p.n1])
 			}
-			if supply {
+			if supply && !x.muted[id] {
 				i -= sup.emf(h, phasor.Sequence(q)) * y.y00
 			}
 			s[0][q] = x.sys.turned(int(p.n0), phasor.Sequence(q), i)
