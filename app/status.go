@@ -19,6 +19,7 @@ func checkText(p *Picture) string {
 	if c.Fallback > 0 {
 		text += fmt.Sprintf(", %s by the dense solver", count(c.Fallback, "order"))
 	}
+	text += ". Sources: " + p.After.Study.SummationShort()
 	return text + fmt.Sprintf(". Numbers in %s ms", short(float64(p.Took.Microseconds())/1000))
 }
 

@@ -18,6 +18,7 @@ func Margins(before, after *study.Outcome) *Figure {
 	f := &Figure{Key: "margins", Title: "Share of each limit used", Size: vg.Point{X: 480, Y: 280}}
 	rows, open := shares(before, after)
 	f.Caption = "Value over limit, worst rows first; 100 % is at the limit."
+	f.Caption += summed(after)
 	for _, words := range open {
 		f.Caption += " Not assessed: " + words + "."
 	}

@@ -24,7 +24,7 @@ func Spectrum(before, after *study.Outcome, sel Selection) *Figure {
 		rows, set, demand = sel.rows(before)
 	}
 	b, a := sel.read(before, demand), sel.read(after, demand)
-	f.Caption = spectrumCaption(sel, b, a, set, demand)
+	f.Caption = spectrumCaption(sel, b, a, set, demand) + summed(after)
 	f.Draw = func(c draw.Canvas, st *Style) []Hot {
 		return drawSpectrum(newPen(c, st), sel, b, a, rows, set, demand)
 	}

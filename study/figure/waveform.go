@@ -56,7 +56,7 @@ func Waveform(before, after *study.Outcome, sel Selection) *Figure {
 	if w.periods == 2 {
 		many = "Two periods"
 	}
-	f.Caption = fmt.Sprintf("%s of phase %s, synthesised from the spectrum.%s", many, phaseNames[phase], crest)
+	f.Caption = fmt.Sprintf("%s of phase %s, synthesised from the spectrum.%s%s", many, phaseNames[phase], crest, summedWave(after))
 	f.Draw = func(c draw.Canvas, st *Style) []Hot { return w.draw(newPen(c, st), sel) }
 	return f
 }

@@ -29,7 +29,7 @@ func (p *printer) againstLimits() {
 	if p.before == nil {
 		text = "The line across a bar is the limit; a bar ends at twice the limit."
 	}
-	p.paragraph(span{p.muted, text + fmt.Sprintf(" Rows above %.0f %% of their limit, worst first.", 100*worthPrinting)})
+	p.paragraph(span{p.muted, text + fmt.Sprintf(" Rows above %.0f %% of their limit, worst first. Several sources: %s.", 100*worthPrinting, p.study.SummationWords())})
 	for i := range p.after.Points {
 		p.pointTable(i)
 	}

@@ -18,7 +18,7 @@ var methodParts = [][2]string{
 	{"Vector groups", "Clock number n: the low-voltage positive sequence lags the high-voltage one by n × 30°, the negative sequence leads by as much. The zero sequence follows windings and neutral connections. Notation of IEC 60076-1."},
 	{"Order 1", "A power flow: each supply is an EMF behind its fault impedance; linear loads draw constant impedance, power or current as stated; converters draw their power and displacement factor at the solved voltage."},
 	{"Orders above 1", "Nodal admittance Y(h) V = I order by order, with the non-linear loads as current sources and the supply's background voltage behind its impedance. Frequency models: transformer and motor leakage reactance in proportion to the order, resistance by the stated exponent; cables with their skin-effect law (Bessel functions for round conductors, or the form of IEC 60287-1-1); linear loads by the stated passive model. After J. Arrillaga and N. R. Watson, Power System Harmonics, 2nd ed. (2003), and the load models of CIGRE WG 36-05, Electra 77 (1981)."},
-	{"Several sources at one order", "Added as phasors with the angles stated. An angle left out counts as 0."},
+	{"Several sources at one order", "Added as phasors with the angles stated, an angle left out counting as 0; or by the second summation law Uh = (Σ |Uhi|^α)^(1/α) of IEC/TR 61000-3-6:2008 clause 7.2.1, or arithmetically (α = 1), for each voltage and current from what every non-linear load and every background makes of it alone. An active filter counts with the loads it answers to. Angles are then those of the phasor sum."},
 	{"Impedance scans", "Driving-point impedance with the EMFs shorted and the non-linear loads open. A peak is a parallel resonance, a valley a series one."},
 	{"Filters", "Stated kvar are the output of the whole branch at order 1. Single-tuned: XL = XC/n², Q = n XL/R at the tuned order n. Second-order high-pass: the same L and C with R = Q n XL beside L. Detuning by p per cent tunes to n = 10/√p and raises the capacitor's voltage by 1/(1 − p/100). Background: IEEE 1531."},
 	{"Active filters", "Each removes its stated share of the sensed harmonic current up to its order ceiling; asked for more than its rating it scales all orders down alike, and the result says so."},
@@ -33,6 +33,7 @@ func (p *printer) method() {
 		p.paragraph(span{p.small.bold(), m[0] + "  "}, span{p.small, m[1]})
 		p.y -= 2
 	}
+	p.paragraph(span{p.small.bold(), "Used here  "}, span{p.small, "Several sources of one order: " + p.study.SummationWords() + "."})
 	p.subsection("Check of the solution", 40)
 	t := &table{columns: []column{
 		{head: "", min: 60}, {head: "Residual", align: right}, {head: "Power balance", align: right}, {head: "Reciprocity", align: right}, {head: "Orders solved densely", align: right}, {head: "Rounds of order 1", align: right}, {head: "", flex: 1},

@@ -50,8 +50,9 @@ type StudyInfo struct {
 
 // Settings are what the whole study shares.
 type Settings struct {
-	FrequencyHz Num `json:"frequencyHz"`
-	MaxOrder    int `json:"maxOrder"` // arrays by order have maxOrder+1 elements
+	FrequencyHz Num    `json:"frequencyHz"`
+	MaxOrder    int    `json:"maxOrder"`  // arrays by order have maxOrder+1 elements
+	Summation   string `json:"summation"` // how several sources of one order are added
 }
 
 // Verdict is the sentence at one assessment point.

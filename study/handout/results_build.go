@@ -30,7 +30,7 @@ func NewResults(in Input) (*Results, error) {
 			Revision: s.Title.Revision, Date: s.Title.Date, Remarks: s.Title.Remarks,
 			Invented: s.Title.Invented, SHA256: digest,
 		},
-		Settings: Settings{FrequencyHz: Num(s.FrequencyHz), MaxOrder: s.Order()},
+		Settings: Settings{FrequencyHz: Num(s.FrequencyHz), MaxOrder: s.Order(), Summation: s.SummationWords()},
 		Verdict:  []Verdict{},
 	}
 	for _, v := range in.verdict() {

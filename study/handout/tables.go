@@ -61,6 +61,7 @@ func aboutSheet(doc *Results) *sheet {
 	s.add("Study file, sha256", t.SHA256)
 	s.add("System frequency (Hz)", doc.Settings.FrequencyHz)
 	s.add("Highest order", doc.Settings.MaxOrder)
+	s.add("Several sources of one order", doc.Settings.Summation)
 	for _, v := range doc.Verdict {
 		s.add("Verdict "+v.Point, v.Text)
 		if v.Before != "" {
