@@ -24,6 +24,7 @@ type plan struct {
 	notes   map[string][]string                // by measure
 	skin    map[string]func(h float64) float64 // by cable, worked out once; may be nil
 	sets    map[string]*limits.Set             // the study's own limits, worked out once; may be nil
+	vary    *Variation                         // nil: as stated
 	lines   map[*NonlinearLoad][]line          // spectra worked out before; nil to keep none
 }
 

@@ -239,7 +239,28 @@ func (m *model) sourceOrders() ([]int, error) {
 // Brief is the comparison's view of one full evaluation, by which a Quick is
 // checked.
 func (p *Prepared) Brief(ctx context.Context, on []string, state string) (*Brief, error) {
-	m, err := p.model(on, state)
+	return p.BriefOf(ctx, nil, on, state)
+}
+
+// BriefOf is the same for a variation of the study.
+func (p *Prepared) BriefOf(ctx context.Context, v *Variation, on []string, state string) (*Brief, error) {
+	x, err := p.study.state(state)
+	if err != nil {
+		return nil, err
+	}
+	s, name := p.study, NormalState
+	if v != nil {
+		s = v.Study
+	}
+	if x != nil {
+		name = x.Name
+	}
+	plan, err := p.plan(s.In(x), name, on)
+	if err != nil {
+		return nil, err
+	}
+	plan.vary = v
+	m, err := plan.build()
 	if err != nil {
 		return nil, err
 	}

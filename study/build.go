@@ -38,6 +38,7 @@ func (p *plan) build() (*model, error) {
 	s := p.study
 	m := &model{plan: p, net: grid.New(s.FrequencyHz), bus: map[string]grid.BusID{}, volts: map[string]float64{},
 		element: map[string]grid.ElementID{}, branch: map[string]*filter.Branch{}, outlets: map[string]outlet{}}
+	m.net.Deviate(m.plan.vary.ratio())
 	for _, b := range s.Buses {
 		m.bus[b.Name], m.volts[b.Name] = m.net.AddBus(b.Name, 1000*b.NominalKV), 1000*b.NominalKV
 	}
@@ -108,6 +109,7 @@ func (m *model) supply(s *Supply) *grid.Supply {
 	x := z * s.XOverR / math.Hypot(1, s.XOverR)
 	e := &grid.Supply{Name: s.Name, Bus: m.bus[s.Bus], R: x / s.XOverR, X: x,
 		EMF: cmplx.Rect(v*or(s.VoltagePercent, 100)/100, radians(s.AngleDeg))}
+	e.Ratio = m.plan.vary.ratio()
 	e.R0, e.X0 = e.R*s.ZeroSequenceRatio, e.X*s.ZeroSequenceRatio
 	switch s.ResistanceLaw {
 	case "sqrt":
@@ -337,6 +339,7 @@ func (m *model) addBranch(name, bus, connection string, b *filter.Branch, err er
 	if err != nil {
 		return asFieldError(name, err)
 	}
+	b = m.plan.vary.drifted(name, b)
 	m.branch[name] = b
 	if m.base != nil {
 		return m.addVariant(name, bus, connection, b)

@@ -91,6 +91,7 @@ var kinds = []KindInfo{
 	{Kind: KindLimitSet, Key: "limitSets", Singular: "limit set", Plural: "Own limit sets"},
 	{Kind: KindScan, Key: "scans", Singular: "impedance scan", Plural: "Impedance scans"},
 	{Kind: KindState, Key: "states", Singular: "operating state", Plural: "Operating states"},
+	{Kind: KindRange, Key: "ranges", Singular: "range", Plural: "Ranges"},
 }
 
 var described = map[Kind][]Field{}

@@ -49,6 +49,7 @@ type Study struct {
 	Scans          []ScanRequest   `json:"scans,omitempty" help:"Impedance scans wanted in the results: driving-point or transfer."`
 
 	OperatingStates []OperatingState `json:"states,omitempty" help:"Ways in which the site is run; the study as stated is the normal one."`
+	Ranges          []Range          `json:"ranges,omitempty" help:"Between what bounds values lie that are not known for sure."`
 
 	Drawing map[string]Point `json:"drawing,omitempty" help:"Place of each bus on the single-line, by name; absent ones are laid out by themselves."`
 }

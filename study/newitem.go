@@ -43,6 +43,8 @@ func NewItem(kind Kind) any {
 		item = &ScanRequest{}
 	case KindState:
 		item = &OperatingState{}
+	case KindRange:
+		item = &Range{Kind: RangeAngle, Low: -180, High: 180}
 	default:
 		return nil
 	}

@@ -3,6 +3,7 @@ package study
 import (
 	"context"
 	"errors"
+	"fmt"
 	"slices"
 	"strings"
 
@@ -21,14 +22,15 @@ import (
 //
 // A Quick keeps memory from one call to the next: one for each goroutine.
 type Quick struct {
-	prepared *Prepared
-	state    string
-	stood    *Study
-	touched  map[string]bool // banks and filters that some measure changes or that vary
-	fixed    bool            // nothing may be updated: each choice is solved in full
-	bases    map[string]*quickBase
-	lines    map[*NonlinearLoad][]line
-	Full     int // how many evaluations were solved in full
+	prepared  *Prepared
+	state     string
+	operating *OperatingState // nil: as stated
+	stood     *Study
+	touched   map[string]bool // banks and filters that some measure changes or that vary
+	fixed     bool            // nothing may be updated: each choice is solved in full
+	bases     map[string]*quickBase
+	lines     map[*NonlinearLoad][]line
+	Full      int // how many evaluations were solved in full
 }
 
 // quickBase is a reduced network with the measures that an update cannot
@@ -45,7 +47,7 @@ func (p *Prepared) Quick(state string, vary ...string) (*Quick, error) {
 	if err != nil {
 		return nil, err
 	}
-	q := &Quick{prepared: p, state: p.study.States()[0], stood: p.study.In(x), touched: map[string]bool{}, bases: map[string]*quickBase{}, lines: map[*NonlinearLoad][]line{}}
+	q := &Quick{prepared: p, state: p.study.States()[0], operating: x, stood: p.study.In(x), touched: map[string]bool{}, bases: map[string]*quickBase{}, lines: map[*NonlinearLoad][]line{}}
 	if x != nil {
 		q.state = x.Name
 	}
@@ -88,21 +90,27 @@ func updatable(kind string) bool {
 
 // Brief evaluates the named measures. Errors are those of Evaluate.
 func (q *Quick) Brief(ctx context.Context, on []string) (*Brief, error) {
-	return q.BriefOf(ctx, q.stood, on)
-}
-
-// BriefOf evaluates a study that differs from the prepared one, as it stands in
-// the state, only in its supplies, its non-linear loads' values, its measures
-// and the banks and filters named to Quick.
-func (q *Quick) BriefOf(ctx context.Context, stood *Study, on []string) (*Brief, error) {
-	plan, err := q.prepared.plan(stood, q.state, on)
+	plan, err := q.prepared.plan(q.stood, q.state, on)
 	if err != nil {
 		return nil, err
 	}
-	if stood == q.stood {
-		plan.lines = q.lines
+	plan.lines = q.lines
+	return q.brief(ctx, plan)
+}
+
+// BriefOf evaluates a variation of the prepared study; the banks and filters
+// that vary were named to Quick.
+func (q *Quick) BriefOf(ctx context.Context, v *Variation, on []string) (*Brief, error) {
+	plan, err := q.prepared.plan(v.Study.In(q.operating), q.state, on)
+	if err != nil {
+		return nil, err
 	}
-	if !q.fixed {
+	plan.vary = v
+	return q.brief(ctx, plan)
+}
+
+func (q *Quick) brief(ctx context.Context, plan *plan) (*Brief, error) {
+	if !q.fixed && (plan.vary == nil || !plan.vary.rebuilt) {
 		brief, err := q.update(ctx, plan)
 		var refactor *grid.RefactorError
 		if err == nil || !errors.As(err, &refactor) {
@@ -179,7 +187,8 @@ func (q *Quick) base(ctx context.Context, plan *plan) (*quickBase, error) {
 			rest, names = append(rest, x), append(names, x.Name)
 		}
 	}
-	key := strings.Join(names, "\x00")
+	ratio := plan.vary.ratio()
+	key := fmt.Sprintf("%s\x00%g", strings.Join(names, "\x00"), ratio)
 	if b := q.bases[key]; b != nil {
 		return b, nil
 	}
@@ -188,6 +197,9 @@ func (q *Quick) base(ctx context.Context, plan *plan) (*quickBase, error) {
 		return nil, err
 	}
 	bare.chosen = rest
+	if ratio != 0 {
+		bare.vary = &Variation{frequency: plan.vary.frequency}
+	}
 	bare.banks = slices.DeleteFunc(slices.Clone(bare.banks), func(b Bank) bool { return q.touched[b.Name] })
 	bare.filters = slices.DeleteFunc(slices.Clone(bare.filters), func(f Filter) bool { return q.touched[f.Name] })
 	m, err := bare.build()

@@ -27,6 +27,7 @@ func (p *plan) spectrumOf(l *NonlinearLoad) ([]line, error) {
 		return lines, nil
 	}
 	lines, err := p.linesOf(l)
+	p.vary.turn(l.Name, lines)
 	if err == nil && p.lines != nil && !changed {
 		p.lines[l] = lines
 	}

@@ -38,6 +38,7 @@ func (s *Study) Validate() []*FieldError {
 	if len(c.found) == 0 {
 		c.items()
 		c.operating()
+		c.ranges()
 		c.measures()
 		c.wiring()
 	}

@@ -15,6 +15,7 @@ type Supply struct {
 	R, X       float64    // ohm at order 1
 	R0, X0     float64    // zero sequence; both zero: no path
 	Exponent   float64    // R(h) = R h^Exponent
+	Ratio      float64    // of the system frequency to nominal, 0 for one: see Network.Deviate
 	Background []Background
 }
 
@@ -35,6 +36,9 @@ func (e *Supply) check() *ElementError {
 	return positive(e.Name, "impedance", math.Hypot(e.R, e.X))
 }
 func (e *Supply) admittance(h float64, q phasor.Sequence) complex128 {
+	if e.Ratio != 0 {
+		h *= e.Ratio
+	}
 	r, x := e.R, e.X
 	if q == phasor.Zero {
 		r, x = e.R0, e.X0

@@ -63,6 +63,7 @@ type Network struct {
 	nominal  []float64
 	joins    [][2]BusID
 	elements []Element
+	ratio    float64 // of the system frequency to nominal; 0 for one: see Deviate
 }
 
 // New returns an empty network with the given fundamental frequency in Hz.

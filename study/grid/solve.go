@@ -45,7 +45,7 @@ func (s *System) places() {
 func (s *System) admit(dst []primitive, h float64, q phasor.Sequence) {
 	for i, e := range s.net.elements {
 		if s.place[i].live {
-			dst[i] = e.admit(s.net.f1, h, q)
+			dst[i] = s.net.at(e, h, q)
 		} else {
 			dst[i] = primitive{}
 		}
