@@ -60,7 +60,7 @@ func newEvidencePart(w *Window) *evidencePart {
 	e.wire(e.single.picture, "")
 	e.single.picture.OnDoubleTapped = func(widgets.Hot) { e.turn(allFour) }
 	e.duty = newDutyPage()
-	head := container.NewBorder(nil, nil, e.tabs.row(), nil, e.about)
+	head := container.NewBorder(nil, nil, nil, e.about, e.tabs.narrowRow())
 	e.body = container.NewBorder(head, nil, nil, nil, container.NewStack(e.grid, e.single.body, e.duty.body))
 	e.single.body.Hide()
 	return e
