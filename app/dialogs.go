@@ -3,36 +3,13 @@
 package main
 
 import (
-	"errors"
 	"strings"
 
 	"fyne.io/fyne/v2"
 	"fyne.io/fyne/v2/container"
 	"fyne.io/fyne/v2/dialog"
 	"fyne.io/fyne/v2/widget"
-
-	"quietbus/study"
 )
-
-// maxErrors is how many mistakes a dialog lists before it counts the rest.
-const maxErrors = 12
-
-// errorText words an error for a dialog, each of several on its own line.
-func errorText(err error) string {
-	var several study.FieldErrors
-	if !errors.As(err, &several) {
-		return err.Error()
-	}
-	var lines []string
-	for i, e := range several {
-		if i == maxErrors {
-			lines = append(lines, "and "+count(len(several)-maxErrors, "more mistake"))
-			break
-		}
-		lines = append(lines, e.Error())
-	}
-	return strings.Join(lines, "\n\n")
-}
 
 // fail shows an error.
 func (w *Window) fail(title string, err error) { w.tell(title, errorText(err)) }

@@ -20,13 +20,14 @@ import (
 
 // The pages of the evidence: four figures at once, each alone, and the duties.
 const (
-	allFour  = "All four"
-	dutyName = "Duty"
+	allFour          = "All four"
+	dutyName         = "Duty"
+	combinationsName = "Combinations"
 )
 
 var (
 	figureNames   = []string{"Spectrum", "Waveform", "Impedance", "Margins"}
-	evidenceNames = append(append([]string{allFour}, figureNames...), dutyName)
+	evidenceNames = append(append([]string{allFour}, figureNames...), dutyName, combinationsName)
 )
 
 // evidencePart is the figure side: four panels at once, or one alone.
@@ -41,6 +42,7 @@ type evidencePart struct {
 	panels map[string]*panel // small ones, in the grid
 	single *panel            // the one shown alone
 	duty   *dutyPage
+	sets   *combinationsPage
 }
 
 func newEvidencePart(w *Window) *evidencePart {
@@ -60,9 +62,11 @@ func newEvidencePart(w *Window) *evidencePart {
 	e.wire(e.single.picture, "")
 	e.single.picture.OnDoubleTapped = func(widgets.Hot) { e.turn(allFour) }
 	e.duty = newDutyPage()
-	head := container.NewBorder(nil, nil, nil, e.about, e.tabs.narrowRow())
-	e.body = container.NewBorder(head, nil, nil, nil, container.NewStack(e.grid, e.single.body, e.duty.body))
+	e.sets = newCombinationsPage(w)
+	head := container.NewBorder(nil, nil, nil, container.NewStack(wide(190), e.about), e.tabs.narrowRow())
+	e.body = container.NewBorder(head, nil, nil, nil, container.NewStack(e.grid, e.single.body, e.duty.body, e.sets.body))
 	e.single.body.Hide()
+	e.sets.body.Hide()
 	return e
 }
 
@@ -119,8 +123,10 @@ func (e *evidencePart) turn(name string) {
 		page = e.grid
 	case dutyName:
 		page = e.duty.body
+	case combinationsName:
+		page = e.sets.body
 	}
-	for _, other := range []*fyne.Container{e.grid, e.single.body, e.duty.body} {
+	for _, other := range []*fyne.Container{e.grid, e.single.body, e.duty.body, e.sets.body} {
 		if other != page {
 			other.Hide()
 		}
@@ -133,15 +139,20 @@ func (e *evidencePart) turn(name string) {
 // the drawing took.
 func (e *evidencePart) refresh() time.Duration {
 	e.offer()
+	var took time.Duration
+	if e.turned == combinationsName || e.sets.small.body.Visible() {
+		took = e.sets.refresh()
+	}
 	switch e.turned {
 	case allFour:
+	case combinationsName:
+		return took
 	case dutyName:
 		e.duty.show(e.w.picture)
 		return 0
 	default:
-		return e.single.show(e.title(e.turned))
+		return took + e.single.show(e.title(e.turned))
 	}
-	var took time.Duration
 	for _, name := range figureNames {
 		took += e.panels[name].show(e.title(name))
 	}

@@ -223,6 +223,7 @@ func (w *Window) dropped(_ fyne.Position, files []fyne.URI) {
 func (w *Window) close() {
 	w.guard(func() {
 		w.eval.Stop()
+		w.sets.Stop()
 		w.keeper.Drop()
 		w.keeper.Close()
 		w.win.SetCloseIntercept(nil)

@@ -30,6 +30,7 @@ type Window struct {
 	recent  *Recent
 	keeper  *Keeper
 	eval    *Evaluator
+	sets    *Exploring
 	picture *Picture // newest shown; its study may be older than the project's
 	sel     selection
 
@@ -67,6 +68,7 @@ func NewWindow(a fyne.App, post func(func())) *Window {
 	w.status = newStatus()
 	w.tools.OnHint = w.status.Say
 	w.eval = NewEvaluator(post, w.show, w.worth)
+	w.sets = NewExploring(post, w.evidence.sets.show)
 	w.build()
 	w.win.SetMaster()
 	w.win.SetPadded(false)
@@ -81,7 +83,7 @@ func NewWindow(a fyne.App, post func(func())) *Window {
 func (w *Window) build() {
 	head := container.NewBorder(nil, nil, w.tabs.row(), nil, w.tools)
 	left := container.NewBorder(head, nil, nil, nil, w.tabs.stack(w.line.object(), w.items.object()))
-	right := container.NewBorder(nil, w.measures.object(), nil, nil, w.evidence.object())
+	right := container.NewBorder(nil, container.New(besideLayout{}, w.measures.object(), w.evidence.sets.small.body), nil, nil, w.evidence.object())
 	middle := container.NewHSplit(left, right)
 	middle.Offset = 0.46
 	top := container.NewVBox(gap(4), w.verdict, widget.NewSeparator())
@@ -106,6 +108,13 @@ func (t *told) MinSize(objects []fyne.CanvasObject) fyne.Size { return t.inner.M
 func gap(height float32) fyne.CanvasObject {
 	r := canvas.NewRectangle(color.Transparent)
 	r.SetMinSize(fyne.NewSize(0, height))
+	return r
+}
+
+// wide asks for a width.
+func wide(width float32) fyne.CanvasObject {
+	r := canvas.NewRectangle(color.Transparent)
+	r.SetMinSize(fyne.NewSize(width, 0))
 	return r
 }
 
@@ -181,6 +190,7 @@ func (w *Window) refreshLists() {
 // ask submits a job for the project as it is now.
 func (w *Window) ask() {
 	s := w.project.Study()
+	w.sets.Explore(w.project.Base())
 	w.eval.Submit(Job{Study: w.project.Base(), On: s.OnMeasures(), ScanBus: w.sel.Bus, Asked: time.Now()})
 }
 

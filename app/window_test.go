@@ -41,6 +41,7 @@ func newBed(t *testing.T) *bed {
 	b.Window = NewWindow(a, func(f func()) { b.queue <- f })
 	t.Cleanup(func() {
 		b.eval.Stop()
+		b.sets.Stop()
 		b.keeper.Close()
 	})
 	b.win.Resize(fyne.NewSize(1280, 780))
